@@ -1,0 +1,191 @@
+package briefing
+
+import (
+	"fmt"
+	"math"
+	"strconv"
+
+	"swardbook/bot/reply"
+	"swardbook/planner"
+)
+
+// decimals says how many decimals a figure is told with. Text is a rounding of
+// the figure; the figure itself is kept whole.
+func decimals(unit planner.Unit) int {
+	switch unit {
+	case planner.DegreesC, planner.DifferenceC, planner.GrowthDays:
+		return 1
+	case planner.NitrogenGM2:
+		return 2
+	default:
+		return 0
+	}
+}
+
+// Digits writes a value already in the site's unit with the decimals its unit
+// is told with; a number typed with more is shown with up to two.
+func Digits(shown float64, unit planner.Unit) string {
+	places := decimals(unit)
+	if text := strconv.FormatFloat(shown, 'f', places, 64); text != "-0" {
+		if unit != planner.Count {
+			return text
+		}
+	}
+	rounded := math.Round(shown*100) / 100
+	return strconv.FormatFloat(rounded+0, 'f', -1, 64)
+}
+
+// Amount writes a figure in the site's unit, without the unit.
+func Amount(value float64, unit planner.Unit, units planner.Units) string {
+	shown, _ := units.Show(value, unit)
+	return Digits(shown, unit)
+}
+
+// yesterdayBlocks tell the last day of the record: high and low, both means,
+// what is missing or doubtful, growth potential of each surface.
+func yesterdayBlocks(e planner.Evaluation) []reply.Block {
+	y, units := e.Yesterday, e.Site.Units
+	blocks := []reply.Block{reply.Heading("Yesterday, " + y.Day.Short())}
+	blocks = append(blocks, DayFields(y.DayFacts, units))
+	if y.Empty() {
+		return blocks
+	}
+	if note := DayNote(y.DayFacts); note != "" {
+		blocks = append(blocks, reply.Text(note))
+	}
+	if y.HasExtremes && y.LowC <= frostNearC {
+		blocks = append(blocks, reply.Text("Low near or below 0 °C: grass can be white with frost while the air is a few degrees above. Keep traffic off frozen turf."))
+	}
+	if len(y.Growth) > 0 {
+		blocks = append(blocks, growthTable(y))
+	}
+	return blocks
+}
+
+// frostNearC is the low at which frost on the grass is thought of: ground
+// frost comes with the screen some degrees above 0 (common practice).
+const frostNearC = 3.0
+
+// DayFields are the high, the low and both means of a day.
+func DayFields(day planner.DayFacts, units planner.Units) reply.Fields {
+	show := func(c float64) string { return Amount(c, planner.DegreesC, units) + " " + units.Degree() }
+	missing := "missing"
+	fields := reply.Fields{{Name: "high", Value: missing}, {Name: "low", Value: missing}}
+	if day.HasExtremes {
+		fields[0].Value, fields[1].Value = show(day.HighC), show(day.LowC)
+	}
+	for _, basis := range []planner.Basis{planner.Hourly, planner.Midrange} {
+		value := missing
+		if meanC, known := day.Mean(basis); known {
+			value = show(meanC)
+		}
+		fields = append(fields, reply.Field{Name: basis.Words(), Value: value})
+	}
+	return fields
+}
+
+// DayNote says what a day's figures rest on where it is not simply 24 readings
+// and the station's own extremes; "" when there is nothing to say.
+func DayNote(day planner.DayFacts) string {
+	note := ""
+	add := func(format string, args ...any) {
+		if note != "" {
+			note += " "
+		}
+		note += fmt.Sprintf(format, args...)
+	}
+	switch {
+	case day.Published:
+		add("24-hour mean as the station gives it.")
+	case day.SlotsReal > 0 && day.SlotsReal < day.SlotsWanted:
+		add("%d of %d readings, %d bridged.", day.SlotsReal, day.SlotsWanted, day.SlotsBridged)
+	}
+	if day.ExtremesFrom == planner.FromHourly {
+		add("High and low are the highest and lowest reading: the true ones lie a little further apart.")
+	}
+	if day.Doubt != "" {
+		add("Doubtful: %s.", day.Doubt)
+	}
+	return note
+}
+
+func growthTable(y planner.Yesterday) reply.Table {
+	table := reply.Table{
+		Title:   "Growth potential",
+		Columns: []reply.Column{reply.Left("surface"), reply.Right("24-hour"), reply.Right("high/low")},
+	}
+	for _, growth := range y.Growth {
+		row := []string{growth.Surface.Name}
+		for _, basis := range []planner.Basis{planner.Hourly, planner.Midrange} {
+			cell := "-"
+			if gp, ok := growth.Means[basis]; ok {
+				cell = Amount(gp, planner.Share, planner.Celsius) + " %"
+			}
+			row = append(row, cell)
+		}
+		table.Rows = append(table.Rows, row)
+	}
+	return table
+}
+
+// totalBlocks tell the season totals on both means.
+func totalBlocks(e planner.Evaluation) []reply.Block {
+	if len(e.Totals) == 0 {
+		return nil
+	}
+	table := reply.Table{
+		Title:   "Season totals",
+		Columns: []reply.Column{reply.Left("total"), reply.Right("24-hour"), reply.Right("high/low")},
+	}
+	blocks := []reply.Block{}
+	for _, state := range e.Totals {
+		table.Rows = append(table.Rows, TotalRow(state, e.Site.Units))
+		blocks = append(blocks, reply.Text(TotalNote(state, e.Site.Units)))
+	}
+	return append([]reply.Block{table}, blocks...)
+}
+
+// TotalRow is a season total's name and its sum on either mean; a total that
+// stands on neither has its one sum in both places said once.
+func TotalRow(state planner.TotalState, units planner.Units) []string {
+	row := []string{state.Total.Name}
+	for _, basis := range []planner.Basis{planner.Hourly, planner.Midrange} {
+		cell := "-"
+		if facts, ok := state.On(basis); ok {
+			cell = SumText(facts.Sum, state.Unit, units)
+		}
+		row = append(row, cell)
+	}
+	if len(state.Bases) == 1 {
+		row[1] = SumText(state.Bases[0].Sum, state.Unit, units)
+	}
+	return row
+}
+
+// SumText writes a sum; one with days missing has a plus behind it, which
+// TotalNote explains as "at least".
+func SumText(sum planner.Sum, unit planner.Unit, units planner.Units) string {
+	text := Amount(sum.Total, unit, units)
+	if sum.Missing > 0 {
+		text += "+"
+	}
+	return text
+}
+
+// TotalNote says since when a total runs, its unit and base, and what it rests
+// on.
+func TotalNote(state planner.TotalState, units planner.Units) string {
+	_, unit := units.Show(0, state.Unit)
+	text := fmt.Sprintf("%s: %s", state.Total.Name, unit)
+	if base := Base(state.Settings.Counting, units); base != "" {
+		text += " " + base
+	}
+	text += " since " + state.Start.Short()
+	if len(state.Bases) == 1 {
+		text += ", " + state.Bases[0].Basis.Words()
+	}
+	if len(state.Bases) > 0 {
+		text += notes(state.Bases[0].Sum.Notes())
+	}
+	return text
+}

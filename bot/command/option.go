@@ -1,0 +1,118 @@
+package command
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"strconv"
+	"strings"
+)
+
+// Kind is what an option takes.
+type Kind int
+
+// The kinds.
+const (
+	Text        Kind = iota + 1 // any text
+	Name                        // a name of ours: 1 to 32 letters, digits, spaces, hyphens
+	Names                       // one or more names with commas between
+	Number                      // 2.5
+	Whole                       // 3
+	Numbers                     // a list of numbers: 29 30 28
+	Day                         // a date, or words like "yesterday"
+	MonthDay                    // a day of every year: 03-01 or 1 mar
+	Choice                      // one of Choices
+	Temperature                 // 29, 29c or 84f
+	Warming                     // a difference of temperatures: 2, -1.5c or 3f
+	Target                      // 200, 200c or 360f: a total of what a work counts
+	Yes                         // yes or no
+	File                        // a file; in the terminal its path
+)
+
+// Range bounds a number, both ends included.
+type Range struct{ Min, Max float64 }
+
+// Between is the range with both ends.
+func Between(lowest, highest float64) *Range { return &Range{lowest, highest} }
+
+// AtLeast is the range with no upper end.
+func AtLeast(lowest float64) *Range { return &Range{lowest, math.Inf(1)} }
+
+// Option is one option of a command.
+type Option struct {
+	Name     string
+	Kind     Kind
+	Required bool
+	Help     string   // what it is, at most 100 characters; asked when it is missing
+	Choices  []string // of a Choice, at most 25
+	Range    *Range   // of the number kinds; in the typed unit
+	Past     bool     // of a Day: a weekday or "4 jun" means the nearest past one
+	Example  string   // a value that works; empty takes the kind's own
+	// Complete offers values that begin with the prefix, at most 25. The
+	// request holds the options given so far.
+	Complete func(ctx context.Context, req Request, prefix string) []string
+}
+
+// example is a value that works.
+func (o *Option) example() string {
+	switch {
+	case o.Example != "":
+		return o.Example
+	case len(o.Choices) > 0:
+		return o.Choices[0]
+	}
+	example := kinds[o.Kind].example
+	if o.Range == nil {
+		return example
+	}
+	if number, _, ok := readNumber(example); ok && (number < o.Range.Min || number > o.Range.Max) {
+		return plain(math.Ceil(max(o.Range.Min, -math.MaxInt32)))
+	}
+	return example
+}
+
+// Allowed says in words what the option takes.
+func (o *Option) Allowed() string {
+	allowed := kinds[o.Kind].allowed
+	if o.Kind == Choice {
+		allowed = "one of " + strings.Join(o.Choices, ", ")
+	}
+	if o.Range != nil {
+		allowed += o.Range.words()
+	}
+	return allowed
+}
+
+func (r *Range) words() string {
+	switch {
+	case math.IsInf(r.Min, -1) && math.IsInf(r.Max, 1):
+		return ""
+	case math.IsInf(r.Max, 1):
+		return fmt.Sprintf(", %s or more", plain(r.Min))
+	case math.IsInf(r.Min, -1):
+		return fmt.Sprintf(", %s or less", plain(r.Max))
+	}
+	return fmt.Sprintf(", %s to %s", plain(r.Min), plain(r.Max))
+}
+
+// plain writes a number as a person types it: no exponent, no spare zeros.
+func plain(number float64) string { return strconv.FormatFloat(number, 'f', -1, 64) }
+
+// kinds says of each kind what it takes, more of that for who got it wrong, and
+// a value that works.
+var kinds = map[Kind]struct{ allowed, more, example string }{
+	Text:        {"a text", "", "dry"},
+	Name:        {"a name", " (1 to 32 letters, digits, single spaces and hyphens)", "greens"},
+	Names:       {"names with commas between", " (each once, of 1 to 32 letters, digits, single spaces and hyphens)", "greens,tees"},
+	Number:      {"a number", "", "2.5"},
+	Whole:       {"a whole number", "", "3"},
+	Numbers:     {"numbers with spaces or commas between", "", "29,30,28"},
+	Day:         {"a day", " (2013-06-20, 4 jun, mon, yesterday, 3 days ago, in 3 days)", "today"},
+	MonthDay:    {"a month and day", " (03-01 or 1 mar)", "03-01"},
+	Choice:      {"", "", ""}, // its own choices
+	Temperature: {"a temperature", " (29, 29c or 84f)", "29"},
+	Warming:     {"a difference in degrees", " (2, -1.5c or 3f)", "2"},
+	Target:      {"a number", " (200, 200c or 360f)", "200"},
+	Yes:         {"yes or no", "", "yes"},
+	File:        {"a file", "", "week.csv"},
+}

@@ -1,0 +1,124 @@
+package command
+
+import (
+	"context"
+	"fmt"
+
+	"swardbook/bot/reply"
+	"swardbook/planner"
+)
+
+func (d Desk) setupTotal() []Command {
+	which := nameOption("which season total", "gdd10", d.names(totalNames))
+	settings := append(countingOptions(planner.ByDegreeDays, planner.ByGrowthDays),
+		Option{Name: "grass", Kind: Choice, Choices: []string{"cool", "warm", "cool-f", "warm-f"}, Help: "growth days: of which grass"},
+		Option{Name: "from", Kind: MonthDay, Help: "start of the season; 1 January, or 1 July in the south, when not given", Example: "03-01"})
+	add := append([]Option{nameOption("what the total is called", "gdd10", nil)}, settings...)
+	change := append([]Option{which, newNameOption()}, settings...)
+	return []Command{
+		{Path: "setup total add", Short: "add a season total: degree days or growth days since a date", Who: Lead, Options: append(add, d.siteOption()),
+			Examples: []string{"/setup total add name:gdd10 base:10 from:03-01", "/setup total add name:growth counts:growth-days grass:cool"}, Run: d.runTotalAdd},
+		{Path: "setup total change", Short: "change a season total from today on; older figures stay", Who: Lead, Options: append(change, d.siteOption()),
+			Examples: []string{"/setup total change name:gdd10 from:02-15"}, Run: d.runTotalChange},
+		{Path: "setup total drop", Short: "drop a season total", Who: Lead, Asks: true, Options: []Option{which, d.siteOption()},
+			Examples: []string{"/setup total drop name:gdd10"}, Run: d.runTotalDrop},
+		{Path: "setup total list", Short: "the season totals", Who: Lead, Options: []Option{d.siteOption()}, Examples: []string{"/setup total list"}, Run: d.runTotalList},
+	}
+}
+
+// totalSettings reads a total's options over its settings before.
+func (v visit) totalSettings(settings planner.TotalSettings) (planner.TotalSettings, error) {
+	settings.Counting = v.counting(settings.Counting)
+	if err := v.checkCounting(settings.Counting); err != nil {
+		return settings, err
+	}
+	if start, given := v.Values.MonthDay("from"); given {
+		settings.Start = start
+	}
+	grass, given := v.Values.Text("grass")
+	if settings.Counts != planner.ByGrowthDays {
+		if given {
+			return settings, v.Invalid("counts", "grass: goes with counts:growth-days")
+		}
+		return settings, nil
+	}
+	if given {
+		settings.Curve, _ = grassCurve(grass)
+	} else if settings.Curve.WidthC == 0 {
+		return settings, v.Missing("grass")
+	}
+	return settings, nil
+}
+
+func (d Desk) runTotalAdd(ctx context.Context, req Request) (reply.Reply, error) {
+	v, err := d.visit(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	settings, err := v.totalSettings(planner.TotalSettings{
+		Counting: planner.Counting{Counts: planner.ByDegreeDays}, Start: v.site.SeasonStart()})
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	name, _ := v.Values.Text("name")
+	total := planner.Total{Site: v.site.ID, Name: name, Settings: planner.Always(settings)}
+	return d.kept(ctx, v.stamp(), total, reply.Of(reply.Textf("Added %s: %s.", name, totalText(settings, v.site.Units))))
+}
+
+// namedTotal is a visit and the season total that name: names.
+func (d Desk) namedTotal(ctx context.Context, req Request) (visit, planner.Total, error) {
+	v, err := d.visit(ctx, req)
+	if err != nil {
+		return visit{}, planner.Total{}, err
+	}
+	name, _ := v.Values.Text("name")
+	total, err := v.setup.Total(v.site, name)
+	return v, total, err
+}
+
+func (d Desk) runTotalChange(ctx context.Context, req Request) (reply.Reply, error) {
+	v, total, err := d.namedTotal(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	before := total.Settings.On(v.today)
+	settings, err := v.totalSettings(before)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	total.Name = renamed(v.Values, total.Name)
+	if settings != before {
+		total.Settings = total.Settings.With(v.today, settings)
+	}
+	return d.kept(ctx, v.stamp(), total, reply.Of(reply.Textf("Changed %s: %s.", total.Name, totalText(settings, v.site.Units))))
+}
+
+func (d Desk) runTotalDrop(ctx context.Context, req Request) (reply.Reply, error) {
+	v, total, err := d.namedTotal(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	total.Archived = true
+	return d.dropping(ctx, req, v.stamp(), total, "season total "+total.Name, "")
+}
+
+func (d Desk) runTotalList(ctx context.Context, req Request) (reply.Reply, error) {
+	v, err := d.visit(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	var fields reply.Fields
+	for _, total := range v.setup.TotalsOf(v.site.ID) {
+		fields = append(fields, reply.Field{Name: total.Name, Value: totalText(total.Settings.On(v.today), v.site.Units)})
+	}
+	return listed(fields, "There is no season total yet. Like: /setup total add name:gdd10 base:10 from:03-01"), nil
+}
+
+func totalText(settings planner.TotalSettings, units planner.Units) string {
+	_, unit := units.Show(0, unitCounted(settings.Counting))
+	text := unit + countingText(settings.Counting, units)
+	if settings.Counts == planner.ByGrowthDays {
+		text += fmt.Sprintf(" (optimum %s %s)", plainNumber(units.Temperature(settings.Curve.OptimumC)), units.Degree())
+	}
+	return text + " since " + settings.Start.String()
+}

@@ -1,0 +1,254 @@
+package command
+
+import (
+	"context"
+	"fmt"
+
+	"swardbook/bot/briefing"
+	"swardbook/bot/reply"
+	"swardbook/calc"
+	"swardbook/planner"
+)
+
+// countingOptions say what is counted and how.
+func countingOptions(counts ...planner.Counts) []Option {
+	return []Option{
+		{Name: "counts", Kind: Choice, Choices: words(counts), Help: "what is counted"},
+		{Name: "base", Kind: Temperature, Help: "degree days: temperature above which they count; 0 °C when not given", Example: "0"},
+		{Name: "upper", Kind: Temperature, Help: "degree days: upper limit; none when not given", Example: "30"},
+		{Name: "cutoff", Kind: Choice, Choices: words(calc.Cutoffs()), Help: "degree days: what the upper limit does; horizontal when not given"},
+		{Name: "method", Kind: Choice, Choices: words(calc.Methods()), Help: "degree days: from the day's mean when not given; /help formulas"},
+	}
+}
+
+func words[T ~string](list []T) []string {
+	return namesOf(list, func(one T) string { return string(one) })
+}
+
+// counting reads the counting options over what was counted before.
+func (v visit) counting(c planner.Counting) planner.Counting {
+	c.Counts = planner.Counts(textOr(v.Values, "counts", string(c.Counts)))
+	if c.Counts != planner.ByDegreeDays {
+		return planner.Counting{Counts: c.Counts}
+	}
+	if c.Method == "" {
+		c.Method, c.Thresholds.Cutoff = calc.MethodMean, calc.CutoffNone
+	}
+	c.Method = calc.Method(textOr(v.Values, "method", string(c.Method)))
+	if baseC, given := v.temperatureC("base"); given {
+		c.Thresholds.LowerC = baseC
+	}
+	if upperC, given := v.temperatureC("upper"); given {
+		c.Thresholds.UpperC, c.Thresholds.Cutoff = upperC, calc.CutoffHorizontal
+	}
+	c.Thresholds.Cutoff = calc.Cutoff(textOr(v.Values, "cutoff", string(c.Thresholds.Cutoff)))
+	if c.Thresholds.Cutoff == calc.CutoffNone {
+		c.Thresholds.UpperC = 0
+	}
+	return c
+}
+
+// checkCounting refuses options that do not go with what is counted, rather
+// than dropping them silently.
+func (v visit) checkCounting(c planner.Counting) error {
+	for _, option := range []string{"base", "upper", "cutoff", "method"} {
+		if c.Counts != planner.ByDegreeDays && v.Values.Has(option) {
+			return v.Invalid("counts", "%s: goes with counts:degree-days, not %s", option, c.Counts)
+		}
+	}
+	if v.Values.Has("cutoff") && c.Thresholds.Cutoff != calc.CutoffNone && c.Thresholds.UpperC == 0 && !v.Values.Has("upper") {
+		return v.Missing("upper")
+	}
+	return nil
+}
+
+func (d Desk) setupWork() []Command {
+	which := nameOption("which work", "regulator", d.workOption().Complete)
+	counting := countingOptions(planner.ByDays, planner.ByDegreeDays, planner.ByGrowthDays, planner.ByNitrogen)
+	settings := []Option{
+		{Name: "target", Kind: Target, Range: AtLeast(0), Help: "total at which it falls due; by nitrogen: the reserve left, g N/m²", Example: "200"},
+		{Name: "mean", Kind: Choice, Choices: []string{string(planner.Hourly), string(planner.Midrange)}, Help: "the 24-hour or the high/low mean; by the site's readings when not given"},
+		{Name: "latest", Kind: Target, Range: AtLeast(0), Help: "total past which it is overdue; a tenth over the target when not given", Example: "230"},
+	}
+	add := []Option{required(d.surfaceOption()), nameOption("what the work is called", "regulator", nil), required(counting[0])}
+	add = append(append(add, settings...), counting[1:]...)
+	change := []Option{required(d.surfaceOption()), which, newNameOption()}
+	change = append(append(change, settings...), counting...)
+	return []Command{
+		{Path: "setup work add", Short: "add a work: a feed, a regulator spray, a cut", Who: Lead, Options: append(add, d.siteOption()),
+			Long: "A target holds for the product, grass, height of cut and mean it was found with; it does not transfer. Swardbook plans dates and prescribes no product and no rate.",
+			Examples: []string{"/setup work add surface:greens name:regulator counts:degree-days base:0 target:200",
+				"/setup work add surface:greens name:feed counts:nitrogen", "/setup work add surface:pitch name:cut counts:days target:3"}, Run: d.runWorkAdd},
+		{Path: "setup work change", Short: "change a work from today on; older figures stay", Who: Lead, Options: append(change, d.siteOption()),
+			Examples: []string{"/setup work change surface:greens name:regulator target:220"}, Run: d.runWorkChange},
+		{Path: "setup work drop", Short: "drop a work; the log is kept", Who: Lead, Asks: true, Options: []Option{required(d.surfaceOption()), which, d.siteOption()},
+			Examples: []string{"/setup work drop surface:greens name:regulator"}, Run: d.runWorkDrop},
+		{Path: "setup work list", Short: "the works, what they count and when they fall due", Who: Lead, Options: []Option{d.siteOption()},
+			Examples: []string{"/setup work list"}, Run: d.runWorkList},
+	}
+}
+
+// workSettings reads a work's options over its settings before.
+func (v visit) workSettings(settings planner.WorkSettings, surface planner.Surface) (planner.WorkSettings, error) {
+	before := settings.Counting
+	settings.Counting = v.counting(settings.Counting)
+	if err := v.checkCounting(settings.Counting); err != nil {
+		return settings, err
+	}
+	if before.Counts != "" && before.Counts != settings.Counts && !v.Values.Has("target") && settings.Counts != planner.ByNitrogen {
+		return settings, v.Missing("target")
+	}
+	typed, given := v.Values.Degrees("target")
+	switch {
+	case given:
+		target, err := v.target(settings.Counting, typed)
+		if err != nil {
+			return settings, err
+		}
+		settings.Target, settings.Latest = target, 0
+	case before.Counts == "" && settings.Counts != planner.ByNitrogen:
+		return settings, v.Missing("target")
+	}
+	if typed, given := v.Values.Degrees("latest"); given {
+		latest, err := v.target(settings.Counting, typed)
+		if err != nil {
+			return settings, err
+		}
+		settings.Latest = latest
+	}
+	settings.Basis = planner.Basis(textOr(v.Values, "mean", string(settings.Basis)))
+	if !settings.StandsOnMean() {
+		if v.Values.Has("mean") {
+			return settings, v.Invalid("counts", "mean: does not go with what this work counts")
+		}
+		settings.Basis = ""
+	}
+	if settings.Counts == planner.ByNitrogen && surface.Turf.On(v.today).CeilingGM2 == 0 {
+		return settings, planner.Problemf(planner.Missing, "How much nitrogen can %s use in a month?", surface.Name).
+			WithHint("Usual figures are 3 (cool-season) and 4 (warm-season) g N/m² a month: common practice.\n%s",
+				Line("setup surface change", Pair{"name", surface.Name}, Pair{"ceiling", "3"}, Pair{"from", "2000-01-01"}))
+	}
+	return settings, nil
+}
+
+func (d Desk) runWorkAdd(ctx context.Context, req Request) (reply.Reply, error) {
+	v, surface, err := d.namedSurface(ctx, req, "surface")
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	settings, err := v.workSettings(planner.WorkSettings{}, surface)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	if settings.Basis == "" && settings.StandsOnMean() {
+		if settings.Basis, err = v.book.DefaultMean(ctx, v.site.ID); err != nil {
+			return reply.Reply{}, err
+		}
+	}
+	name, _ := v.Values.Text("name")
+	said := reply.Of(reply.Textf("Added %s %s: %s.", surface.Name, name, settingsText(settings, v.site.Units)))
+	if settings.Counts == planner.ByDegreeDays || settings.Counts == planner.ByGrowthDays {
+		said.Add(reply.Text("A target holds for the product, grass, height of cut and mean it was found with; it does not transfer."))
+	}
+	if settings.Counts == planner.ByGrowthDays {
+		said.Add(reply.Text("For a growth regulator count degree days: growth days do not tell how fast it wears off."))
+	}
+	said.Add(reply.Textf("Next, log the last one:\n%s", Line("done", Pair{"surfaces", surface.Name}, Pair{"works", name}, Pair{"when", "yesterday"})))
+	return d.kept(ctx, v.stamp(), planner.Work{Surface: surface.ID, Name: name, Settings: planner.Always(settings)}, said)
+}
+
+// namedWork is a visit, and the surface and work that surface: and name: name.
+func (d Desk) namedWork(ctx context.Context, req Request) (visit, planner.Surface, planner.Work, error) {
+	v, surface, err := d.namedSurface(ctx, req, "surface")
+	if err != nil {
+		return visit{}, planner.Surface{}, planner.Work{}, err
+	}
+	name, _ := v.Values.Text("name")
+	work, err := v.setup.Work(surface, name)
+	return v, surface, work, err
+}
+
+func (d Desk) runWorkChange(ctx context.Context, req Request) (reply.Reply, error) {
+	v, surface, work, err := d.namedWork(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	before := work.Settings.On(v.today)
+	settings, err := v.workSettings(before, surface)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	work.Name = renamed(v.Values, work.Name)
+	if settings != before {
+		work.Settings = work.Settings.With(v.today, settings)
+	}
+	return d.kept(ctx, v.stamp(), work, reply.Of(reply.Textf("Changed %s %s: %s.", surface.Name, work.Name, settingsText(settings, v.site.Units))))
+}
+
+func (d Desk) runWorkDrop(ctx context.Context, req Request) (reply.Reply, error) {
+	v, surface, work, err := d.namedWork(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	work.Archived = true
+	return d.dropping(ctx, req, v.stamp(), work, surface.Name+" "+work.Name, "")
+}
+
+func (d Desk) runWorkList(ctx context.Context, req Request) (reply.Reply, error) {
+	v, err := d.visit(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	var fields reply.Fields
+	for _, surface := range v.setup.SurfacesOf(v.site.ID) {
+		for _, work := range v.setup.WorksOn(surface.ID) {
+			fields = append(fields, reply.Field{Name: surface.Name + " " + work.Name, Value: settingsText(work.Settings.On(v.today), v.site.Units)})
+		}
+	}
+	return listed(fields, "There is no work yet. Like: /setup work add surface:greens name:regulator counts:degree-days base:0 target:200"), nil
+}
+
+// settingsText says what a work counts, its target and its mean.
+func settingsText(settings planner.WorkSettings, units planner.Units) string {
+	unit := unitCounted(settings.Counting)
+	target, unitName := units.Show(settings.Target, unit)
+	text := fmt.Sprintf("every %s %s", plainNumber(target), unitName)
+	if settings.Counts == planner.ByNitrogen {
+		text = fmt.Sprintf("when %s %s are left", plainNumber(target), unitName)
+	}
+	text += countingText(settings.Counting, units)
+	if settings.Latest > 0 {
+		latest, _ := units.Show(settings.Latest, unit)
+		text += fmt.Sprintf(", overdue past %s", plainNumber(latest))
+	}
+	switch {
+	case settings.Basis != "":
+		text += ", " + settings.Basis.Words()
+	case settings.StandsOnMean():
+		text += ", on the 24-hour mean if the station gives hourly readings"
+	}
+	return text
+}
+
+func unitCounted(counting planner.Counting) planner.Unit {
+	measure, err := planner.NewMeasure(counting, nil)
+	if err != nil {
+		return planner.Days
+	}
+	return measure.Unit()
+}
+
+// countingText adds base, upper limit and method to a count of degree days.
+func countingText(counting planner.Counting, units planner.Units) string {
+	if counting.Counts != planner.ByDegreeDays {
+		return ""
+	}
+	text := " " + briefing.Base(counting, units)
+	if counting.Thresholds.Cutoff != calc.CutoffNone && counting.Thresholds.Cutoff != "" {
+		text += fmt.Sprintf(", upper limit %s (%s)", plainNumber(units.Temperature(counting.Thresholds.UpperC)), counting.Thresholds.Cutoff)
+	}
+	if counting.Method != calc.MethodMean {
+		text += ", " + string(counting.Method)
+	}
+	return text
+}

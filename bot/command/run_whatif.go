@@ -1,0 +1,219 @@
+package command
+
+import (
+	"context"
+	"fmt"
+	"strings"
+
+	"swardbook/bot/briefing"
+	"swardbook/bot/reply"
+	"swardbook/planner"
+)
+
+func (d Desk) whatIf() Command {
+	return Command{
+		Path: "whatif", Short: "as it stands beside what would change", Listed: true,
+		Long: "Changes the days ahead, a target, or the day a work is done, and shows the due dates before and after. Nothing is kept. " +
+			"Highs and lows stand for the days from warm-from on, today when it is not given.",
+		Options: []Option{
+			d.surfaceOption(), d.workOption(),
+			{Name: "warmer", Kind: Warming, Range: Between(-50, 50), Help: "degrees warmer, below 0 for cooler", Example: "3"},
+			{Name: "warm-from", Kind: Day, Help: "first day that is warmer; today when not given", Example: "tomorrow"},
+			{Name: "warm-days", Kind: Whole, Range: Between(1, 365), Help: "how many days are warmer; all when not given", Example: "7"},
+			{Name: "highs", Kind: Numbers, Help: "highs of the days ahead, one a day", Example: "29 30 28"},
+			{Name: "lows", Kind: Numbers, Help: "lows of the days ahead, one a day", Example: "18 19 18"},
+			{Name: "work-on", Kind: Day, Help: "the work is done on this day", Example: "tomorrow"},
+			{Name: "rate", Kind: Number, Range: Between(0, 5), Help: "with work-on: nitrogen given, g N/m²", Example: "2.5"},
+			{Name: "target", Kind: Target, Range: AtLeast(0), Help: "another target for the work", Example: "250"},
+			d.siteOption(),
+		},
+		Examples: []string{"/whatif warmer:3", "/whatif greens regulator warmer:3 warm-days:7",
+			"/whatif surface:greens work:feed work-on:tomorrow rate:2.5", `/whatif highs:"29 30 28" lows:"18 19 18"`},
+		Run: d.runWhatIf,
+	}
+}
+
+func (d Desk) runWhatIf(ctx context.Context, req Request) (reply.Reply, error) {
+	v, err := d.visit(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	plan, base, err := v.evaluate(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	chosen, err := v.chosen(base.Works)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	edits, err := v.edits(chosen)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	changed, refusals := planner.Apply(plan, edits...)
+	if len(refusals) > 0 {
+		return reply.Reply{}, refusals[0]
+	}
+	whatIf, err := planner.Evaluate(changed)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	r := v.sideBySide(chosen, base, whatIf, edits)
+	r.Private = true
+	r.Figures = append(base.Figures().Under("base."), whatIf.Figures().Under("whatif.")...)
+	return r, nil
+}
+
+// sideBySide tells the dates as it stands and with the edits made.
+func (v visit) sideBySide(chosen []planner.WorkState, base, whatIf planner.Evaluation, edits []planner.Edit) reply.Reply {
+	sentences := make([]string, 0, len(edits))
+	for _, edit := range edits {
+		sentences = append(sentences, edit.Sentence(v.site.Units))
+	}
+	table := reply.Table{Columns: []reply.Column{reply.Left("work"), reply.Right("stands"), reply.Right("what if")}}
+	r := reply.Of(reply.Heading("What if"), reply.Text(strings.Join(sentences, "; ")))
+	for _, state := range briefing.ByUrgency(chosen) {
+		after, _ := stateOf(whatIf.Works, state.Work.ID)
+		table.Rows = append(table.Rows, []string{briefing.Title(state), shortDate(state), shortDate(after)})
+	}
+	r.Add(table)
+	if len(chosen) == 1 {
+		after, _ := stateOf(whatIf.Works, chosen[0].Work.ID)
+		r.Add(reply.Text("As it stands\n"+strings.Join(briefing.Brief(chosen[0], base), "\n")),
+			reply.Text("What if\n"+strings.Join(briefing.Brief(after, whatIf), "\n")))
+	}
+	r.Add(reply.Text(briefing.AheadNote(base.Outlook)), reply.Text(briefing.Caution))
+	return r
+}
+
+func shortDate(state planner.WorkState) string {
+	facts, started := state.OwnFacts()
+	if !started {
+		return "not started"
+	}
+	return passageText(facts.Date())
+}
+
+// passageText is a date without its weekday, for tables.
+func passageText(passage planner.Passage) string {
+	if !passage.Known {
+		return "no date"
+	}
+	_, text, _ := strings.Cut(passage.Day.Short(), " ")
+	return text
+}
+
+// edits reads the changes that the request asks for.
+func (v visit) edits(chosen []planner.WorkState) ([]planner.Edit, error) {
+	from, err := v.day("warm-from", v.today)
+	if err != nil {
+		return nil, err
+	}
+	var edits []planner.Edit
+	set, err := v.typedDays(from)
+	if err != nil {
+		return nil, err
+	}
+	for _, day := range set {
+		edits = append(edits, planner.SetDay{Day: day.Day, HighC: day.HighC, LowC: day.LowC})
+	}
+	if byC, given := v.differenceC("warmer"); given {
+		days, _ := v.Values.Whole("warm-days")
+		edits = append(edits, planner.Warm{From: from, Days: days, ByC: byC})
+	}
+	forWork, err := v.workEdits(chosen)
+	if err != nil {
+		return nil, err
+	}
+	if edits = append(edits, forWork...); len(edits) == 0 {
+		return nil, planner.Problemf(planner.Missing, "What would change?").
+			WithHint("Add one of warmer:3, highs: and lows:, work-on:tomorrow, target:250.\n/whatif warmer:3")
+	}
+	return edits, nil
+}
+
+// workEdits are the edits of one work, which must then be the only one chosen.
+func (v visit) workEdits(chosen []planner.WorkState) ([]planner.Edit, error) {
+	if !v.Values.Has("work-on") && !v.Values.Has("target") {
+		if v.Values.Has("rate") {
+			return nil, planner.Problemf(planner.Missing, "A rate needs the day it is given.").WithHint("Add work-on:tomorrow.")
+		}
+		return nil, nil
+	}
+	if len(chosen) != 1 {
+		titles := namesOf(chosen, briefing.Title)
+		return nil, planner.Problemf(planner.Missing, "Which work?").
+			WithHint("Add surface: and work:. There is: %s.", strings.Join(titles, ", "))
+	}
+	state := chosen[0]
+	var edits []planner.Edit
+	if typed, given := v.Values.Degrees("target"); given {
+		target, err := v.target(state.Settings.Counting, typed)
+		if err != nil {
+			return nil, err
+		}
+		edits = append(edits, planner.SetTarget{Work: state.Work.ID, Name: briefing.Title(state), Target: target, Unit: state.Unit})
+	}
+	if v.Values.Has("work-on") {
+		day, err := v.day("work-on", v.today)
+		if err != nil {
+			return nil, err
+		}
+		rate, _ := v.Values.Number("rate")
+		edits = append(edits, planner.DoWork{Work: state.Work.ID, Name: briefing.Title(state), Day: day, NitrogenGM2: rate})
+	}
+	return edits, nil
+}
+
+// typedDays reads highs and lows, one a day from the first day on.
+func (v visit) typedDays(first planner.Day) ([]planner.HandDay, error) {
+	highs, hasHighs := v.Values.Numbers("highs")
+	lows, hasLows := v.Values.Numbers("lows")
+	if !hasHighs && !hasLows {
+		return nil, nil
+	}
+	if len(highs) != len(lows) {
+		return nil, planner.Problemf(planner.Invalid, "There are %d highs and %d lows.", len(highs), len(lows)).
+			WithHint(`Give one of each a day: highs:"29 30 28" lows:"18 19 18"`)
+	}
+	days := make([]planner.HandDay, len(highs))
+	for i := range highs {
+		days[i] = planner.HandDay{
+			Day:   first + planner.Day(i),
+			HighC: v.site.Units.TemperatureC(highs[i]), LowC: v.site.Units.TemperatureC(lows[i]),
+		}
+		if err := (planner.DailyReading{HighC: days[i].HighC, LowC: days[i].LowC}).Check(); err != nil {
+			return nil, planner.Problemf(planner.Invalid, "%s: %v", days[i].Day.Short(), err)
+		}
+	}
+	return days, nil
+}
+
+// target is a typed target in the unit of what is counted. On a site that
+// shows °F a bare number of degree days is asked back: it is often copied from
+// a paper in °C.
+func (v visit) target(counting planner.Counting, typed Degrees) (float64, error) {
+	if counting.Counts != planner.ByDegreeDays {
+		return typed.Value, nil
+	}
+	if typed.Unit == "" && v.site.Units == planner.Fahrenheit {
+		return 0, planner.Problemf(planner.Missing, "%g °F-days (= %.0f °C-days), or %g °C-days (= %.0f °F-days)?",
+			typed.Value, planner.Fahrenheit.DifferenceC(typed.Value), typed.Value, planner.Fahrenheit.Difference(typed.Value)).
+			WithHint("Write target:%gf or target:%gc.", typed.Value, typed.Value)
+	}
+	return v.unitsOf(typed).DifferenceC(typed.Value), nil
+}
+
+func textOr(v Values, option, fallback string) string {
+	if text, given := v.Text(option); given {
+		return text
+	}
+	return fallback
+}
+
+func counted(n int, one, many string) string {
+	if n == 1 {
+		return "1 " + one
+	}
+	return fmt.Sprintf("%d %s", n, many)
+}

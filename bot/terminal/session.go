@@ -1,0 +1,125 @@
+package terminal
+
+import (
+	"bufio"
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"io/fs"
+	"os"
+	"strings"
+	"time"
+
+	"swardbook/bot/command"
+	"swardbook/bot/reply"
+	"swardbook/planner"
+)
+
+// Session runs command lines for one caller and shows what they answer.
+type Session struct {
+	Table  command.Table
+	Caller command.Caller
+	// Now tells the time, as Request.Now and Request.LocalClock take it.
+	Now func() (now time.Time, localClock bool)
+	Out io.Writer // replies
+	Err io.Writer // errors, as text
+	// Dir is where files of replies are saved; empty is the working folder.
+	Dir   string
+	Width int  // columns of text; 0 is DefaultWidth
+	JSON  bool // one JSON object a command, errors too, on Out
+	// Confirm asks before a command acts: the reply then ends in the line that
+	// says yes. Without it commands act at once, as a script needs.
+	Confirm bool
+}
+
+// RunLine runs one command and says whether it went well.
+func (s *Session) RunLine(ctx context.Context, line string) (ok bool) {
+	result := s.run(ctx, line, !s.Confirm)
+	return s.show(result) == nil && result.Err == nil
+}
+
+// run runs one command and saves its files.
+func (s *Session) run(ctx context.Context, line string, confirmed bool) Result {
+	result := Result{Line: strings.TrimSpace(line), Width: s.Width}
+	req := s.request()
+	req.Line, req.Confirmed = result.Line, confirmed
+	result.Reply, result.Err = s.Table.Run(ctx, req)
+	if result.Err == nil {
+		result.Reply, result.Files, result.Err = saveFiles(s.Dir, result.Reply)
+	}
+	return result
+}
+
+func (s *Session) request() command.Request {
+	now, localClock := s.Now()
+	return command.Request{Caller: s.Caller, Now: now, LocalClock: localClock, OpenFile: openFile}
+}
+
+func (s *Session) show(result Result) error {
+	if s.JSON {
+		return JSON(s.Out, result)
+	}
+	if err := Render(s.Out, result.Reply, s.Width); err != nil || result.Err == nil {
+		return err
+	}
+	message, hint := reply.Wrong(result.Err)
+	told := reply.Of(reply.Text(message + "\n" + hint))
+	return Render(s.Err, told, s.Width)
+}
+
+// openFile opens a file by its path, for File options.
+func openFile(name string) (io.ReadCloser, error) {
+	file, err := os.Open(name)
+	if errors.Is(err, fs.ErrNotExist) {
+		return nil, planner.Problemf(planner.NotFound, "there is no file %s", name).
+			WithHint("Give its path from the folder you are in.").WithCause(err)
+	}
+	if err != nil {
+		return nil, planner.Problemf(planner.Refused, "the file %s cannot be opened", name).
+			WithHint("See that you may read it.").WithCause(err)
+	}
+	if info, err := file.Stat(); err != nil || info.IsDir() {
+		return nil, errors.Join(planner.Problemf(planner.Refused, "%s is a folder, not a file", name), file.Close())
+	}
+	return file, nil
+}
+
+// maxScriptLine is the longest line of a script that is read, in bytes; the
+// table of commands has a limit of its own, with a message of its own.
+const maxScriptLine = 1 << 20
+
+// RunScript runs a command a line and gives the number that failed. Blank
+// lines and comments (# at the start of a line, or after white space outside
+// quotes) are passed over. As text, each command is shown before its output.
+func (s *Session) RunScript(ctx context.Context, script io.Reader) (failed int) {
+	lines := bufio.NewScanner(script)
+	lines.Buffer(nil, maxScriptLine)
+	first := true
+	for lines.Scan() {
+		line := command.WithoutComment(strings.TrimPrefix(lines.Text(), "\ufeff"))
+		if line == "" {
+			continue
+		}
+		if ctx.Err() != nil {
+			return failed + 1
+		}
+		if !s.JSON {
+			if !first {
+				fmt.Fprintln(s.Out)
+			}
+			fmt.Fprintf(s.Out, "> %s\n", line)
+		}
+		first = false
+		if !s.RunLine(ctx, line) {
+			failed++
+		}
+	}
+	if err := lines.Err(); err != nil {
+		failed++
+		problem := planner.Problemf(planner.Refused, "the script cannot be read any further: %v", err).
+			WithHint("Give one command a line.").WithCause(err)
+		_ = s.show(Result{Err: problem, Width: s.Width}) // nowhere left to tell
+	}
+	return failed
+}

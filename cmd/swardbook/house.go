@@ -1,0 +1,125 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"log/slog"
+	"os"
+	"strings"
+	"time"
+
+	"github.com/spf13/cobra"
+
+	"swardbook/bot/command"
+	"swardbook/bot/reply"
+	"swardbook/planner"
+	"swardbook/planner/outlook"
+	"swardbook/storage"
+	"swardbook/storage/sqlite"
+)
+
+// platform names the teams of the terminal among those of chat servers.
+const platform = "terminal"
+
+// house is the program put together for one team.
+type house struct {
+	db   *sqlite.DB
+	desk command.Desk
+}
+
+// open puts the rooms together on a database file, which is made when it is
+// not there.
+func open(ctx context.Context, path, team string) (*house, error) {
+	if path == "" {
+		return nil, planner.Problemf(planner.Missing, "Which database?").
+			WithHint("Add --db course.db (it is made when it is not there), or set SWARDBOOK_DB.")
+	}
+	db, err := sqlite.Open(ctx, path)
+	if err != nil {
+		return nil, err
+	}
+	kept, err := db.Team(ctx, platform, team)
+	if err != nil {
+		return nil, errors.Join(err, db.Close())
+	}
+	book := planner.NewBook(kept, kept, storage.NewImporter(kept), outlook.Simple{})
+	return &house{db, command.Desk{Book: book, Version: version()}}, nil
+}
+
+func (h *house) close() error { return h.db.Close() }
+
+// table is the command table; what users are not shown goes to the error
+// output.
+func (h *house) table(errOut io.Writer) command.Table {
+	return h.desk.Table(slog.New(slog.NewTextHandler(errOut, nil)))
+}
+
+// place are the settings that every subcommand on a database takes: flags,
+// then the environment.
+type place struct{ db, team string }
+
+func (p *place) addTo(cmd *cobra.Command, env func(string) string) {
+	team := env("SWARDBOOK_TEAM")
+	if team == "" {
+		team = "home"
+	}
+	cmd.Flags().StringVar(&p.db, "db", env("SWARDBOOK_DB"), "database file, made when it is not there (SWARDBOOK_DB)")
+	cmd.Flags().StringVar(&p.team, "team", team, "team whose book it is (SWARDBOOK_TEAM)")
+}
+
+// clock is the time a session goes by: the machine's, or a fixed one by the
+// site's own clock.
+func clock(text string) (func() (time.Time, bool), error) {
+	if text == "" {
+		return func() (time.Time, bool) { return time.Now(), false }, nil
+	}
+	for _, layout := range []string{"2006-01-02T15:04", "2006-01-02T15:04:05", "2006-01-02"} {
+		if at, err := time.Parse(layout, text); err == nil {
+			return func() (time.Time, bool) { return at, true }, nil
+		}
+	}
+	return nil, planner.Problemf(planner.Invalid, "--now %q is not a time.", text).
+		WithHint("Write the site's local time like 2013-07-01T05:30.")
+}
+
+// role reads the role a terminal user acts in.
+func role(text string) (command.Role, error) {
+	for _, role := range []command.Role{command.Crew, command.Lead} {
+		if text == role.String() {
+			return role, nil
+		}
+	}
+	return command.Crew, planner.Problemf(planner.Invalid, "--as %q is not a role.", text).WithHint("Use --as crew or --as lead.")
+}
+
+// caller is the person at the terminal.
+func caller(as command.Role, env func(string) string) command.Caller {
+	for _, key := range []string{"USER", "LOGNAME", "USERNAME"} {
+		if name := env(key); name != "" {
+			return command.Caller{ID: "terminal:" + name, Name: name, Role: as}
+		}
+	}
+	return command.Caller{ID: "terminal", Name: "terminal", Role: as}
+}
+
+// tell writes an error for a person: what is wrong, then what to do.
+func tell(w io.Writer, err error) {
+	message, hint := reply.Wrong(err)
+	var problem *planner.Problem
+	if !errors.As(err, &problem) {
+		message, hint = err.Error(), "" // a flag or argument that cobra refused, or the system's own words
+	}
+	fmt.Fprintln(w, strings.TrimRight(message+"\n"+hint, "\n"))
+}
+
+// isTerminal reports whether the stream is a person's terminal.
+func isTerminal(stream any) bool {
+	file, ok := stream.(*os.File)
+	if !ok {
+		return false
+	}
+	info, err := file.Stat()
+	return err == nil && info.Mode()&os.ModeCharDevice != 0
+}

@@ -1,0 +1,190 @@
+package planner
+
+import "fmt"
+
+// Edit is one change of a plan, as a what-if asks for it. It prints itself as
+// a sentence.
+type Edit interface {
+	// Sentence says what the edit does, temperatures in the units.
+	Sentence(Units) string
+	// apply returns the plan changed; a plan it cannot change is a *Problem.
+	// The plan given is left as it was.
+	apply(Plan) (Plan, error)
+}
+
+// Apply makes the edits in order and returns the plan changed, beside the
+// edits that were refused and why; the plan given is left as it was.
+func Apply(plan Plan, edits ...Edit) (Plan, []error) {
+	var refusals []error
+	for _, edit := range edits {
+		changed, err := edit.apply(plan)
+		if err != nil {
+			refusals = append(refusals, fmt.Errorf("%s: %w", edit.Sentence(plan.Site.Units), err))
+			continue
+		}
+		plan = changed
+	}
+	return plan, refusals
+}
+
+// Warm makes days ahead warmer, or cooler when ByC is below 0, on the path and
+// on every member.
+type Warm struct {
+	From Day
+	Days int // 0 means to the end of the days ahead
+	ByC  float64
+}
+
+// Sentence says what the edit does, like "3 °C warmer for 5 days from Mon 1 Jul".
+func (w Warm) Sentence(units Units) string {
+	by, than := units.Difference(w.ByC), "warmer"
+	if by < 0 {
+		by, than = -by, "cooler"
+	}
+	span := "from " + w.From.Short() + " on"
+	if w.Days > 0 {
+		span = fmt.Sprintf("for %d %s from %s", w.Days, plural(w.Days, "day"), w.From.Short())
+	}
+	return fmt.Sprintf("%s %s %s %s", number(by), units.Degree(), than, span)
+}
+
+// maxWarmC bounds what a what-if may add to a temperature.
+const maxWarmC = 30
+
+func (w Warm) apply(plan Plan) (Plan, error) {
+	if !(w.ByC >= -maxWarmC && w.ByC <= maxWarmC) || w.Days < 0 {
+		return plan, Problemf(Invalid, "%g °C warmer is no weather", w.ByC).WithHint("Give -%d to %d °C.", maxWarmC, maxWarmC)
+	}
+	if w.From < plan.AsOf {
+		return plan, Problemf(Invalid, "%s is past: its weather is known", w.From.Short()).WithHint("Change days from today on.")
+	}
+	end := plan.Outlook.end()
+	if w.Days > 0 {
+		end = min(end, w.From+Day(w.Days))
+	}
+	return plan.withAhead(func(day DayFacts) DayFacts {
+		if day.Day < w.From || day.Day >= end {
+			return day
+		}
+		return day.Warmer(w.ByC)
+	}), nil
+}
+
+// SetDay puts a day ahead at a high and a low, on the path and every member.
+type SetDay struct {
+	Day   Day
+	HighC float64
+	LowC  float64
+}
+
+// Sentence says what the edit does, like "Mon 1 Jul at 29/18 °C".
+func (s SetDay) Sentence(units Units) string {
+	return fmt.Sprintf("%s at %s/%s %s", s.Day.Short(), number(units.Temperature(s.HighC)), number(units.Temperature(s.LowC)), units.Degree())
+}
+
+func (s SetDay) apply(plan Plan) (Plan, error) {
+	if err := (DailyReading{Day: s.Day, HighC: s.HighC, LowC: s.LowC}).Check(); err != nil {
+		return plan, Problemf(Invalid, "%v", err)
+	}
+	if s.Day < plan.AsOf || s.Day >= plan.Outlook.end() {
+		return plan, Problemf(Invalid, "%s is not among the days ahead", s.Day.Short())
+	}
+	return plan.withAhead(func(day DayFacts) DayFacts {
+		if day.Day != s.Day {
+			return day
+		}
+		return HandDay{Day: s.Day, HighC: s.HighC, LowC: s.LowC}.Facts()
+	}), nil
+}
+
+// Facts is the day as it was typed: high, low and their mean, no hours.
+func (h HandDay) Facts() DayFacts {
+	return DayFacts{Day: h.Day, HasExtremes: true, HighC: h.HighC, LowC: h.LowC, ExtremesFrom: FromHand}
+}
+
+// withAhead maps every day ahead, path and members.
+func (p Plan) withAhead(change func(DayFacts) DayFacts) Plan {
+	mapped := func(days []DayFacts) []DayFacts {
+		out := make([]DayFacts, len(days))
+		for i, day := range days {
+			out[i] = change(day)
+		}
+		return out
+	}
+	outlook := p.Outlook
+	outlook.Path = mapped(outlook.Path)
+	outlook.Members = make([][]DayFacts, len(p.Outlook.Members))
+	for i, member := range p.Outlook.Members {
+		outlook.Members[i] = mapped(member)
+	}
+	p.Outlook = outlook
+	return p
+}
+
+// DoWork logs a pass of a work on a day, past or ahead.
+type DoWork struct {
+	Work        WorkID
+	Name        string // how the sentence names it
+	Day         Day
+	NitrogenGM2 float64
+}
+
+// Sentence says what the edit does, like "greens feed done on Mon 1 Jul at 2 g N/m²".
+func (d DoWork) Sentence(Units) string {
+	if d.NitrogenGM2 > 0 {
+		return fmt.Sprintf("%s done on %s at %s g N/m²", d.Name, d.Day.Short(), number(d.NitrogenGM2))
+	}
+	return fmt.Sprintf("%s done on %s", d.Name, d.Day.Short())
+}
+
+func (d DoWork) apply(plan Plan) (Plan, error) {
+	entry := Entry{Site: plan.Site.ID, Day: d.Day, Passes: []Pass{{Work: d.Work, NitrogenGM2: d.NitrogenGM2}}}
+	if err := entry.Check(); err != nil {
+		return plan, err
+	}
+	if d.Day >= plan.Outlook.end() {
+		return plan, Problemf(Invalid, "%s is beyond the days ahead", d.Day.Short())
+	}
+	at := len(plan.Log)
+	for at > 0 && plan.Log[at-1].Day > d.Day {
+		at--
+	}
+	log := make([]Entry, 0, len(plan.Log)+1)
+	log = append(log, plan.Log[:at]...)
+	log = append(log, entry)
+	plan.Log = append(log, plan.Log[at:]...)
+	return plan, nil
+}
+
+// SetTarget gives a work another target.
+type SetTarget struct {
+	Work   WorkID
+	Name   string // how the sentence names it
+	Target float64
+	Unit   Unit
+}
+
+// Sentence says what the edit does, like "greens regulator at 250 °C-days".
+func (s SetTarget) Sentence(units Units) string {
+	target, unit := units.Show(s.Target, s.Unit)
+	return fmt.Sprintf("%s at %s %s", s.Name, number(target), unit)
+}
+
+func (s SetTarget) apply(plan Plan) (Plan, error) {
+	works := make([]Work, len(plan.Works))
+	copy(works, plan.Works)
+	for i, work := range works {
+		if work.ID != s.Work {
+			continue
+		}
+		settings := work.Settings.On(plan.AsOf)
+		settings.Target, settings.Latest = s.Target, 0
+		if err := settings.check(); err != nil {
+			return plan, err
+		}
+		works[i].Settings = work.Settings.With(plan.AsOf, settings)
+		plan.Works = works
+		return plan, nil
+	}
+	return plan, Problemf(NotFound, "the plan has no such work")
+}

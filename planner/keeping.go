@@ -1,0 +1,123 @@
+package planner
+
+import (
+	"context"
+	"io"
+	"time"
+)
+
+// Setup is everything a team has set up that is not archived, each list in the
+// order in which it was added.
+type Setup struct {
+	Sites    []Site
+	Stations []Station
+	Surfaces []Surface
+	Works    []Work
+	Totals   []Total
+}
+
+// Stamp says who changes something, when, and by which command line.
+type Stamp struct {
+	At      time.Time
+	By      string
+	Command string
+	Undoes  ChangeID // the change that this one takes back; 0 for none
+}
+
+// Change is one row of the change log.
+type Change struct {
+	ID ChangeID
+	Stamp
+	Kind   string // of the noun
+	Thing  int64  // its id
+	Before Noun   // nil when the noun is new
+	After  Noun
+}
+
+// Keeper keeps the set-up and the work log of one team.
+type Keeper interface {
+	// Setup returns all that is set up and not archived.
+	Setup(ctx context.Context) (Setup, error)
+	// Entries returns the site's log, undone entries left out, by day and then
+	// in the order logged.
+	Entries(ctx context.Context, site SiteID) ([]Entry, error)
+	// Save checks and keeps a noun and its row of the change log in one
+	// transaction, and returns the noun with its id. A name in use under the
+	// same parent (ignoring case) is a Taken problem, a parent that is not
+	// there or is archived a NotFound problem; then nothing is kept.
+	Save(ctx context.Context, stamp Stamp, noun Noun) (Noun, error)
+	// Changes returns the newest changes, newest first, at most limit; kind
+	// limits them to one kind of noun, "" takes all.
+	Changes(ctx context.Context, kind string, limit int) ([]Change, error)
+}
+
+// Recorder keeps the weather of one team.
+type Recorder interface {
+	// Record returns the whole weather record of the site: that of its first
+	// station by rank. No station or no readings is an empty record.
+	Record(ctx context.Context, site SiteID) (Record, error)
+	// Revision returns the Revision the record has now, without loading it.
+	Revision(ctx context.Context, site SiteID) (int64, error)
+	// SaveAhead keeps days ahead typed by hand, issued on the day; they replace
+	// earlier ones of the same days from the issue day on. A day with neither
+	// high nor low known (Cleared) takes a typed day back.
+	SaveAhead(ctx context.Context, stamp Stamp, site SiteID, issued Day, days []HandDay) error
+	// Ahead returns the days typed by hand that hold on the day asOf: of each
+	// day from asOf on the newest typed on or before asOf, in order, cleared
+	// ones left out.
+	Ahead(ctx context.Context, site SiteID, asOf Day) ([]HandDay, error)
+}
+
+// Importer reads station files into the record.
+type Importer interface {
+	// Import reads one file: into the record, or not at all. A file that cannot
+	// be used (header not understood, nothing in it, more than 5 % of its rows
+	// refused) is a Refused problem and leaves the record as it was.
+	Import(ctx context.Context, request ImportRequest) (ImportReport, error)
+}
+
+// HandDay is one day ahead typed by hand.
+type HandDay struct {
+	Day     Day
+	HighC   float64
+	LowC    float64
+	Cleared bool
+}
+
+// ImportRequest asks to read one station file.
+type ImportRequest struct {
+	Stamp
+	Station  StationID
+	FileName string    // as the user named it; kept, never used as a path
+	Content  io.Reader // read once, to its end
+	Units    Units     // "" lets the header say, °C when it does not
+	// Progress, when not nil, is called now and then with the rows read so far.
+	Progress func(rows int)
+}
+
+// ImportReport says what became of a station file.
+type ImportReport struct {
+	Format  string // "readings" or "daily"
+	Units   Units
+	Clock   string // how the times were read, in words: "offset in the file", "site standard time"
+	Rows    int    // data rows of the file
+	New     int    // rows that were not in the record
+	Changed int    // rows that replaced another value
+	Same    int    // rows already in the record with this value
+	Empty   int    // rows whose value the file says is missing
+	Refused int    // rows that could not be used
+	// Refusals holds the first refused row of each reason and, up to a bound,
+	// the rest, in line order.
+	Refusals []Refusal
+	From, To Day // first and last day of the readings taken; meaningless when none was
+}
+
+// Taken is the number of rows that are in the record after the import.
+func (r ImportReport) Taken() int { return r.New + r.Changed + r.Same }
+
+// Refusal is one refused row of a file.
+type Refusal struct {
+	Line   int    // counted from 1, the header included
+	Value  string // the offending value, cut to a sane length
+	Reason string // why, in words
+}

@@ -1,0 +1,101 @@
+package planner
+
+import (
+	"slices"
+
+	"swardbook/calc"
+)
+
+// degreeDays counts accumulated temperature above a base, °C-days.
+type degreeDays struct {
+	method     calc.Method
+	thresholds calc.Thresholds
+}
+
+func newDegreeDays(c Counting) (Measure, error) {
+	m := degreeDays{c.Method, c.Thresholds}
+	if m.method == "" {
+		m.method = calc.MethodMean
+	}
+	if !slices.Contains(calc.Methods(), m.method) {
+		return nil, Problemf(Invalid, "%q is not a degree-day method", m.method)
+	}
+	// A trial day shows whether method and limits go together.
+	trial := DayFacts{HasExtremes: true, HighC: 20, LowC: 10, HasHourly: true, HourlyC: 15, HoursC: []float64{15}}
+	if _, err := m.own(trial, trial, Midrange); err != nil {
+		return nil, err
+	}
+	return m, nil
+}
+
+func (m degreeDays) Units(day, next DayFacts, basis Basis) (float64, Standing) {
+	units, standing, err := m.units(day, next, basis)
+	if err != nil {
+		return 0, Nothing
+	}
+	return units, standing
+}
+
+// units takes the method's own input where the day has it; else high and low
+// stand in through the single sine, and a mean alone as a flat day.
+func (m degreeDays) units(day, next DayFacts, basis Basis) (float64, Standing, error) {
+	switch {
+	case m.method == calc.MethodMean:
+		meanC, standing := meanOrOther(day, basis)
+		if standing == Nothing {
+			return 0, Nothing, nil
+		}
+		units, err := calc.DegreeDaysFromMean(meanC, m.thresholds)
+		return units, standing, err
+	case m.method == calc.MethodDegreeHours && day.HoursC == nil && day.HasExtremes:
+		units, err := calc.DegreeDaysSingleSine(day.HighC, day.LowC, m.thresholds)
+		return units, StandIn, err
+	case m.method == calc.MethodDegreeHours && day.HoursC != nil, m.method != calc.MethodDegreeHours && day.HasExtremes:
+		units, err := m.own(day, next, basis)
+		return units, Own, err
+	case day.HasHourly:
+		units, err := calc.DegreeDaysSingleSine(day.HourlyC, day.HourlyC, m.thresholds)
+		return units, StandIn, err
+	}
+	return 0, Nothing, nil
+}
+
+// own computes the method on its own input, which the day must have.
+func (m degreeDays) own(day, next DayFacts, basis Basis) (float64, error) {
+	nextLowC := day.LowC // a night not known yet is taken as this one
+	if next.HasExtremes {
+		nextLowC = next.LowC
+	}
+	switch m.method {
+	case calc.MethodMean:
+		meanC, _ := meanOrOther(day, basis)
+		return calc.DegreeDaysFromMean(meanC, m.thresholds)
+	case calc.MethodFlooredExtremes:
+		return calc.DegreeDaysFlooredExtremes(day.HighC, day.LowC, m.thresholds)
+	case calc.MethodFourCase:
+		return calc.DegreeDaysFourCase(day.HighC, day.LowC, m.thresholds)
+	case calc.MethodSingleTriangle:
+		return calc.DegreeDaysSingleTriangle(day.HighC, day.LowC, m.thresholds)
+	case calc.MethodDoubleTriangle:
+		return calc.DegreeDaysDoubleTriangle(day.HighC, day.LowC, nextLowC, m.thresholds)
+	case calc.MethodSingleSine:
+		return calc.DegreeDaysSingleSine(day.HighC, day.LowC, m.thresholds)
+	case calc.MethodDoubleSine:
+		return calc.DegreeDaysDoubleSine(day.HighC, day.LowC, nextLowC, m.thresholds)
+	default:
+		return calc.DegreeDaysFromHours(day.HoursC, m.thresholds)
+	}
+}
+
+func (m degreeDays) Bases() []Basis {
+	switch m.method {
+	case calc.MethodMean:
+		return bothMeans()
+	case calc.MethodDegreeHours:
+		return []Basis{Readings}
+	default:
+		return []Basis{Extremes}
+	}
+}
+
+func (m degreeDays) Unit() Unit { return DegreeDays }

@@ -1,0 +1,89 @@
+package planner
+
+// Outlook is every day ahead: one path, which sheets compute on, and members,
+// whose spread says how sure a date is.
+type Outlook struct {
+	AsOf Day // the first day ahead
+	// Start is the first day that path and members cover: AsOf, or the first
+	// day before it that is missing from the record and too long a gap for a
+	// straight line, so that a date never runs late for missing days.
+	Start Day
+	Path  []DayFacts
+	// Members are as long as Path; there is at least one. With a single member
+	// no spread is known.
+	Members [][]DayFacts
+	Typed   int // days from AsOf on that were typed by hand
+	Years   int // past years among the members; 0 when the last days stand for all
+	// Engine is the number of the engine that made it, kept with what is issued.
+	Engine int
+}
+
+// SpreadKnown reports whether early and late dates mean anything.
+func (o Outlook) SpreadKnown() bool { return len(o.Members) > 1 }
+
+// end is the day after the last day covered.
+func (o Outlook) end() Day { return o.Start + Day(len(o.Path)) }
+
+// at returns a day of the path or of a member; an empty day outside it.
+func (o Outlook) at(days []DayFacts, day Day) DayFacts {
+	if i := int(day - o.Start); i >= 0 && i < len(days) {
+		return days[i]
+	}
+	return DayFacts{Day: day}
+}
+
+// Ahead makes the days ahead of a record.
+type Ahead interface {
+	// Outlook returns the days ahead of the day asOf, from the record up to
+	// the day before and from days typed by hand. An empty record with nothing
+	// typed gives days of which nothing is known.
+	Outlook(record Record, hand []HandDay, asOf Day) Outlook
+}
+
+// Plan is all that figures are computed from: one site on one morning.
+type Plan struct {
+	Site     Site
+	AsOf     Day // figures stand on readings up to the day before
+	Record   Record
+	Surfaces []Surface
+	Works    []Work // of all surfaces
+	Totals   []Total
+	Log      []Entry // by day, undone entries left out
+	Outlook  Outlook
+}
+
+// Surface returns the surface with the id.
+func (p Plan) Surface(id SurfaceID) (Surface, bool) {
+	for _, surface := range p.Surfaces {
+		if surface.ID == id {
+			return surface, true
+		}
+	}
+	return Surface{}, false
+}
+
+// WorksOn returns the works of the surface.
+func (p Plan) WorksOn(id SurfaceID) []Work {
+	var works []Work
+	for _, work := range p.Works {
+		if work.Surface == id {
+			works = append(works, work)
+		}
+	}
+	return works
+}
+
+// LastDone returns the newest entry of the work.
+func (p Plan) LastDone(id WorkID) (Entry, bool) {
+	for i := len(p.Log) - 1; i >= 0; i-- {
+		if _, ok := p.Log[i].Of(id); ok {
+			return p.Log[i], true
+		}
+	}
+	return Entry{}, false
+}
+
+// turfOf returns what grows on the surface on each day. Settings that hold on
+// the plan's morning count: a plan of a past morning is computed with what was
+// set up then.
+func turfOf(surface Surface) func(Day) Turf { return surface.Turf.On }

@@ -1,0 +1,155 @@
+package intake
+
+import (
+	"bytes"
+	"errors"
+	"fmt"
+	"io"
+	"strings"
+	"unicode"
+	"unicode/utf8"
+
+	"swardbook/planner"
+)
+
+// The two things a station file holds, as File.Format names them.
+const (
+	Readings = "readings" // one temperature at one time a row
+	Daily    = "daily"    // a day's high and low a row
+)
+
+// How the times of a file were read, as File.Clock says it.
+const (
+	ClockOffset = "offset in the file"
+	ClockSite   = "site standard time"
+	ClockMixed  = "offset in the file, site standard time where there is none"
+	ClockDates  = "dates only"
+)
+
+// Site is what intake needs to know of the site.
+type Site struct {
+	// OffsetSeconds is the site's standard time, east of UTC positive; times
+	// written without an offset are in it, all year.
+	OffsetSeconds int
+}
+
+// Row is one data row of a file that can be used.
+type Row struct {
+	Line  int  // counted from 1, the header included; of a row over several lines its first
+	Daily bool // Day holds the row, else Reading does
+	// Empty rows hold no value: the file says that it is missing. Only the time
+	// or the day is filled in.
+	Empty   bool
+	Reading planner.Reading
+	Day     planner.DailyReading
+}
+
+// RowError is a row that cannot be used. Reading goes on after it. Its Reason
+// is one of a fixed set of sentences, without the value, so that rows can be
+// counted by it.
+type RowError struct {
+	planner.Refusal
+}
+
+// Error names the line, the value and the reason.
+func (e *RowError) Error() string {
+	return fmt.Sprintf("line %d: %q: %s", e.Line, e.Value, e.Reason)
+}
+
+// File is an open station file.
+type File struct {
+	Format string        // Readings or Daily
+	Units  planner.Units // of the file; rows are in °C all the same
+	rows   rowSource
+}
+
+// rowSource is what a format gives back: the rows after the header.
+type rowSource interface {
+	next() (Row, error)
+	clock() string
+}
+
+// format is one kind of station file.
+type format struct {
+	name string
+	// recognise looks at the file's first bytes, at most headBytes of them.
+	recognise func(head []byte) bool
+	open      func(lines *lineReader, site Site, units planner.Units) (*File, error)
+}
+
+// formats is the table of formats, asked in order.
+var formats = []format{
+	{name: "CSV with a header, ISO dates", recognise: recogniseCSV, open: openCSV},
+}
+
+const headerHint = "A first line that works, with commas: time,temp_c for readings, or date,high_c,low_c for daily highs and lows."
+
+// Open reads a station file up to its first data row. units is the unit of a
+// file whose header names none; "" stands for °C. A header that names the other
+// unit than units, one that is not understood, a file that is empty, binary or
+// has a line over 1 MiB is a planner.Problem of the kind Refused; a read error
+// comes back wrapped.
+func Open(content io.Reader, site Site, units planner.Units) (*File, error) {
+	if units != "" && units != planner.Celsius && units != planner.Fahrenheit {
+		return nil, planner.Problemf(planner.Invalid, "units %q are not known", units).
+			WithHint("Use units:c or units:f, or leave them out where the header names the unit.")
+	}
+	if site.OffsetSeconds < -maxOffsetSeconds || site.OffsetSeconds > maxOffsetSeconds {
+		return nil, planner.Problemf(planner.Invalid, "an offset of %d seconds from UTC is not on earth", site.OffsetSeconds)
+	}
+	lines := newLineReader(content)
+	head, err := lines.head()
+	if err != nil {
+		return nil, err
+	}
+	if bytes.IndexByte(head[:min(len(head), binaryBytes)], 0) >= 0 {
+		return nil, planner.Problemf(planner.Refused, "the file is not a text file").
+			WithHint("Save it as CSV (comma separated, UTF-8) and send that.")
+	}
+	if len(bytes.TrimSpace(head)) == 0 && lines.atEnd() {
+		return nil, planner.Problemf(planner.Refused, "the file is empty").WithHint("%s", headerHint)
+	}
+	for _, format := range formats {
+		if format.recognise(head) {
+			return format.open(lines, site, units)
+		}
+	}
+	return nil, planner.Problemf(planner.Refused, "the first line %q is not a header that can be read", cut(firstLine(head))).
+		WithHint("%s", headerHint)
+}
+
+// Next returns the next row. io.EOF ends the file; a *RowError is a row that
+// cannot be used, after which reading goes on; any other error ends it.
+func (f *File) Next() (Row, error) { return f.rows.next() }
+
+// Clock says in words how the times of the rows read so far were read: one of
+// ClockOffset, ClockSite, ClockMixed and ClockDates; "" before the first time.
+func (f *File) Clock() string { return f.rows.clock() }
+
+// IsRowError returns the refused row in the error, if it is one.
+func IsRowError(err error) (*RowError, bool) {
+	var row *RowError
+	ok := errors.As(err, &row)
+	return row, ok
+}
+
+// longestValue is how much of an offending value is shown, in characters:
+// enough to find it, little enough for a phone.
+const longestValue = 60
+
+// cut makes a value from a file fit to be shown: printable characters alone, as
+// a terminal would obey others, and at most longestValue of them.
+func cut(value []byte) string {
+	// No character is longer than 4 bytes, so the rest cannot be shown.
+	shown := value[:min(len(value), utf8.UTFMax*(longestValue+1))]
+	text := strings.Map(func(r rune) rune {
+		if !unicode.IsPrint(r) {
+			return utf8.RuneError
+		}
+		return r
+	}, string(shown))
+	if runes := []rune(text); len(runes) > longestValue {
+		return string(runes[:longestValue-1]) + "…"
+	}
+	return text
+}

@@ -1,0 +1,136 @@
+package sqlite
+
+import (
+	"context"
+	"database/sql"
+	"errors"
+	"fmt"
+	"io/fs"
+	"os"
+	"path/filepath"
+
+	"github.com/pressly/goose/v3"
+
+	"swardbook/planner"
+)
+
+const (
+	// versionTable is where the migrations that a file has had are kept.
+	versionTable = "schema_version"
+
+	// applicationID marks a file as ours: "SWRD" in the header field that
+	// SQLite keeps for it. Files with another mark are refused.
+	applicationID = 0x53575244
+
+	// migrationTries bounds how often a migration is tried again that another
+	// program, opening the same file, was first with.
+	migrationTries = 3
+)
+
+// checkPath returns the absolute path, or says what to do about it.
+func checkPath(path string) (string, error) {
+	if path == "" {
+		return "", planner.Problemf(planner.Missing, "no file is named for the store").
+			WithHint("Name one, like swardbook.db.")
+	}
+	absolute, err := filepath.Abs(path)
+	if err != nil {
+		return "", fmt.Errorf("open store: %w", err)
+	}
+	folder := filepath.Dir(absolute)
+	if info, err := os.Stat(folder); err != nil || !info.IsDir() {
+		return "", planner.Problemf(planner.NotFound, "there is no folder %s", folder).
+			WithHint("Make the folder first, or name a file in another one.").WithCause(err)
+	}
+	if info, err := os.Stat(absolute); err == nil && info.IsDir() {
+		return "", planner.Problemf(planner.Invalid, "%s is a folder", absolute).
+			WithHint("Name a file in it, like %s.", filepath.Join(absolute, "swardbook.db"))
+	}
+	return absolute, nil
+}
+
+// migrate brings the file to the newest of the migrations.
+func migrate(ctx context.Context, writer *sql.DB, path string, migrations fs.FS) error {
+	provider, err := goose.NewProvider(goose.DialectSQLite3, writer, migrations,
+		goose.WithTableName(versionTable), goose.WithDisableGlobalRegistry(true), goose.WithLogger(goose.NopLogger()))
+	if err != nil {
+		return fmt.Errorf("read migrations: %w", err)
+	}
+	sources := provider.ListSources()
+	target := sources[len(sources)-1].Version
+	version, err := inspect(ctx, path)
+	switch {
+	case err != nil:
+		return storeError("look at the file", err)
+	case version > target:
+		return planner.Problemf(planner.Refused, "%s was written by a newer program (schema %d, this one knows %d)", path, version, target).
+			WithHint("Use the newer program; the file was not changed.")
+	case version == target:
+		return nil
+	case version > 0:
+		if err := copyBefore(ctx, writer, path, target); err != nil {
+			return storeError("copy the file before migrating", err)
+		}
+	}
+	return storeError("migrate", migrateUp(ctx, writer, provider))
+}
+
+// migrateUp applies what is missing. When another program is at the same, one
+// of the two finds a table that is already there; it looks again.
+func migrateUp(ctx context.Context, writer *sql.DB, provider *goose.Provider) error {
+	if _, err := writer.ExecContext(ctx, fmt.Sprintf("PRAGMA application_id = %d", applicationID)); err != nil {
+		return err
+	}
+	var err error
+	for range migrationTries {
+		if _, err = provider.Up(ctx); err == nil {
+			return nil
+		}
+	}
+	return err
+}
+
+// inspect returns the schema version of the file, 0 for a file that is not
+// there or has nothing in it, and changes nothing.
+func inspect(ctx context.Context, path string) (version int64, err error) {
+	if info, err := os.Stat(path); errors.Is(err, fs.ErrNotExist) || err == nil && info.Size() == 0 {
+		return 0, nil
+	}
+	pool, err := sql.Open(driverName, lookDSN(path))
+	if err != nil {
+		return 0, err
+	}
+	defer pool.Close()
+	var mark, tables, versions int64
+	err = pool.QueryRowContext(ctx, `SELECT (SELECT application_id FROM pragma_application_id),
+		count(*), coalesce(sum(name = ?), 0) FROM sqlite_schema`, versionTable).Scan(&mark, &tables, &versions)
+	if err != nil {
+		return 0, err
+	}
+	if mark != applicationID && (mark != 0 || tables > 0) {
+		return 0, planner.Problemf(planner.Refused, "%s is a database of another program", path).
+			WithHint("Name another file; this one was not changed.")
+	}
+	if versions == 0 {
+		return 0, nil
+	}
+	err = pool.QueryRowContext(ctx, `SELECT coalesce(max(version_id), 0) FROM `+versionTable+` WHERE is_applied`).Scan(&version)
+	return version, err
+}
+
+// copyBefore writes a copy of the file beside it, whole or not at all.
+func copyBefore(ctx context.Context, writer *sql.DB, path string, target int64) error {
+	draft, err := os.CreateTemp(filepath.Dir(path), filepath.Base(path)+".copy-*")
+	if err != nil {
+		return err
+	}
+	name := draft.Name()
+	defer os.Remove(name) // gone already when all went well
+	if err := draft.Close(); err != nil {
+		return err
+	}
+	if _, err := writer.ExecContext(ctx, "VACUUM INTO ?", name); err != nil {
+		return err
+	}
+	return os.Rename(name, fmt.Sprintf("%s.before-%d", path, target))
+}
