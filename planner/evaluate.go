@@ -205,9 +205,9 @@ func (s Sum) Notes() []string {
 		days int
 		what string
 	}{
-		{s.Missing, "missing: the total is \"at least\""},
+		{s.Missing, "missing"},
 		{s.StandIn, "on the other mean"},
-		{s.Line, "on a straight line between neighbours"},
+		{s.Line, "on a straight line"},
 	} {
 		if part.days > 0 {
 			notes = append(notes, fmt.Sprintf("%d %s %s", part.days, plural(part.days, "day"), part.what))

@@ -11,6 +11,9 @@ type Sum struct {
 	Missing int // days left out: the total is "at least"
 }
 
+// AllStandIn reports whether no day of the sum stands on its own basis.
+func (s Sum) AllStandIn() bool { return s.StandIn > 0 && s.StandIn+s.Line+s.Missing == s.Days }
+
 // longestLine is the longest run of missing days that a straight line between
 // their neighbours fills in a sum (common practice; older WMO completeness
 // rules allow no more than three consecutive days).

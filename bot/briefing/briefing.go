@@ -74,41 +74,99 @@ func dateOf(state planner.WorkState) planner.Day {
 // Title names a work with its surface.
 func Title(state planner.WorkState) string { return state.Surface.Name + " " + state.Work.Name }
 
-// Brief is a work in two to four short lines: when, how sure, how far the
-// count is, and the other mean's date where it differs.
+// Brief is a work in three or four short lines: when, how sure, how far the
+// count is, on which mean, and the other mean's date where it differs.
 func Brief(state planner.WorkState, e planner.Evaluation) []string {
 	facts, started := state.OwnFacts()
 	if !started {
 		return []string{Title(state) + ": not started", "log the last one with /done"}
 	}
-	lines := []string{Title(state) + ": " + When(state, e.AsOf)}
-	if sure := HowSure(facts, e.AsOf); sure != "" {
-		lines = append(lines, sure)
+	lines := []string{Title(state) + ": " + headline(state, facts)}
+	if soon := soonAndSure(state, facts, e.AsOf); soon != "" {
+		lines = append(lines, soon)
 	}
 	lines = append(lines, Progress(state, facts, e))
-	if other := OtherMean(state, e.AsOf); other != "" {
-		lines = append(lines, other)
+	if mean := whichMean(state, facts); mean != "" {
+		lines = append(lines, mean)
 	}
-	return lines
+	return append(lines, facts.Total.Notes()...)
+}
+
+// headline is the date, or how the work stands.
+func headline(state planner.WorkState, facts planner.DueFacts) string {
+	switch state.Status {
+	case planner.Overdue:
+		return "OVERDUE"
+	case planner.Due:
+		return "due"
+	case planner.DueToday:
+		return "due today"
+	case planner.NoDate:
+		return "no date"
+	}
+	return facts.Date().Day.Short()
+}
+
+func soonAndSure(state planner.WorkState, facts planner.DueFacts, asOf planner.Day) string {
+	date := facts.Date()
+	switch {
+	case !date.Known:
+		return "not within a year"
+	case date.Day < asOf:
+		return fmt.Sprintf("since %s, %s ago", date.Day.Short(), Days(int(asOf-date.Day)))
+	}
+	sure := HowSure(facts, asOf)
+	if date.Day == asOf {
+		return sure
+	}
+	text := "in " + Days(int(date.Day-asOf))
+	if sure != "" {
+		text += ", " + sure
+	}
+	return text
+}
+
+// whichMean says which mean the date stands on, and the other mean's date
+// where it differs.
+func whichMean(state planner.WorkState, facts planner.DueFacts) string {
+	if facts.Basis == planner.NoBasis {
+		return ""
+	}
+	text := facts.Basis.Words()
+	other, ok := state.OtherFacts()
+	switch {
+	case !ok || facts.Date() == other.Date():
+		return text
+	case !other.Date().Known:
+		return text + "; " + shortBasis(other.Basis) + ": no date"
+	}
+	return text + "; " + shortBasis(other.Basis) + ": " + DayMonth(other.Date().Day)
+}
+
+// shortBasis names a mean beside the other one.
+func shortBasis(basis planner.Basis) string { return strings.TrimSuffix(basis.Words(), " mean") }
+
+// DayMonth writes a day without its weekday: "4 Jun".
+func DayMonth(day planner.Day) string {
+	_, text, _ := strings.Cut(day.Short(), " ")
+	return text
 }
 
 // When says when the work falls or fell due.
 func When(state planner.WorkState, asOf planner.Day) string {
 	facts, started := state.OwnFacts()
-	date := facts.Date()
-	switch {
+	switch date := facts.Date(); {
 	case !started:
 		return "not started"
 	case !date.Known:
 		return "no date within a year"
-	case state.Status == planner.Overdue:
-		return "OVERDUE since " + date.Day.Short()
-	case state.Status == planner.Due:
+	case date.Day < asOf:
 		return "due since " + date.Day.Short()
-	case state.Status == planner.DueToday:
+	case date.Day == asOf:
 		return "due today"
+	default:
+		return fmt.Sprintf("%s, in %s", date.Day.Short(), Days(int(date.Day-asOf)))
 	}
-	return fmt.Sprintf("in %s, %s", Days(int(date.Day-asOf)), date.Day.Short())
 }
 
 // HowSure says between which dates the due date is likely to fall; "" once it
@@ -123,48 +181,44 @@ func HowSure(facts planner.DueFacts, asOf planner.Day) string {
 	case !facts.Early.Known:
 		return ""
 	case !facts.Late.Known:
-		return "at the earliest " + facts.Early.Day.Short()
+		return DayMonth(facts.Early.Day) + " at the earliest"
 	case facts.Early.Day == facts.Late.Day:
 		return ""
 	}
-	return "likely " + facts.Early.Day.Short() + " to " + facts.Late.Day.Short()
+	early, late := DayMonth(facts.Early.Day), DayMonth(facts.Late.Day)
+	if early[strings.IndexByte(early, ' '):] == late[strings.IndexByte(late, ' '):] {
+		early = early[:strings.IndexByte(early, ' ')]
+	}
+	return "likely " + early + " to " + late
 }
 
-// Progress says how far the count is, with unit, base and mean.
+// Progress says how far the count is, with unit and base.
 func Progress(state planner.WorkState, facts planner.DueFacts, e planner.Evaluation) string {
-	total := Amount(facts.Total.Total, state.Unit, e.Site.Units)
+	units := e.Site.Units
+	total := Amount(facts.Total.Total, state.Unit, units)
 	if facts.Total.Missing > 0 {
 		total = "at least " + total
 	}
-	target, unit := e.Site.Units.Show(facts.Target, state.Unit)
-	text := fmt.Sprintf("%s of %s %s", total, Digits(target, state.Unit), unit)
+	target, unit := units.Show(facts.Target, state.Unit)
+	text := fmt.Sprintf("%s of %s %s", total, Plain(target), unit)
 	if state.Settings.Counts == planner.ByNitrogen {
-		left, _ := e.Site.Units.Show(facts.Target-facts.Total.Total, state.Unit)
-		text = fmt.Sprintf("%s %s left to use", Digits(left, state.Unit), unit)
+		reserve := state.Settings.Target
+		left, _ := units.Show(facts.Target+reserve-facts.Total.Total, state.Unit)
+		text = fmt.Sprintf("%s %s left", Digits(left, state.Unit), unit)
+		if left < 0 {
+			text = fmt.Sprintf("%s %s short", Digits(-left, state.Unit), unit)
+		}
+		if reserve > 0 {
+			text += ", reserve " + Plain(reserve)
+		}
 	}
-	if base := Base(state.Settings.Counting, e.Site.Units); base != "" {
+	if base := Base(state.Settings.Counting, units); base != "" {
 		text += " " + base
 	}
 	if state.Status == planner.DueToday {
-		text += " through yesterday, today should fill it"
+		text += ", today should fill it"
 	}
-	if facts.Basis != planner.NoBasis {
-		text += ", " + facts.Basis.Words()
-	}
-	return text + notes(facts.Total.Notes())
-}
-
-// OtherMean gives the date on the other mean where it differs.
-func OtherMean(state planner.WorkState, asOf planner.Day) string {
-	own, _ := state.OwnFacts()
-	other, ok := state.OtherFacts()
-	if !ok || own.Date() == other.Date() {
-		return ""
-	}
-	if !other.Date().Known {
-		return other.Basis.Words() + ": no date"
-	}
-	return other.Basis.Words() + ": " + other.Date().Day.Short()
+	return text
 }
 
 // Base names the base of a degree-day count and its upper limit, in the site's
@@ -173,7 +227,7 @@ func Base(counting planner.Counting, units planner.Units) string {
 	if counting.Counts != planner.ByDegreeDays {
 		return ""
 	}
-	return "base " + Digits(units.Temperature(counting.Thresholds.LowerC), planner.Count)
+	return "base " + Plain(units.Temperature(counting.Thresholds.LowerC))
 }
 
 // AheadNote says what the days ahead stand on.
@@ -191,13 +245,6 @@ func AheadNote(outlook planner.Outlook) string {
 		parts = append(parts, "the last 14 days' mean, no spread known")
 	}
 	return "Days ahead: " + strings.Join(parts, ", then ") + "."
-}
-
-func notes(list []string) string {
-	if len(list) == 0 {
-		return ""
-	}
-	return " (" + strings.Join(list, "; ") + ")"
 }
 
 // Days writes a number of days.

@@ -3,7 +3,9 @@ package briefing
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strconv"
+	"strings"
 
 	"swardbook/bot/reply"
 	"swardbook/planner"
@@ -23,16 +25,19 @@ func decimals(unit planner.Unit) int {
 }
 
 // Digits writes a value already in the site's unit with the decimals its unit
-// is told with; a number typed with more is shown with up to two.
+// is told with.
 func Digits(shown float64, unit planner.Unit) string {
-	places := decimals(unit)
-	if text := strconv.FormatFloat(shown, 'f', places, 64); text != "-0" {
-		if unit != planner.Count {
-			return text
-		}
+	text := strconv.FormatFloat(shown, 'f', decimals(unit), 64)
+	if strings.Trim(text, "-0.") == "" {
+		return strings.TrimPrefix(text, "-") // never "-0"
 	}
-	rounded := math.Round(shown*100) / 100
-	return strconv.FormatFloat(rounded+0, 'f', -1, 64)
+	return text
+}
+
+// Plain writes a value that was typed, such as a target or a base, with at most
+// two decimals and no spare zeros.
+func Plain(value float64) string {
+	return strconv.FormatFloat(math.Round(value*100)/100+0, 'f', -1, 64)
 }
 
 // Amount writes a figure in the site's unit, without the unit.
@@ -101,7 +106,7 @@ func DayNote(day planner.DayFacts) string {
 		add("%d of %d readings, %d bridged.", day.SlotsReal, day.SlotsWanted, day.SlotsBridged)
 	}
 	if day.ExtremesFrom == planner.FromHourly {
-		add("High and low are the highest and lowest reading: the true ones lie a little further apart.")
+		add("High and low are of the readings.")
 	}
 	if day.Doubt != "" {
 		add("Doubtful: %s.", day.Doubt)
@@ -145,25 +150,26 @@ func totalBlocks(e planner.Evaluation) []reply.Block {
 	return append([]reply.Block{table}, blocks...)
 }
 
-// TotalRow is a season total's name and its sum on either mean; a total that
-// stands on neither has its one sum in both places said once.
+// TotalRow is a season total's name and its sum on either mean; "-" where the
+// other mean stands in on every day. A total that stands on neither mean has
+// its one sum in the first place.
 func TotalRow(state planner.TotalState, units planner.Units) []string {
+	if len(state.Bases) == 1 {
+		return []string{state.Total.Name, SumText(state.Bases[0].Sum, state.Unit, units), "-"}
+	}
 	row := []string{state.Total.Name}
-	for _, basis := range []planner.Basis{planner.Hourly, planner.Midrange} {
+	for _, facts := range state.Bases {
 		cell := "-"
-		if facts, ok := state.On(basis); ok {
+		if !facts.Sum.AllStandIn() {
 			cell = SumText(facts.Sum, state.Unit, units)
 		}
 		row = append(row, cell)
 	}
-	if len(state.Bases) == 1 {
-		row[1] = SumText(state.Bases[0].Sum, state.Unit, units)
-	}
 	return row
 }
 
-// SumText writes a sum; one with days missing has a plus behind it, which
-// TotalNote explains as "at least".
+// SumText writes a sum; one with days missing has a plus behind it, which the
+// notes explain.
 func SumText(sum planner.Sum, unit planner.Unit, units planner.Units) string {
 	text := Amount(sum.Total, unit, units)
 	if sum.Missing > 0 {
@@ -180,12 +186,34 @@ func TotalNote(state planner.TotalState, units planner.Units) string {
 	if base := Base(state.Settings.Counting, units); base != "" {
 		text += " " + base
 	}
-	text += " since " + state.Start.Short()
+	text += " since " + DayMonth(state.Start)
 	if len(state.Bases) == 1 {
 		text += ", " + state.Bases[0].Basis.Words()
 	}
-	if len(state.Bases) > 0 {
-		text += notes(state.Bases[0].Sum.Notes())
+	return strings.Join(append([]string{text}, sumNotes(state.Bases)...), "\n")
+}
+
+// sumNotes are the notes of the sums that are shown; where the two means differ
+// in them each says its own.
+func sumNotes(bases []planner.TotalFacts) []string {
+	var shown []planner.TotalFacts
+	for _, facts := range bases {
+		if !facts.Sum.AllStandIn() {
+			shown = append(shown, facts)
+		}
 	}
-	return text
+	if len(shown) == 0 {
+		return nil
+	}
+	first := shown[0].Sum.Notes()
+	if len(shown) == 1 || slices.Equal(first, shown[1].Sum.Notes()) {
+		return first
+	}
+	var notes []string
+	for _, facts := range shown {
+		for _, note := range facts.Sum.Notes() {
+			notes = append(notes, shortBasis(facts.Basis)+": "+note)
+		}
+	}
+	return notes
 }

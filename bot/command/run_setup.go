@@ -2,7 +2,6 @@ package command
 
 import (
 	"context"
-	"fmt"
 
 	"swardbook/bot/reply"
 	"swardbook/planner"
@@ -44,5 +43,3 @@ func listed(fields reply.Fields, none string) reply.Reply {
 	}
 	return reply.Reply{Private: true, Blocks: []reply.Block{fields}}
 }
-
-func plainNumber(value float64) string { return fmt.Sprintf("%.10g", value) }

@@ -143,6 +143,9 @@ func dayRuns(site planner.Site, zone *time.Location, year int) string {
 		return fmt.Sprintf("A day ends at %02d:00 standard time (UTC%s).", rule.ClosingHour, offsetText(rule.OffsetSeconds))
 	}
 	text := fmt.Sprintf("A day runs midnight to midnight in standard time (UTC%s) all year", offsetText(rule.OffsetSeconds))
+	if planner.StandardOffset(zone, year) != rule.OffsetSeconds {
+		return text + "." // the lead's own offset: the zone's clocks say nothing about it
+	}
 	for _, month := range []time.Month{time.January, time.July} {
 		if _, offset := time.Date(year, month, 1, 12, 0, 0, 0, zone).Zone(); offset != rule.OffsetSeconds {
 			start := time.Unix(int64(offset-rule.OffsetSeconds), 0).UTC().Format("15:04")

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 
+	"swardbook/bot/briefing"
 	"swardbook/bot/reply"
 	"swardbook/calc"
 	"swardbook/planner"
@@ -88,13 +89,13 @@ func (v visit) turf(turf planner.Turf) (planner.Turf, error) {
 }
 
 func turfText(turf planner.Turf, units planner.Units) string {
-	text := fmt.Sprintf("%s grass, optimum %s %s, width %s", turf.Grass, plainNumber(units.Temperature(turf.Curve.OptimumC)),
-		units.Degree(), plainNumber(units.Difference(turf.Curve.WidthC)))
+	text := fmt.Sprintf("%s grass, optimum %s %s, width %s", turf.Grass, briefing.Plain(units.Temperature(turf.Curve.OptimumC)),
+		units.Degree(), briefing.Plain(units.Difference(turf.Curve.WidthC)))
 	if turf.Curve.HeldAbove {
 		text += ", held above"
 	}
 	if turf.CeilingGM2 > 0 {
-		text += fmt.Sprintf(", at most %s g N/m² a month", plainNumber(turf.CeilingGM2))
+		text += fmt.Sprintf(", at most %s g N/m² a month", briefing.Plain(turf.CeilingGM2))
 	}
 	return text
 }

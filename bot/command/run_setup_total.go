@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 
+	"swardbook/bot/briefing"
 	"swardbook/bot/reply"
 	"swardbook/planner"
 )
@@ -118,7 +119,7 @@ func totalText(settings planner.TotalSettings, units planner.Units) string {
 	_, unit := units.Show(0, unitCounted(settings.Counting))
 	text := unit + countingText(settings.Counting, units)
 	if settings.Counts == planner.ByGrowthDays {
-		text += fmt.Sprintf(" (optimum %s %s)", plainNumber(units.Temperature(settings.Curve.OptimumC)), units.Degree())
+		text += fmt.Sprintf(" (optimum %s %s)", briefing.Plain(units.Temperature(settings.Curve.OptimumC)), units.Degree())
 	}
 	return text + " since " + settings.Start.String()
 }

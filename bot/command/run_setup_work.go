@@ -212,14 +212,14 @@ func (d Desk) runWorkList(ctx context.Context, req Request) (reply.Reply, error)
 func settingsText(settings planner.WorkSettings, units planner.Units) string {
 	unit := unitCounted(settings.Counting)
 	target, unitName := units.Show(settings.Target, unit)
-	text := fmt.Sprintf("every %s %s", plainNumber(target), unitName)
+	text := fmt.Sprintf("every %s %s", briefing.Plain(target), unitName)
 	if settings.Counts == planner.ByNitrogen {
-		text = fmt.Sprintf("when %s %s are left", plainNumber(target), unitName)
+		text = fmt.Sprintf("when %s %s are left", briefing.Plain(target), unitName)
 	}
 	text += countingText(settings.Counting, units)
 	if settings.Latest > 0 {
 		latest, _ := units.Show(settings.Latest, unit)
-		text += fmt.Sprintf(", overdue past %s", plainNumber(latest))
+		text += fmt.Sprintf(", overdue past %s", briefing.Plain(latest))
 	}
 	switch {
 	case settings.Basis != "":
@@ -245,7 +245,7 @@ func countingText(counting planner.Counting, units planner.Units) string {
 	}
 	text := " " + briefing.Base(counting, units)
 	if counting.Thresholds.Cutoff != calc.CutoffNone && counting.Thresholds.Cutoff != "" {
-		text += fmt.Sprintf(", upper limit %s (%s)", plainNumber(units.Temperature(counting.Thresholds.UpperC)), counting.Thresholds.Cutoff)
+		text += fmt.Sprintf(", upper limit %s (%s)", briefing.Plain(units.Temperature(counting.Thresholds.UpperC)), counting.Thresholds.Cutoff)
 	}
 	if counting.Method != calc.MethodMean {
 		text += ", " + string(counting.Method)

@@ -66,7 +66,7 @@ func (d Desk) runWeatherDay(ctx context.Context, req Request) (reply.Reply, erro
 	}
 	facts := record.At(day)
 	r.Add(reply.Heading(day.Short()+" "+day.String()[:4]), briefing.DayFields(facts, v.site.Units))
-	if facts.SlotsReal > 0 {
+	if facts.SlotsReal > 0 && facts.SlotsReal == facts.SlotsWanted {
 		r.Add(reply.Textf("%d of %d readings.", facts.SlotsReal, facts.SlotsWanted))
 	}
 	if note := briefing.DayNote(facts); note != "" {
@@ -167,7 +167,7 @@ func ImportReply(station planner.Station, report planner.ImportReport) reply.Rep
 	if report.Taken() > 0 {
 		fields = append(fields, reply.Field{Name: "from", Value: report.From.String()}, reply.Field{Name: "to", Value: report.To.String()})
 	}
-	r.Add(fields, reply.Textf("Read as %s in %s, times by %s.", report.Format, report.Units.Degree(), report.Clock))
+	r.Add(fields, reply.Text(readAs(report)))
 	if len(report.Refusals) == 0 {
 		return r
 	}
@@ -180,6 +180,13 @@ func ImportReply(station planner.Station, report planner.ImportReport) reply.Rep
 		r.Add(reply.Textf("Line %d: %s (%s)", refusal.Line, refusal.Reason, refusal.Value))
 	}
 	return r
+}
+
+func readAs(report planner.ImportReport) string {
+	if report.Format == "daily" {
+		return "Read as daily highs and lows in " + report.Units.Degree() + "."
+	}
+	return "Read as readings in " + report.Units.Degree() + "; times: " + report.Clock + "."
 }
 
 // refusedFile lists all refused rows that were kept, for a spreadsheet.

@@ -99,8 +99,7 @@ func passageText(passage planner.Passage) string {
 	if !passage.Known {
 		return "no date"
 	}
-	_, text, _ := strings.Cut(passage.Day.Short(), " ")
-	return text
+	return briefing.DayMonth(passage.Day)
 }
 
 // edits reads the changes that the request asks for.

@@ -93,11 +93,20 @@ func decisionBlocks(e planner.Evaluation) []reply.Block {
 		hourly, hasHourly := state.On(planner.Hourly)
 		midrange, hasMidrange := state.On(planner.Midrange)
 		if hasHourly && hasMidrange {
-			table.Rows = append(table.Rows, []string{briefing.Title(state), passageText(hourly.Date()), passageText(midrange.Date())})
+			table.Rows = append(table.Rows, []string{briefing.Title(state), standing(hourly), standing(midrange)})
 		}
 	}
 	if len(table.Rows) > 0 {
 		blocks = append(blocks, table)
 	}
 	return blocks
+}
+
+// standing is the date on a mean; "-" where the other mean stands in on every
+// day.
+func standing(facts planner.DueFacts) string {
+	if facts.Total.AllStandIn() {
+		return "-"
+	}
+	return passageText(facts.Date())
 }

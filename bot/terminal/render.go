@@ -15,8 +15,8 @@ import (
 
 // Render writes a reply as text, no line wider than width columns (0 takes
 // DefaultWidth; fewer than 12 are taken as 12). Nothing is cut: what is too
-// wide is wrapped, and a table that is too wide becomes a block of
-// "column: value" lines for each row.
+// wide is wrapped, and of a table that is too wide each row becomes its first
+// cell with "column: value" pairs under it.
 func Render(w io.Writer, r reply.Reply, width int) error {
 	_, err := io.WriteString(w, render(r, width))
 	return err
@@ -130,20 +130,23 @@ func columnWidths(t reply.Table) (widths []int, total int) {
 	return widths, total
 }
 
-// rowBlocks shows each row as lines of its own; empty cells are left out.
+// rowBlocks shows each row as its first cell and, under it, the other columns
+// by name; empty cells are left out.
 func rowBlocks(t reply.Table, width int) []string {
 	if len(t.Rows) == 0 {
 		return []string{"none"}
 	}
 	var lines []string
-	for i, row := range t.Rows {
-		if i > 0 || t.Title != "" {
-			lines = append(lines, "")
-		}
-		for j, column := range t.Columns {
-			if text := oneLine(cell(row, j)); text != "" {
-				lines = append(lines, wrap(column.Name+": "+text, width, 2)...)
+	for _, row := range t.Rows {
+		lines = append(lines, wrap(oneLine(cell(row, 0)), width, 2)...)
+		var rest []string
+		for i := 1; i < len(t.Columns); i++ {
+			if text := oneLine(cell(row, i)); text != "" {
+				rest = append(rest, t.Columns[i].Name+": "+text)
 			}
+		}
+		for _, line := range wrap(strings.Join(rest, ", "), width-2, 0) {
+			lines = append(lines, "  "+line)
 		}
 	}
 	return lines
@@ -152,12 +155,13 @@ func rowBlocks(t reply.Table, width int) []string {
 // fieldLines stands values beside their names, or below them as soon as one
 // name takes more than two fifths of the width.
 func fieldLines(fields reply.Fields, width int) []string {
-	widest := 0
+	widest, longest := 0, 0
 	for _, field := range fields {
 		widest = max(widest, widthOf(oneLine(field.Name)))
+		longest = max(longest, widthOf(oneLine(field.Value)))
 	}
 	var lines []string
-	if widest > width*2/5 {
+	if widest > width*2/5 && widest+gap+longest > width {
 		for _, field := range fields {
 			lines = append(lines, wrap(oneLine(field.Name), width, 2)...)
 			for _, line := range wrap(field.Value, width-2, 0) {

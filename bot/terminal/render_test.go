@@ -134,7 +134,7 @@ func TestTableStandsInColumnsWhenItJustFits(t *testing.T) {
 	if got, want := render(table, 13), "day        °C\nMonday   −1.5\nTue     12.25\n"; got != want {
 		t.Errorf("at 13 columns:\n%swant\n%s", got, want)
 	}
-	if got, want := render(table, 12), "day: Monday\n°C: −1.5\n\nday: Tue\n°C: 12.25\n"; got != want {
+	if got, want := render(table, 12), "Monday\n  °C: −1.5\nTue\n  °C: 12.25\n"; got != want {
 		t.Errorf("at 12 columns:\n%swant\n%s", got, want)
 	}
 }

@@ -59,7 +59,7 @@ func chat(ctx context.Context, session *terminal.Session, args []string, in io.R
 	failed := 0
 	switch {
 	case len(args) > 0:
-		for _, line := range lines(session.Table, args) {
+		for _, line := range lines(args) {
 			if !session.RunLine(ctx, line) {
 				failed++
 			}
@@ -75,19 +75,15 @@ func chat(ctx context.Context, session *terminal.Session, args []string, in io.R
 	return nil
 }
 
-// lines puts arguments together to command lines: an argument that begins with
-// a slash and a command's first word begins one, the others go on with it.
-func lines(table command.Table, args []string) []string {
-	first := map[string]bool{}
-	for _, command := range table.All() {
-		word, _, _ := strings.Cut(command.Path, " ")
-		first["/"+word] = true
-	}
+// lines puts arguments together to command lines: one that begins with a slash
+// and is no path begins a line, the others go on with it.
+func lines(args []string) []string {
 	var all []string
 	for i, arg := range args {
 		word, _, whole := strings.Cut(arg, " ")
+		rest, slash := strings.CutPrefix(word, "/")
 		switch {
-		case i == 0 || first[word]:
+		case i == 0 || slash && !strings.ContainsAny(rest, "/."):
 			all = append(all, arg)
 		case whole: // the shell took quotes off: put them back
 			all[len(all)-1] += " " + requoted(arg)

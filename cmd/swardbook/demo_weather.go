@@ -26,14 +26,15 @@ func writeInvented(w io.Writer, first, last time.Time) error {
 	random := rand.New(rand.NewPCG(demoSeed, demoSeed))
 	out := bufio.NewWriter(w)
 	fmt.Fprintln(out, "time,temp_c")
-	spellC := 0.0
+	spellC, skew := 0.0, 0.0
 	for at := first; !at.After(last); at = at.Add(time.Hour) {
 		if at.Hour() == 0 {
 			spellC = 0.72*spellC + 2.4*random.NormFloat64()
+			skew = 0.07 + 0.06*random.NormFloat64()
 		}
 		season := 2 * math.Pi * float64(at.YearDay()-202) / 365.25
 		phase := 2 * math.Pi * float64(at.Hour()-15) / 24
-		wave := math.Cos(phase) + 0.18*math.Cos(2*phase)
+		wave := math.Cos(phase) + skew*math.Cos(2*phase)
 		temperatureC := 11.8 + 11.6*math.Cos(season) + (5.2+1.1*math.Cos(season))*wave + spellC + 0.3*random.NormFloat64()
 		if lost(at, random) {
 			continue

@@ -1,7 +1,9 @@
 package main
 
 import (
+	"bytes"
 	"errors"
+	"fmt"
 
 	"github.com/spf13/cobra"
 
@@ -26,19 +28,23 @@ func importCommand(env func(string) string) *cobra.Command {
 			}
 			defer func() { err = errors.Join(err, house.close()) }()
 			now, _ := clock("")
-			session := terminal.Session{
-				Table: house.table(cmd.ErrOrStderr()), Caller: caller(command.Lead, env), Now: now,
-				Out: cmd.OutOrStdout(), Err: cmd.ErrOrStderr(),
-			}
 			failed := false
 			for _, file := range args {
 				pairs := []command.Pair{{Name: "file", Value: file}}
-				for name, value := range map[string]string{"site": site, "station": station, "units": units} {
-					if value != "" {
-						pairs = append(pairs, command.Pair{Name: name, Value: value})
+				for _, option := range []command.Pair{{Name: "units", Value: units}, {Name: "station", Value: station}, {Name: "site", Value: site}} {
+					if option.Value != "" {
+						pairs = append(pairs, option)
 					}
 				}
-				failed = !session.RunLine(cmd.Context(), command.Line("weather file", pairs...)) || failed
+				var wrong bytes.Buffer
+				session := terminal.Session{
+					Table: house.table(cmd.ErrOrStderr()), Caller: caller(command.Lead, env), Now: now,
+					Out: cmd.OutOrStdout(), Err: &wrong,
+				}
+				if !session.RunLine(cmd.Context(), command.Line("weather file", pairs...)) {
+					failed = true
+					fmt.Fprintf(cmd.ErrOrStderr(), "%s:\n%s", file, wrong.String())
+				}
 			}
 			if failed {
 				return errFailed

@@ -24,11 +24,19 @@ func TestMain(m *testing.M) {
 // TestScripts plays sessions as a crew and its lead would type them, wrong
 // input included.
 func TestScripts(t *testing.T) {
+	open, err := filepath.Abs(filepath.Join("..", "..", "testdata", "open"))
+	if err != nil {
+		t.Fatal(err)
+	}
 	testscript.Run(t, testscript.Params{
 		Dir:                 filepath.Join("..", "..", "testdata", "sessions"),
 		RequireUniqueNames:  true,
 		RequireExplicitExec: true,
 		UpdateScripts:       os.Getenv("UPDATE") != "",
+		Setup: func(env *testscript.Env) error {
+			env.Setenv("OPEN", open) // open data of the project
+			return nil
+		},
 	})
 }
 
@@ -138,12 +146,6 @@ func TestWrongFlags(t *testing.T) {
 
 // A shell takes quotes off and splits at spaces; commands must survive that.
 func TestLines(t *testing.T) {
-	database := filepath.Join(t.TempDir(), "course.db")
-	house, err := open(context.Background(), database, "home")
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer house.close()
 	for _, row := range []struct {
 		args []string
 		want []string
@@ -154,9 +156,10 @@ func TestLines(t *testing.T) {
 		{[]string{"/done", "greens", "cut", "note:wet and cold"}, []string{`/done greens cut note:"wet and cold"`}},
 		{[]string{"/due", "north greens"}, []string{`/due "north greens"`}},
 		{[]string{"/weather", "file", "file:/tmp/a.csv"}, []string{"/weather file file:/tmp/a.csv"}},
+		{[]string{"/log", "list", "/bogus"}, []string{"/log list", "/bogus"}},
 		{[]string{"/weather", "file", "/tmp/a.csv"}, []string{"/weather file /tmp/a.csv"}},
 	} {
-		if got := lines(house.table(&bytes.Buffer{}), row.args); fmt.Sprint(got) != fmt.Sprint(row.want) {
+		if got := lines(row.args); fmt.Sprint(got) != fmt.Sprint(row.want) {
 			t.Errorf("%q: got %q, want %q", row.args, got, row.want)
 		}
 	}

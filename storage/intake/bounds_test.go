@@ -232,3 +232,40 @@ func TestClockIsNotKnownBeforeATime(t *testing.T) {
 		t.Errorf("clock %q, error %v", file.Clock(), err)
 	}
 }
+
+func TestHeaders(t *testing.T) {
+	t.Parallel()
+	for _, row := range []struct {
+		content string
+		format  string // "" when refused
+		problem string
+	}{
+		{"  TIME  , Dry_Bulb-Temp \n", "readings", ""},
+		{"time,temp_c,time c,t (F)\n", "readings", ""}, // the last two: no time, and the other unit
+		{"\n\n\"time\",\"temp\nc\"\n2013-07-01T05:00Z,1\n", "readings", ""},
+		{"date,temp,high,low\n\n,,,\n2013-07-01,1,2,0\n", "daily", ""},
+		{"date,temp,high,low\n2013-07-01 00:00,1,2,0\n", "readings", ""},
+		{"date,temp,high,low\n\"x\"y,1,2,0\n2013-07-01,1,2,0\n", "readings", ""}, // the first row does not say
+		{"date,temp,high,low\n", "readings", ""},
+		{"date,high,low,high\n", "", `"high", "high" could each be the high`},
+		{"time,a,b,c,d,e,f,g,h,i,j,k,l,m\n", "", `"k", and 2 more`},
+		{"time,temp,\"x\n", "", "broken quotes"},
+		{"time,\"a\"\n\"temp\n", "", "no column for a temperature"},
+		{"date,mean\n2013-07-01,3\n", "", "no column for a temperature"},
+	} {
+		got := read(strings.NewReader(row.content), site, "")
+		if row.format == "" {
+			wantProblem(t, got.err, row.problem)
+		} else if got.err != nil || got.format != row.format {
+			t.Errorf("%q: format %q, error %v; want %s", row.content, got.format, got.err, row.format)
+		}
+	}
+}
+
+func TestUnknownColumnsAreLeftAlone(t *testing.T) {
+	t.Parallel()
+	got := read(strings.NewReader("station,time,rh,temp_c,precipitation,wind,weather,temp_flag\nKXXX,2013-07-01T05:00Z,x,17.8,y,-9999,\"a,b\",z\n"), site, "")
+	if got.err != nil || len(got.rows) != 1 || got.rows[0].Reading.C != 17.8 {
+		t.Errorf("%+v", got)
+	}
+}

@@ -20,11 +20,10 @@ const (
 )
 
 // recogniseCSV takes a file whose first line has a column name that is known.
+// Quotes that do not close may do so on the next line: openCSV judges them.
 func recogniseCSV(head []byte) bool {
 	reader := csvReader{keep: mostColumns}
-	if !reader.split(firstLine(head)) {
-		return false
-	}
+	reader.split(firstLine(head))
 	for i, name := range reader.values {
 		if readColumn(i, name).role != noRole {
 			return true

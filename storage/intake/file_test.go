@@ -83,7 +83,7 @@ var files = []struct {
 	{name: "refused_date_and_time_columns", problem: `"date", "time" could each be the time`},
 	{name: "refused_two_temperatures", problem: `"temp", "air_temp" could each be the temperature`},
 	{name: "refused_time_in_utc_by_name", problem: `no column for a time or a date; its columns are "time (UTC)"`},
-	{name: "refused_broken_header_quotes", problem: "not a header"},
+	{name: "refused_broken_header_quotes", problem: "the header has broken quotes"},
 	{name: "refused_utf16", problem: "not a text file"},
 }
 

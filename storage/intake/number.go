@@ -48,7 +48,7 @@ func parseNumber(text []byte) (value float64, ok bool) {
 const longestNumber = 64
 
 func parseLongNumber(text []byte) (value float64, ok bool) {
-	if len(text) > longestNumber || len(bytes.Trim(text, "0123456789+-.eE")) > 0 {
+	if len(text) > longestNumber {
 		return 0, false
 	}
 	for _, c := range text {

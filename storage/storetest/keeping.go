@@ -224,7 +224,9 @@ func testSettings(t *testing.T, newTeam func(string) Store) {
 		edit(func(s settings) settings { s[1].Value.Target++; return s }),
 		edit(func(s settings) settings { s[1].Day++; return s }),
 		edit(func(s settings) settings { s[2], s[3] = s[3], s[2]; return s }),
-		edit(func(s settings) settings { return append(s, planner.From[planner.WorkSettings]{Day: midMay, Value: degreeDays(5)}) }),
+		edit(func(s settings) settings {
+			return append(s, planner.From[planner.WorkSettings]{Day: midMay, Value: degreeDays(5)})
+		}),
 		edit(func(s settings) settings { return append(settings{{Day: planner.DayMin, Value: degreeDays(5)}}, s...) }),
 	} {
 		refuse(t, store, planner.Invalid, edited)

@@ -8,6 +8,7 @@ import (
 	"testing"
 	"time"
 
+	"github.com/google/go-cmp/cmp"
 	"pgregory.net/rapid"
 
 	"swardbook/planner"
@@ -52,7 +53,10 @@ func built(site planner.Site, readings []planner.Reading, daily []planner.DailyR
 	}
 	var facts []planner.DayFacts
 	for day := first; day <= last; day++ {
-		one := planner.BuildDay(site.Rules.On(day).Window(zone, day), readings, own[day])
+		// All readings of the days around: more than enough, and fast.
+		from, _ := slices.BinarySearchFunc(readings, int64(day-4)*86400, func(r planner.Reading, at int64) int { return int(r.At - at) })
+		to, _ := slices.BinarySearchFunc(readings, int64(day+5)*86400, func(r planner.Reading, at int64) int { return int(r.At - at) })
+		one := planner.BuildDay(site.Rules.On(day).Window(zone, day), readings[from:to], own[day])
 		if one.Empty() && one.SlotsReal == 0 {
 			one = planner.DayFacts{Day: day}
 		}
@@ -142,38 +146,43 @@ func testImportOrder(t *testing.T, newTeam func(string) Store) {
 		store := newTeam(fmt.Sprintf("team %d", teams))
 		site := newSite("Quillmere")
 		site.Rules = planner.Always(rapid.SampledFrom([]planner.DayRule{standard, civil, byHand}).Draw(r, "rule"))
-		kept, err := store.Save(context.Background(), stamp(""), site)
-		if err != nil {
-			r.Fatal(err)
-		}
-		site = kept.(planner.Site)
-		stationKept, err := store.Save(context.Background(), stamp(""), newStation(site.ID, "roof", 1))
-		if err != nil {
-			r.Fatal(err)
-		}
-		station := stationKept.(planner.Station)
+		site = mustSave(r, store, site)
+		station := mustSave(r, store, newStation(site.ID, "roof", 1))
 		readings := drawReadings(r)
 		var daily []planner.DailyReading
 		for _, day := range rapid.SliceOfNDistinct(rapid.IntRange(-8, 8), 0, 3, rapid.ID[int]).Draw(r, "daily") {
 			daily = append(daily, planner.DailyReading{Day: lateJune + planner.Day(day), HighC: 30, LowC: float64(day)})
 		}
-		shuffled := rapid.Permutation(readings).Draw(r, "order")
-		for len(shuffled) > 0 || len(daily) > 0 {
-			n := rapid.IntRange(0, len(shuffled)).Draw(r, "readings in the file")
-			m := rapid.IntRange(0, len(daily)).Draw(r, "daily readings in the file")
-			overlap := rapid.IntRange(0, len(readings)-len(shuffled)).Draw(r, "readings told again")
-			done := readings[:0:0]
-			if overlap > 0 { // any reading is told again, also before its turn
-				done = readings[:overlap]
+		left, leftDaily := rapid.Permutation(readings).Draw(r, "order"), daily
+		for len(left)+len(leftDaily) > 0 {
+			n := rapid.IntRange(min(1, len(left)), len(left)).Draw(r, "readings in the file")
+			m := rapid.IntRange(0, len(leftDaily)).Draw(r, "daily readings in the file")
+			if len(left) == 0 {
+				m = len(leftDaily)
 			}
+			again := readings[:rapid.IntRange(0, len(readings)).Draw(r, "readings told out of turn")]
 			if _, err := store.Import(context.Background(), stamp(""), station.ID,
-				File{Readings: slices.Concat(shuffled[:n], done), Daily: daily[:m]}); err != nil {
+				File{Readings: slices.Concat(left[:n], again), Daily: leftDaily[:m]}); err != nil {
 				r.Fatal(err)
 			}
-			shuffled, daily = shuffled[n:], daily[m:]
+			left, leftDaily = left[n:], leftDaily[m:]
 		}
-		_ = site
+		got, err := store.Record(context.Background(), site.ID)
+		if err != nil {
+			r.Fatal(err)
+		}
+		if diff := cmp.Diff(built(site, readings, daily), got.Facts); diff != "" {
+			r.Fatalf("the record of several imports (-at once +got):\n%s", diff)
+		}
 	})
+}
+
+func mustSave[N planner.Noun](r *rapid.T, store Store, noun N) N {
+	kept, err := store.Save(context.Background(), stamp(""), noun)
+	if err != nil {
+		r.Fatal(err)
+	}
+	return kept.(N)
 }
 
 // drawReadings draws some days of readings, about hourly, with gaps.
