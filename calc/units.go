@@ -90,3 +90,13 @@ func PoundsPer1000SquareFeetFromGramsPerSquareMetre(rateGM2 float64) float64 {
 func GramsPerSquareMetreFromPoundsPer1000SquareFeet(ratePounds float64) float64 {
 	return ratePounds * GramsPerSquareMetrePerPoundPer1000SquareFeet
 }
+
+const (
+	// MillilitresPerFluidOunce: 1 US fluid ounce = 1/128 US gallon of 231 in³,
+	// 231 · 2.54³ / 128 cm³ = 29.5735295625 mL.
+	MillilitresPerFluidOunce = 231 * 2.54 * 2.54 * 2.54 / 128
+	// MillilitresPerGallon: 1 US gallon = 128 fluid ounces = 3785.411784 mL.
+	MillilitresPerGallon = 128 * MillilitresPerFluidOunce
+	// SquareMetresPerHectare: 1 ha = 10000 m².
+	SquareMetresPerHectare = 10000.0
+)

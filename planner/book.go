@@ -81,6 +81,7 @@ func (b *Book) Plan(ctx context.Context, site Site, asOf, today Day) (Plan, erro
 	return Plan{
 		Site: site, AsOf: asOf, Record: record,
 		Surfaces: setup.SurfacesOf(site.ID), Works: setup.WorksOf(site.ID), Totals: setup.TotalsOf(site.ID),
+		Closed:  setup.ClosedOf(site.ID),
 		Log:     filter(log, func(e Entry) bool { return e.Day < asOf || e.Day == asOf && asOf == today }),
 		Outlook: b.ahead.Outlook(record, hand, asOf),
 	}, nil
@@ -95,6 +96,31 @@ func (b *Book) Log(ctx context.Context, site SiteID) ([]Entry, error) {
 	return log, nil
 }
 
+// Entry returns an entry of the site's log: the one with the id, or the newest
+// logged when the id is 0. Only the person's own, unless anyone is set.
+// Nothing found is a NotFound problem, somebody else's entry a Forbidden one.
+func (b *Book) Entry(ctx context.Context, site SiteID, id EntryID, person string, anyone bool) (Entry, error) {
+	log, err := b.Log(ctx, site)
+	if err != nil {
+		return Entry{}, err
+	}
+	var found Entry
+	for _, entry := range log {
+		mine := anyone || entry.By == person
+		if entry.ID == id && !mine {
+			return Entry{}, Problemf(Forbidden, "Entry %d was logged by %s.", id, entry.By).
+				WithHint("Crew undo and amend their own entries; a lead anyone's.")
+		}
+		if mine && (entry.ID == id || id == 0 && entry.ID > found.ID) {
+			found = entry
+		}
+	}
+	if found.ID == 0 {
+		return Entry{}, Problemf(NotFound, "There is no such entry of yours.").WithHint("/log list shows the entries and their numbers.")
+	}
+	return found, nil
+}
+
 // mostChanges bounds how far back the change of an entry is looked for.
 const mostChanges = 1000
 
@@ -103,22 +129,9 @@ const mostChanges = 1000
 // is set. Nothing to undo is a NotFound problem, somebody else's entry a
 // Forbidden one.
 func (b *Book) UndoEntry(ctx context.Context, stamp Stamp, site SiteID, id EntryID, anyone bool) (Entry, error) {
-	log, err := b.Log(ctx, site)
+	found, err := b.Entry(ctx, site, id, stamp.By, anyone)
 	if err != nil {
 		return Entry{}, err
-	}
-	var found Entry
-	for _, entry := range log {
-		mine := anyone || entry.By == stamp.By
-		if entry.ID == id && !mine {
-			return Entry{}, Problemf(Forbidden, "Entry %d was logged by %s.", id, entry.By).WithHint("Crew undo their own entries; a lead undoes anyone's.")
-		}
-		if mine && (entry.ID == id || id == 0 && entry.ID > found.ID) {
-			found = entry
-		}
-	}
-	if found.ID == 0 {
-		return Entry{}, Problemf(NotFound, "There is no such entry of yours to undo.").WithHint("/log list shows the entries and their numbers.")
 	}
 	changes, err := b.keeper.Changes(ctx, found.Kind(), mostChanges)
 	if err != nil {
@@ -131,7 +144,7 @@ func (b *Book) UndoEntry(ctx context.Context, stamp Stamp, site SiteID, id Entry
 		}
 	}
 	found.Undone = true
-	if _, err := b.keeper.Save(ctx, stamp, found); err != nil {
+	if _, err = b.keeper.Save(ctx, stamp, found); err != nil {
 		return Entry{}, fmt.Errorf("undo entry %d: %w", found.ID, err)
 	}
 	return found, nil

@@ -84,22 +84,23 @@ func (r DayRule) Window(zone *time.Location, day Day) Window {
 
 const secondsPerHour = 60 * 60
 
-// civilMidnight is the first instant at which the zone's clocks show the day:
-// where midnight is skipped it is the instant of the change, where it comes
-// twice the first of the two.
+// mostAhead is more than any clock has been ahead of UTC, in seconds.
+const mostAhead = 16 * secondsPerHour
+
+// civilMidnight is the first instant at which the zone's clocks show the day
+// or, where they leave it out, a later one: where midnight is skipped it is
+// the instant of the change, where it comes twice the first of the two.
 func civilMidnight(zone *time.Location, day Day) int64 {
-	year, month, date := day.Date()
-	at := time.Date(year, month, date, 0, 0, 0, 0, zone)
-	// Around a change of clocks time.Date may land on either side; step back
-	// while the clock already shows the day, then forward until it does.
-	const step = 15 * time.Minute // no zone has changed by less since 1970
-	for DayIn(at.Add(-step), zone) >= day {
-		at = at.Add(-step)
+	at := time.Unix(int64(day)*secondsPerDay-mostAhead, 0).In(zone)
+	for {
+		_, offset := at.Zone()
+		midnight := int64(day)*secondsPerDay - int64(offset)
+		_, change := at.ZoneBounds()
+		if change.IsZero() || midnight < change.Unix() {
+			return max(midnight, at.Unix())
+		}
+		at = change
 	}
-	for DayIn(at, zone) < day {
-		at = at.Add(step)
-	}
-	return at.Unix()
 }
 
 // DayOf returns the day that an instant belongs to.
@@ -118,7 +119,14 @@ func (r DayRule) DayOf(zone *time.Location, at int64) Day {
 func (w Window) slots() int { return int((w.End - w.Start + secondsPerHour - 1) / secondsPerHour) }
 
 // slotAt is the instant of slot i, which may lie before or after the window.
-func (w Window) slotAt(i int) int64 { return w.Start + int64(i+w.FirstSlot)*secondsPerHour }
+// It matters from which end they are counted on a day that is no whole number
+// of hours.
+func (w Window) slotAt(i int) int64 {
+	if w.FirstSlot == 1 {
+		return w.End - int64(w.slots()-1-i)*secondsPerHour
+	}
+	return w.Start + int64(i)*secondsPerHour
+}
 
 // holds reports whether a reading belongs to the day: with slots 01 to 24 a
 // reading at its end does and one at its start does not.
@@ -175,7 +183,7 @@ func BuildDay(w Window, readings []Reading, own *DailyReading) DayFacts {
 		}
 	}
 	enough := 4*facts.SlotsReal >= 3*n
-	if enough && open == 0 {
+	if enough && open == 0 && n > 0 { // a date that the clocks left out has no hours
 		facts.HoursC = make([]float64, n)
 		for i, slot := range inside {
 			facts.HoursC[i] = slot.C

@@ -18,6 +18,8 @@ const (
 	Due        Status = "due"         // the target was reached by yesterday
 	Overdue    Status = "overdue"     // the total is past the work's latest
 	NoDate     Status = "no date"     // the target is not reached in the days ahead
+	Resting    Status = "resting"     // out of its season, or the lead has it rest
+	Full       Status = "full"        // the most of the season is reached
 )
 
 // WorkState is where one work stands.
@@ -30,6 +32,21 @@ type WorkState struct {
 	LastDone Day        // the newest pass that the count stands on; meaningless when NotStarted
 	Own      Basis      // the basis of the work's own mean
 	Bases    []DueFacts // one per basis of the measure; empty when NotStarted
+	// Behind names the parts of the surface that were not done when others last
+	// were: the old count stands for them.
+	Behind []string
+	// Doubted is the count as it stands without the newest pass, on the own
+	// mean, when that pass is doubtful.
+	Doubted *DueFacts
+	Season  SeasonUse
+	// Resumes is the first day of the next season of a resting work.
+	Resumes Passage
+	// RestsThen says that the due date lies outside the work's season.
+	RestsThen bool
+	Closed    *ClosedNote // of the date told; nil when it is open
+	// AskForgotten is set on the one morning on which the work turns overdue:
+	// it was perhaps done and not logged.
+	AskForgotten bool
 }
 
 // DueFacts is the count of a work and its due date on one basis.
@@ -45,10 +62,21 @@ type DueFacts struct {
 	// members' dates; with one member all are its date.
 	Early, Middle, Late Passage
 	SpreadKnown         bool
+	// Held is the first day that the least days between two passes allow, when
+	// it is later than the middle date; else unknown.
+	Held Passage
+	// last is the sum's last day, to see whether the work turned overdue on it.
+	last float64
 }
 
-// Date is the date that is told: the middle one.
-func (d DueFacts) Date() Passage { return d.Middle }
+// Date is the date that is told: the middle one, or the later day to which the
+// least days between two passes hold it.
+func (d DueFacts) Date() Passage {
+	if d.Held.Known {
+		return d.Held
+	}
+	return d.Middle
+}
 
 // On returns the state's figures on the basis.
 func (w WorkState) On(basis Basis) (DueFacts, bool) {
@@ -86,17 +114,70 @@ func (p Plan) evaluateWork(work Work) (WorkState, error) {
 	}
 	state.Unit = measure.Unit()
 	state.Own = ownBasis(measure, state.Settings.Basis, p.Record)
-	last, started := p.countStart(state)
+	state.Season = p.seasonUse(work, state.Settings)
+	if !state.Settings.Season.On(p.AsOf) {
+		state.Status, state.Resumes = Resting, state.Settings.Season.next(p.AsOf)
+		return state, nil
+	}
+	done := p.passesOf(work.ID, state.Settings)
+	last, behind, started := p.countStart(state, done)
 	if !started {
 		return state, nil
 	}
-	state.LastDone = last
+	state.LastDone, state.Behind = last, behind
 	for _, basis := range measure.Bases() {
-		c := counter{p, measure, basis}
-		state.Bases = append(state.Bases, c.due(last+1, p.targetOn(state, c)))
+		state.Bases = append(state.Bases, p.dueOn(state, measure, basis, last))
+	}
+	if n := len(done); n > 0 && done[n-1].Result == Doubtful && state.Settings.Counts != ByNitrogen {
+		if before, _, ok := wholeSince(surface, done[:n-1]); ok {
+			facts := p.dueOn(state, measure, state.Own, before)
+			state.Doubted = &facts
+		}
 	}
 	state.Status = p.status(state)
+	p.flagDate(&state)
 	return state, nil
+}
+
+// dueOn counts the work on a basis from the day after the last pass and says
+// when it falls due.
+func (p Plan) dueOn(state WorkState, measure Measure, basis Basis, last Day) DueFacts {
+	c := counter{plan: p, measure: measure, basis: basis}
+	target := state.Settings.Target
+	if state.Settings.Counts == ByNitrogen {
+		feeds := p.feeds(state.Surface, p.balanceSince(state.Surface))
+		c.less = releasedOn(feeds)
+		target = c.leftAfterLast(feeds) - state.Settings.Target
+	}
+	facts := c.due(last+1, target)
+	if gap := state.Settings.Limits.LeastDays; gap > 0 && facts.Middle.Known {
+		if allowed := last + Day(gap); allowed > facts.Middle.Day {
+			facts.Held = Passage{allowed, true}
+		}
+	}
+	return facts
+}
+
+// flagDate says what is in the way of the date told.
+func (p Plan) flagDate(state *WorkState) {
+	if state.Status != Resting && state.Season.full(state.Settings.Limits) != "" {
+		state.Status = Full
+	}
+	facts, ok := state.OwnFacts()
+	date := facts.Date()
+	if !ok || !date.Known {
+		return
+	}
+	told := Passage{max(date.Day, p.AsOf), true}
+	state.RestsThen = !state.Settings.Season.On(told.Day)
+	state.Closed = p.closedNote(state.Work.ID, told.Day)
+	if state.Status == Overdue {
+		yesterday := p
+		yesterday.AsOf--
+		before := facts
+		before.Total.Total -= facts.last
+		state.AskForgotten = !yesterday.overdue(*state, before)
+	}
 }
 
 // ownBasis is the basis a work is told on: its only one, the lead's choice, or
@@ -115,24 +196,17 @@ func ownBasis(measure Measure, chosen Basis, record Record) Basis {
 	}
 }
 
-// countStart is the day of the pass that the count stands on.
-func (p Plan) countStart(state WorkState) (Day, bool) {
-	if state.Settings.Counts == ByNitrogen {
-		feeds := p.feeds(state.Surface.ID)
-		if len(feeds) == 0 {
-			return 0, false
-		}
-		return feeds[len(feeds)-1].Day, true
-	}
-	last, ok := p.LastDone(state.Work.ID)
-	return last.Day, ok
-}
-
-func (p Plan) targetOn(state WorkState, c counter) float64 {
+// countStart is the day of the pass that the count stands on, and the parts
+// that are behind.
+func (p Plan) countStart(state WorkState, done []donePass) (last Day, behind []string, ok bool) {
 	if state.Settings.Counts != ByNitrogen {
-		return state.Settings.Target
+		return wholeSince(state.Surface, done)
 	}
-	return p.leftAfterLastFeed(state.Surface.ID, c) - state.Settings.Target
+	feeds := p.feeds(state.Surface, p.balanceSince(state.Surface))
+	if len(feeds) == 0 {
+		return 0, nil, false
+	}
+	return feeds[len(feeds)-1].Day, nil, true
 }
 
 // due counts from the day since and finds the dates.
@@ -142,6 +216,9 @@ func (c counter) due(since Day, target float64) DueFacts {
 	facts := DueFacts{
 		Basis: c.basis, Since: since, Total: past.sum, Target: target,
 		Path: c.passage(outlook.Path, past, target), SpreadKnown: outlook.SpreadKnown(),
+	}
+	if n := len(past.units); n > 0 {
+		facts.last = past.units[n-1]
 	}
 	dates := make([]Passage, len(outlook.Members))
 	for i, member := range outlook.Members {
@@ -187,11 +264,18 @@ func (p Plan) status(state WorkState) Status {
 		return NotYet
 	case date == p.AsOf:
 		return DueToday
-	case p.AsOf-date > 1 && facts.Total.Total > state.latest(facts.Target):
+	case p.overdue(state, facts):
 		return Overdue
 	default:
 		return Due
 	}
+}
+
+// overdue reports whether the total through the day before the plan's morning
+// is past the work's latest, and at least a day has gone by since the date.
+func (p Plan) overdue(state WorkState, facts DueFacts) bool {
+	date := facts.Date()
+	return date.Known && p.AsOf-date.Day > 1 && facts.Total.Total > state.latest(facts.Target)
 }
 
 // latestShare is how far past its target a work may run before it is overdue

@@ -1,6 +1,9 @@
 package planner
 
-import "fmt"
+import (
+	"fmt"
+	"slices"
+)
 
 // Edit is one change of a plan, as a what-if asks for it. It prints itself as
 // a sentence.
@@ -52,15 +55,21 @@ func (w Warm) Sentence(units Units) string {
 const maxWarmC = 30
 
 func (w Warm) apply(plan Plan) (Plan, error) {
-	if !(w.ByC >= -maxWarmC && w.ByC <= maxWarmC) || w.Days < 0 {
+	if !(w.ByC >= -maxWarmC && w.ByC <= maxWarmC) {
 		return plan, Problemf(Invalid, "%g °C warmer is no weather", w.ByC).WithHint("Give -%d to %d °C.", maxWarmC, maxWarmC)
+	}
+	if w.Days < 0 {
+		return plan, Problemf(Invalid, "%d days cannot be warmer", w.Days).WithHint("Give 1 or more; leave it out for all days ahead.")
 	}
 	if w.From < plan.AsOf {
 		return plan, Problemf(Invalid, "%s is past: its weather is known", w.From.Short()).WithHint("Change days from today on.")
 	}
 	end := plan.Outlook.end()
-	if w.Days > 0 {
-		end = min(end, w.From+Day(w.Days))
+	if w.From >= end {
+		return plan, Problemf(Invalid, "%s is not among the days ahead", w.From.Short())
+	}
+	if w.Days > 0 && w.Days < int(end-w.From) {
+		end = w.From + Day(w.Days)
 	}
 	return plan.withAhead(func(day DayFacts) DayFacts {
 		if day.Day < w.From || day.Day >= end {
@@ -138,21 +147,80 @@ func (d DoWork) Sentence(Units) string {
 }
 
 func (d DoWork) apply(plan Plan) (Plan, error) {
-	entry := Entry{Site: plan.Site.ID, Day: d.Day, Passes: []Pass{{Work: d.Work, NitrogenGM2: d.NitrogenGM2}}}
-	if err := entry.Check(); err != nil {
+	return LogEntry{Name: d.Name, Entry: Entry{Site: plan.Site.ID, Day: d.Day,
+		Passes: []Pass{{Work: d.Work, NitrogenGM2: d.NitrogenGM2, Rate: nitrogenRate(d.NitrogenGM2)}}}}.apply(plan)
+}
+
+func nitrogenRate(gM2 float64) Rate {
+	if gM2 == 0 {
+		return Rate{}
+	}
+	return Rate{Kind: NutrientRate, Value: gM2}
+}
+
+// LogEntry logs a whole entry, past or ahead.
+type LogEntry struct {
+	Entry Entry
+	Name  string // how the sentence names it
+}
+
+// Sentence says what the edit does, like "tank mix logged on Mon 1 Jul".
+func (l LogEntry) Sentence(Units) string {
+	return fmt.Sprintf("%s logged on %s", l.Name, l.Entry.Day.Short())
+}
+
+func (l LogEntry) apply(plan Plan) (Plan, error) {
+	if err := l.Entry.Check(); err != nil {
 		return plan, err
 	}
-	if d.Day >= plan.Outlook.end() {
-		return plan, Problemf(Invalid, "%s is beyond the days ahead", d.Day.Short())
+	if l.Entry.Day >= plan.Outlook.end() {
+		return plan, Problemf(Invalid, "%s is beyond the days ahead", l.Entry.Day.Short())
 	}
-	at := len(plan.Log)
-	for at > 0 && plan.Log[at-1].Day > d.Day {
+	plan.Log = withEntry(plan.Log, l.Entry)
+	return plan, nil
+}
+
+// withEntry puts the entry in its place by day, instead of the one that has its
+// id.
+func withEntry(log []Entry, entry Entry) []Entry {
+	out := make([]Entry, 0, len(log)+1)
+	for _, kept := range log {
+		if entry.ID == 0 || kept.ID != entry.ID {
+			out = append(out, kept)
+		}
+	}
+	at := len(out)
+	for at > 0 && out[at-1].Day > entry.Day {
 		at--
 	}
-	log := make([]Entry, 0, len(plan.Log)+1)
-	log = append(log, plan.Log[:at]...)
-	log = append(log, entry)
-	plan.Log = append(log, plan.Log[at:]...)
+	return slices.Insert(out, at, entry)
+}
+
+// SetLimits gives a work other limits.
+type SetLimits struct {
+	Work   WorkID
+	Name   string // how the sentence names it
+	Limits Limits
+}
+
+// Sentence says what the edit does, like "greens regulator with 10 days
+// between".
+func (s SetLimits) Sentence(Units) string {
+	return fmt.Sprintf("%s with at least %d %s between", s.Name, s.Limits.LeastDays, plural(s.Limits.LeastDays, "day"))
+}
+
+func (s SetLimits) apply(plan Plan) (Plan, error) {
+	return plan.withSettings(s.Work, func(settings *WorkSettings) { settings.Limits = s.Limits })
+}
+
+// OpenAll takes closed days as open.
+type OpenAll struct{}
+
+// Sentence says what the edit does.
+func (OpenAll) Sentence(Units) string { return "no day closed" }
+
+func (OpenAll) apply(plan Plan) (Plan, error) {
+	plan.Closed = nil
 	return plan, nil
 }
 
@@ -171,20 +239,24 @@ func (s SetTarget) Sentence(units Units) string {
 }
 
 func (s SetTarget) apply(plan Plan) (Plan, error) {
-	works := make([]Work, len(plan.Works))
-	copy(works, plan.Works)
+	return plan.withSettings(s.Work, func(settings *WorkSettings) { settings.Target, settings.Latest = s.Target, 0 })
+}
+
+// withSettings changes the settings of a work from the plan's morning on.
+func (p Plan) withSettings(id WorkID, change func(*WorkSettings)) (Plan, error) {
+	works := slices.Clone(p.Works)
 	for i, work := range works {
-		if work.ID != s.Work {
+		if work.ID != id {
 			continue
 		}
-		settings := work.Settings.On(plan.AsOf)
-		settings.Target, settings.Latest = s.Target, 0
+		settings := work.Settings.On(p.AsOf)
+		change(&settings)
 		if err := settings.check(); err != nil {
-			return plan, err
+			return p, err
 		}
-		works[i].Settings = work.Settings.With(plan.AsOf, settings)
-		plan.Works = works
-		return plan, nil
+		works[i].Settings = work.Settings.With(p.AsOf, settings)
+		p.Works = works
+		return p, nil
 	}
-	return plan, Problemf(NotFound, "the plan has no such work")
+	return p, Problemf(NotFound, "the plan has no such work")
 }

@@ -9,6 +9,8 @@ type Evaluation struct {
 	Yesterday Yesterday
 	Totals    []TotalState
 	Works     []WorkState
+	Nitrogen  []NitrogenState // of the surfaces that were fed
+	Closed    []Closed        // what is closed on the morning's own day
 	Outlook   Outlook
 }
 
@@ -35,6 +37,13 @@ type TotalState struct {
 	Start    Day
 	Unit     Unit
 	Bases    []TotalFacts
+	Marks    []MarkState
+}
+
+// MarkState says when a season total reaches a mark.
+type MarkState struct {
+	Mark  Mark
+	Bases []DueFacts // one per basis of the total
 }
 
 // TotalFacts is a season total on one basis.
@@ -62,6 +71,16 @@ func Evaluate(plan Plan) (Evaluation, error) {
 			return Evaluation{}, err
 		}
 		e.Works = append(e.Works, state)
+	}
+	for _, surface := range plan.Surfaces {
+		if state, ok := plan.nitrogen(surface); ok {
+			e.Nitrogen = append(e.Nitrogen, state)
+		}
+	}
+	for _, closed := range plan.Closed {
+		if anyWork := (Closed{From: closed.From, To: closed.To, Yearly: closed.Yearly}); anyWork.Covers(0, plan.AsOf) {
+			e.Closed = append(e.Closed, closed)
+		}
 	}
 	return e, nil
 }
@@ -101,8 +120,16 @@ func (p Plan) evaluateTotal(total Total) (TotalState, error) {
 	}
 	state.Unit = measure.Unit()
 	for _, basis := range measure.Bases() {
-		c := counter{p, measure, basis}
+		c := counter{plan: p, measure: measure, basis: basis}
 		state.Bases = append(state.Bases, TotalFacts{basis, c.past(state.Start, p.AsOf).sum})
+	}
+	for _, mark := range total.Marks {
+		reaching := MarkState{Mark: mark}
+		for _, basis := range measure.Bases() {
+			c := counter{plan: p, measure: measure, basis: basis}
+			reaching.Bases = append(reaching.Bases, c.due(state.Start, mark.At))
+		}
+		state.Marks = append(state.Marks, reaching)
 	}
 	return state, nil
 }
@@ -127,9 +154,15 @@ func (e Evaluation) Figures() Figures {
 	figures := e.Yesterday.figures()
 	for _, total := range e.Totals {
 		figures = append(figures, total.figures()...)
+		for _, mark := range total.Marks {
+			figures = append(figures, mark.Figures(total, e.AsOf)...)
+		}
 	}
 	for _, work := range e.Works {
 		figures = append(figures, work.Figures(e.AsOf)...)
+	}
+	for _, nitrogen := range e.Nitrogen {
+		figures = append(figures, nitrogen.Figures()...)
 	}
 	return figures
 }
@@ -182,17 +215,34 @@ func (w WorkState) Figures(asOf Day) Figures {
 		f = append(f,
 			Figure{Key: key + "total", Value: facts.Total.Total, Unit: w.Unit, Basis: facts.Basis, Notes: notes},
 			Figure{Key: key + "target", Value: facts.Target, Unit: w.Unit, Basis: facts.Basis})
-		if date := facts.Date(); date.Known {
-			f = append(f, Figure{Key: key + "days_until", Value: float64(date.Day - asOf), Unit: Days, Basis: facts.Basis})
+		f = append(f, facts.dates(key, asOf)...)
+	}
+	return f
+}
+
+// dates lists the dates of a count under the key.
+func (d DueFacts) dates(key string, asOf Day) Figures {
+	var f Figures
+	if date := d.Date(); date.Known {
+		f = append(f, Figure{Key: key + "days_until", Value: float64(date.Day - asOf), Unit: Days, Basis: d.Basis})
+	}
+	for _, named := range []struct {
+		name string
+		at   Passage
+	}{{"date", d.Date()}, {"early", d.Early}, {"middle", d.Middle}, {"late", d.Late}, {"path", d.Path}} {
+		if named.at.Known {
+			f = append(f, Figure{Key: key + named.name, Value: float64(named.at.Day), Unit: Date, Basis: d.Basis})
 		}
-		for _, named := range []struct {
-			name string
-			at   Passage
-		}{{"date", facts.Date()}, {"early", facts.Early}, {"middle", facts.Middle}, {"late", facts.Late}, {"path", facts.Path}} {
-			if named.at.Known {
-				f = append(f, Figure{Key: key + named.name, Value: float64(named.at.Day), Unit: Date, Basis: facts.Basis})
-			}
-		}
+	}
+	return f
+}
+
+// Figures lists the dates of the mark, each basis under its own keys.
+func (m MarkState) Figures(total TotalState, asOf Day) Figures {
+	var f Figures
+	for _, facts := range m.Bases {
+		key := fmt.Sprintf("mark.%s.%s.%s.", NameKey(total.Total.Name), NameKey(m.Mark.Name), facts.Basis)
+		f = append(f, facts.dates(key, asOf)...)
 	}
 	return f
 }

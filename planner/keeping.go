@@ -14,6 +14,7 @@ type Setup struct {
 	Surfaces []Surface
 	Works    []Work
 	Totals   []Total
+	Closed   []Closed
 }
 
 // Stamp says who changes something, when, and by which command line.

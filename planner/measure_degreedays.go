@@ -20,6 +20,15 @@ func newDegreeDays(c Counting) (Measure, error) {
 	if !slices.Contains(calc.Methods(), m.method) {
 		return nil, Problemf(Invalid, "%q is not a degree-day method", m.method)
 	}
+	limits := []float64{m.thresholds.LowerC}
+	if cutoff := m.thresholds.Cutoff; cutoff != "" && cutoff != calc.CutoffNone {
+		limits = append(limits, m.thresholds.UpperC)
+	}
+	for _, limitC := range limits {
+		if err := CheckTemperature(limitC); err != nil {
+			return nil, err
+		}
+	}
 	// A trial day shows whether method and limits go together.
 	trial := DayFacts{HasExtremes: true, HighC: 20, LowC: 10, HasHourly: true, HourlyC: 15, HoursC: []float64{15}}
 	if _, err := m.own(trial, trial, Midrange); err != nil {

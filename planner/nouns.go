@@ -91,7 +91,7 @@ func (s Site) SeasonStart() MonthDay {
 // Location loads the site's time zone.
 func (s Site) Location() (*time.Location, error) {
 	zone, err := time.LoadLocation(s.Zone)
-	if err != nil {
+	if err != nil || s.Zone == "" || s.Zone == "Local" { // the last two are the machine's, not the site's
 		return nil, Problemf(Invalid, "the zone %q is not known", s.Zone).
 			WithHint("Zones are written like America/New_York or Europe/Dublin.")
 	}
@@ -114,6 +114,8 @@ type Surface struct {
 	Site     SiteID      `json:"site"`
 	Name     string      `json:"name"`
 	Turf     Dated[Turf] `json:"turf"`
+	AreaM2   float64     `json:"area_m2,omitempty"` // 0 when the lead has not said
+	Parts    []Part      `json:"parts,omitempty"`   // none: the surface is done as a whole
 	Archived bool        `json:"archived,omitempty"`
 }
 
@@ -125,6 +127,8 @@ type Turf struct {
 	// CeilingGM2 is the most nitrogen the surface uses in a month of perfect
 	// growing weather, g N/m²; 0 when the lead has not said.
 	CeilingGM2 float64 `json:"ceiling_g_m2,omitempty"`
+	// BudgetGM2 is the nitrogen set aside for a season, g N/m²; 0 when not said.
+	BudgetGM2 float64 `json:"budget_g_m2,omitempty"`
 }
 
 // Counts says by what a work or a season total counts.
@@ -167,7 +171,15 @@ type WorkSettings struct {
 	Basis Basis `json:"basis,omitempty"`
 	// Latest is the total past which the work is overdue; 0 asks for the
 	// default, a tenth over the target and at least a day.
-	Latest float64 `json:"latest,omitempty"`
+	Latest float64    `json:"latest,omitempty"`
+	Limits Limits     `json:"limits,omitzero"`
+	Season WorkSeason `json:"season,omitzero"`
+	Origin Origin     `json:"origin,omitzero"`
+	// WateredIn says that the count starts the day after the work was watered
+	// in, not the day after it was done.
+	WateredIn bool `json:"watered_in,omitempty"`
+	// RainFreeHours is how long after the work rain puts it in question.
+	RainFreeHours float64 `json:"rain_free_hours,omitempty"`
 }
 
 // Total is a season total: a running total since a start date.
@@ -176,6 +188,7 @@ type Total struct {
 	Site     SiteID               `json:"site"`
 	Name     string               `json:"name"`
 	Settings Dated[TotalSettings] `json:"settings"`
+	Marks    []Mark               `json:"marks,omitempty"`
 	Archived bool                 `json:"archived,omitempty"`
 }
 
@@ -185,6 +198,22 @@ type TotalSettings struct {
 	Curve calc.GrowthCurve `json:"curve,omitzero"` // growth days only
 	Start MonthDay         `json:"start"`
 }
+
+// Mark is a total that means something to the lead: "first spray" at 120.
+type Mark struct {
+	Name string  `json:"name"`
+	At   float64 `json:"at"` // in the unit of the season total
+}
+
+// Result says how an entry turned out.
+type Result string
+
+// The results of an entry.
+const (
+	Good     Result = ""         // it counts
+	Doubtful Result = "doubtful" // it counts, and the old due date stands beside the new
+	Lost     Result = "lost"     // it did not happen
+)
 
 // Entry is one pass of the work log: what was done, where, when, at what rate,
 // by whom.
@@ -196,7 +225,12 @@ type Entry struct {
 	By     string    `json:"by"`
 	At     time.Time `json:"at"` // when it was logged
 	Note   string    `json:"note,omitempty"`
-	Undone bool      `json:"undone,omitempty"`
+	Result Result    `json:"result,omitempty"`
+	// Clock is when on the day it was done, in words like "06:10"; empty when
+	// not said.
+	Clock   string `json:"clock,omitempty"`
+	Watered Day    `json:"watered,omitempty"` // when it was watered in; 0 when not said
+	Undone  bool   `json:"undone,omitempty"`
 }
 
 // Pass is one work done in an entry.
@@ -204,6 +238,10 @@ type Pass struct {
 	Work WorkID `json:"work"`
 	// NitrogenGM2 is the nitrogen given, g N/m²; 0 when none was.
 	NitrogenGM2 float64 `json:"nitrogen_g_m2,omitempty"`
+	Rate        Rate    `json:"rate,omitzero"`        // as it was said
+	Part        string  `json:"part,omitempty"`       // the part done; empty for the whole surface
+	SlowShare   float64 `json:"slow_share,omitempty"` // of the nitrogen, 0 to 1
+	SlowWeeks   float64 `json:"slow_weeks,omitempty"` // over which the slow share comes
 }
 
 // Of returns the entry's pass of the work.
@@ -216,11 +254,11 @@ func (e Entry) Of(work WorkID) (Pass, bool) {
 	return Pass{}, false
 }
 
-// Noun is one thing that is kept: Site, Station, Surface, Work, Total or Entry,
-// by value. A noun with id 0 is new; dropping one means keeping it archived
+// Noun is one thing that is kept: Site, Station, Surface, Work, Total, Closed or
+// Entry, by value. A noun with id 0 is new; dropping one means keeping it archived
 // (an Entry: undone).
 type Noun interface {
-	// Kind is the noun's word: site, station, surface, work, total, entry.
+	// Kind is the noun's word: site, station, surface, work, total, closed, entry.
 	Kind() string
 	// Key is the noun's id, 0 when it is not kept yet.
 	Key() int64
@@ -326,10 +364,19 @@ func (s Surface) Check() error {
 		if _, err := turf.Value.Curve.Potential(0); err != nil {
 			return Problemf(Invalid, "the growth curve of %s cannot be used", s.Name).WithCause(err)
 		}
+		if !(turf.Value.BudgetGM2 >= 0 && turf.Value.BudgetGM2 <= 100) {
+			return Problemf(Invalid, "%g g N/m² is no budget of a season", turf.Value.BudgetGM2).WithHint("Give 0 to 100 g N/m².")
+		}
 		if !(turf.Value.CeilingGM2 >= 0 && turf.Value.CeilingGM2 <= 20) {
 			return Problemf(Invalid, "%g g N/m² a month is not a ceiling", turf.Value.CeilingGM2).
 				WithHint("Usual figures are 3 (cool-season) and 4 (warm-season) g N/m² a month: common practice.")
 		}
+	}
+	if !(s.AreaM2 >= 0 && s.AreaM2 <= 1e7) {
+		return Problemf(Invalid, "an area of %g m² cannot be used", s.AreaM2).WithHint("Give square metres, like area:5200.")
+	}
+	if err := s.checkParts(); err != nil {
+		return err
 	}
 	return CheckName(s.Name)
 }
@@ -361,6 +408,12 @@ func (s WorkSettings) check() error {
 	if s.Latest != 0 && !(s.Latest >= s.Target && s.Latest <= maxTarget) {
 		return Problemf(Invalid, "latest %g is before the target %g", s.Latest, s.Target).
 			WithHint("Latest is the total past which the work is overdue.")
+	}
+	if err := s.Limits.check(); err != nil {
+		return err
+	}
+	if !(s.RainFreeHours >= 0 && s.RainFreeHours <= 240) {
+		return Problemf(Invalid, "%g rain-free hours cannot be used", s.RainFreeHours).WithHint("Give 0 to 240, as the label says.")
 	}
 	switch s.Basis {
 	case "", Hourly, Midrange:
@@ -395,6 +448,14 @@ func (t Total) Check() error {
 			return Problemf(Invalid, "the growth curve of %s cannot be used", t.Name).WithCause(err)
 		}
 	}
+	for _, mark := range t.Marks {
+		if err := CheckName(mark.Name); err != nil {
+			return err
+		}
+		if !(mark.At > 0 && mark.At <= maxTarget) {
+			return Problemf(Invalid, "a mark at %g cannot be used", mark.At).WithHint("Give a total above 0, like mark:\"first spray\" at:120.")
+		}
+	}
 	return CheckName(t.Name)
 }
 
@@ -411,7 +472,20 @@ func (e Entry) Check() error {
 	if e.Day < DayMin || e.Day > DayMax {
 		return Problemf(Invalid, "the day %d is outside the years 1700 to 2299", e.Day)
 	}
+	if e.Result != Good && e.Result != Doubtful && e.Result != Lost {
+		return Problemf(Invalid, "%q is not a result", e.Result).WithHint("Use result:good, result:doubtful or result:lost.")
+	}
+	if e.Watered != 0 && (e.Watered < e.Day || e.Watered > e.Day+31) {
+		return Problemf(Invalid, "watered in on %s does not go with %s", e.Watered, e.Day).WithHint("Watering in comes on the day or in the month after.")
+	}
 	for _, pass := range e.Passes {
+		if err := pass.Rate.Check(); err != nil {
+			return err
+		}
+		if !(pass.SlowShare >= 0 && pass.SlowShare <= 1 && pass.SlowWeeks >= 0 && pass.SlowWeeks <= 52) || pass.SlowShare > 0 && pass.SlowWeeks == 0 {
+			return Problemf(Invalid, "a slow share of %g over %g weeks cannot be used", pass.SlowShare, pass.SlowWeeks).
+				WithHint("Give its percent and its weeks, like slow:40 weeks:8.")
+		}
 		if !(pass.NitrogenGM2 >= 0 && pass.NitrogenGM2 <= maxPassGM2) {
 			return Problemf(Invalid, "%g g N/m² in one pass: nitrogen or product?", pass.NitrogenGM2).
 				WithHint("The rate is nitrogen, 0 to 5 g N/m²: amount of product times its N share (14 g/m² at 21 %% is 2.9).")

@@ -48,6 +48,7 @@ type Plan struct {
 	Surfaces []Surface
 	Works    []Work // of all surfaces
 	Totals   []Total
+	Closed   []Closed
 	Log      []Entry // by day, undone entries left out
 	Outlook  Outlook
 }

@@ -18,8 +18,8 @@ type Season struct {
 const mostPastYears = 10
 
 // CompareSeason counts a total of the plan through yesterday, and through the
-// same day of each past year of the record. Years of which more than a tenth
-// of the days are missing are left out.
+// same month and day of each past year of the record. Years of which more than
+// a tenth of the days are missing are left out.
 func CompareSeason(plan Plan, total Total) (Season, error) {
 	state, err := plan.evaluateTotal(total)
 	if err != nil {
@@ -34,16 +34,17 @@ func CompareSeason(plan Plan, total Total) (Season, error) {
 	if err != nil {
 		return Season{}, err
 	}
+	yesterday := plan.AsOf - 1
 	for ago := 1; ago <= mostPastYears; ago++ {
 		year := SeasonYear{
 			Start: state.Settings.Start.In(state.Start.Year() - ago),
-			End:   plan.AsOf.InYear(plan.AsOf.Year() - ago),
+			End:   yesterday.InYear(yesterday.Year()-ago) + 1,
 		}
 		if year.End <= first {
 			break
 		}
 		for _, basis := range measure.Bases() {
-			past := counter{plan, measure, basis}.past(year.Start, year.End)
+			past := counter{plan: plan, measure: measure, basis: basis}.past(year.Start, year.End)
 			year.Bases = append(year.Bases, TotalFacts{basis, past.sum})
 		}
 		if sum := year.Bases[0].Sum; 10*sum.Missing <= sum.Days {

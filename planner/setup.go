@@ -69,6 +69,18 @@ func (s Setup) TotalsOf(site SiteID) []Total {
 	return filter(s.Totals, func(total Total) bool { return total.Site == site })
 }
 
+// ClosedOf returns the site's closed days.
+func (s Setup) ClosedOf(site SiteID) []Closed {
+	return filter(s.Closed, func(closed Closed) bool { return closed.Site == site })
+}
+
+// ClosedDays returns the site's closed days with the name; its only ones when
+// the name is empty.
+func (s Setup) ClosedDays(site Site, name string) (Closed, error) {
+	return pick(s.ClosedOf(site.ID), func(closed Closed) string { return closed.Name }, "closed day", "name", name,
+		"/setup closed add name:tournament from:2024-07-06 to:2024-07-07")
+}
+
 func filter[T any](all []T, keep func(T) bool) []T {
 	var out []T
 	for _, one := range all {

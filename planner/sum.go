@@ -61,6 +61,17 @@ type counter struct {
 	plan    Plan
 	measure Measure
 	basis   Basis
+	// less, when not nil, is taken off each day's units: the slow nitrogen that
+	// came on it.
+	less func(Day) float64
+}
+
+// off is what is taken off the day's units.
+func (c counter) off(day Day) float64 {
+	if c.less == nil {
+		return 0
+	}
+	return c.less(day)
 }
 
 // pastUnits are the units of the days from First to the day before the plan's
@@ -79,6 +90,7 @@ func (c counter) past(first, end Day) pastUnits {
 	for day := first; day < min(end, c.plan.AsOf); day++ {
 		facts, line := c.plan.Record.Filled(day)
 		units, standing := c.measure.Units(facts, c.next(day), c.basis)
+		units -= c.off(day)
 		past.units = append(past.units, units)
 		past.known = append(past.known, standing != Nothing)
 		past.sum.add(units, standing, line)
@@ -138,5 +150,5 @@ func (c counter) along(days []DayFacts, past pastUnits, day Day) float64 {
 	}
 	outlook := c.plan.Outlook
 	units, _ := c.measure.Units(outlook.at(days, day), outlook.at(days, day+1), c.basis)
-	return units
+	return units - c.off(day)
 }

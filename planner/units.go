@@ -73,7 +73,8 @@ func (u Units) Show(value float64, unit Unit) (shown float64, name string) {
 	return value, string(unit)
 }
 
-// number writes a value with as few digits as it needs, at most two decimals.
+// number writes a value with as few digits as it needs, at most two decimals;
+// what rounds to nothing is "0", without a sign.
 func number(value float64) string {
 	text := strconv.FormatFloat(value, 'f', 2, 64)
 	for text[len(text)-1] == '0' {
@@ -81,6 +82,9 @@ func number(value float64) string {
 	}
 	if text[len(text)-1] == '.' {
 		text = text[:len(text)-1]
+	}
+	if text == "-0" {
+		return "0"
 	}
 	return text
 }

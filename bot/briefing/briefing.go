@@ -20,6 +20,9 @@ func Morning(e planner.Evaluation) reply.Reply {
 	r := reply.Of(reply.Heading(e.Site.Name + ", " + e.AsOf.Short()))
 	r.Add(workBlocks(e)...)
 	r.Add(yesterdayBlocks(e)...)
+	for _, nitrogen := range e.Nitrogen {
+		r.Add(reply.Text(NitrogenLine(nitrogen, e.Works)))
+	}
 	r.Add(totalBlocks(e)...)
 	r.Figures = e.Figures()
 	return r
@@ -31,6 +34,9 @@ func workBlocks(e planner.Evaluation) []reply.Block {
 		return []reply.Block{reply.Text("No work is set up yet: /help start")}
 	}
 	var blocks []reply.Block
+	for _, closed := range e.Closed {
+		blocks = append(blocks, reply.Text("Closed today: "+closed.Name))
+	}
 	urgent := false
 	for _, state := range ByUrgency(e.Works) {
 		blocks = append(blocks, reply.Text(strings.Join(Brief(state, e), "\n")))
@@ -55,7 +61,8 @@ func isUrgent(status planner.Status) bool {
 // ByUrgency orders works: overdue, due, due today, then by date, then those
 // without a date or without a first entry.
 func ByUrgency(states []planner.WorkState) []planner.WorkState {
-	order := []planner.Status{planner.Overdue, planner.Due, planner.DueToday, planner.NotYet, planner.NoDate, planner.NotStarted}
+	order := []planner.Status{planner.Overdue, planner.Due, planner.DueToday, planner.NotYet, planner.NoDate,
+		planner.Full, planner.NotStarted, planner.Resting}
 	sorted := slices.Clone(states)
 	slices.SortStableFunc(sorted, func(a, b planner.WorkState) int {
 		if d := slices.Index(order, a.Status) - slices.Index(order, b.Status); d != 0 {
@@ -78,8 +85,13 @@ func Title(state planner.WorkState) string { return state.Surface.Name + " " + s
 // count is, on which mean, and the other mean's date where it differs.
 func Brief(state planner.WorkState, e planner.Evaluation) []string {
 	facts, started := state.OwnFacts()
-	if !started {
-		return []string{Title(state) + ": not started", "log the last one with /done"}
+	switch {
+	case state.Status == planner.Resting && state.Resumes.Known:
+		return []string{Title(state) + ": resting", "on again " + state.Resumes.Day.Short()}
+	case state.Status == planner.Resting:
+		return []string{Title(state) + ": resting"}
+	case !started:
+		return append([]string{Title(state) + ": not started", "log the last one with /done"}, InTheWay(state)...)
 	}
 	lines := []string{Title(state) + ": " + headline(state, facts)}
 	if soon := soonAndSure(state, facts, e.AsOf); soon != "" {
@@ -89,7 +101,8 @@ func Brief(state planner.WorkState, e planner.Evaluation) []string {
 	if mean := whichMean(state, facts); mean != "" {
 		lines = append(lines, mean)
 	}
-	return append(lines, facts.Total.Notes()...)
+	lines = append(lines, facts.Total.Notes()...)
+	return append(lines, InTheWay(state)...)
 }
 
 // headline is the date, or how the work stands.
@@ -103,6 +116,8 @@ func headline(state planner.WorkState, facts planner.DueFacts) string {
 		return "due today"
 	case planner.NoDate:
 		return "no date"
+	case planner.Full:
+		return "season's most reached"
 	}
 	return facts.Date().Day.Short()
 }
@@ -156,8 +171,12 @@ func DayMonth(day planner.Day) string {
 func When(state planner.WorkState, asOf planner.Day) string {
 	facts, started := state.OwnFacts()
 	switch date := facts.Date(); {
+	case state.Status == planner.Resting:
+		return "resting"
 	case !started:
 		return "not started"
+	case state.Status == planner.Full:
+		return "season's most reached"
 	case !date.Known:
 		return "no date within a year"
 	case date.Day < asOf:

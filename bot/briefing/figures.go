@@ -146,6 +146,11 @@ func totalBlocks(e planner.Evaluation) []reply.Block {
 	for _, state := range e.Totals {
 		table.Rows = append(table.Rows, TotalRow(state, e.Site.Units))
 		blocks = append(blocks, reply.Text(TotalNote(state, e.Site.Units)))
+		for _, mark := range state.Marks {
+			if line := MarkLine(state, mark, e); line != "" {
+				blocks = append(blocks, reply.Text(line))
+			}
+		}
 	}
 	return append([]reply.Block{table}, blocks...)
 }
@@ -216,4 +221,32 @@ func sumNotes(bases []planner.TotalFacts) []string {
 		}
 	}
 	return notes
+}
+
+// MarkLine says when a season total reaches a mark, on the 24-hour mean where
+// the total has it; "" for a mark passed more than a week ago.
+func MarkLine(state planner.TotalState, mark planner.MarkState, e planner.Evaluation) string {
+	facts := mark.Bases[0]
+	if facts.Total.AllStandIn() {
+		facts = mark.Bases[len(mark.Bases)-1]
+	}
+	at, _ := e.Site.Units.Show(mark.Mark.At, state.Unit)
+	text := fmt.Sprintf("%s (%s at %s): ", mark.Mark.Name, state.Total.Name, Plain(at))
+	date := facts.Date()
+	switch {
+	case !date.Known:
+		return text + "not within a year"
+	case e.AsOf-date.Day > 7:
+		return ""
+	case date.Day < e.AsOf:
+		return text + "passed " + date.Day.Short()
+	case date.Day == e.AsOf:
+		text += "today"
+	default:
+		text += date.Day.Short()
+	}
+	if sure := HowSure(facts, e.AsOf); sure != "" {
+		text += ", " + sure
+	}
+	return text + ", " + facts.Basis.Words()
 }

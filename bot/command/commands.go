@@ -7,7 +7,7 @@ import "log/slog"
 func (d Desk) Table(log *slog.Logger) Table {
 	commands := []Command{
 		d.briefing(), d.due(), d.done(), d.whatIf(), d.help(),
-		d.logList(), d.logUndo(),
+		d.logList(), d.logAmend(), d.logUndo(),
 		d.weatherDay(), d.weatherFile(), d.weatherAhead(),
 		d.season(), d.whyCompare(),
 	}
@@ -16,5 +16,6 @@ func (d Desk) Table(log *slog.Logger) Table {
 	commands = append(commands, d.setupSurface()...)
 	commands = append(commands, d.setupWork()...)
 	commands = append(commands, d.setupTotal()...)
+	commands = append(commands, d.setupClosed()...)
 	return New(log, commands...)
 }

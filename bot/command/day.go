@@ -70,6 +70,21 @@ func readDay(text string) (dayWords, bool) {
 	return dayWords{}, false
 }
 
+var clockBehind = regexp.MustCompile(`^(.*)[ t]([01]?\d|2[0-3]):([0-5]\d)$`)
+
+// cutClock takes a time like 06:10 off the end of a day as typed. A time alone
+// is today's.
+func cutClock(text string) (day, clock string) {
+	match := clockBehind.FindStringSubmatch(" " + strings.ToLower(strings.TrimSpace(text)))
+	if match == nil {
+		return text, ""
+	}
+	if day = strings.TrimSpace(match[1]); day == "" {
+		day = "today"
+	}
+	return day, ("0" + match[2])[len(match[2])-1:] + ":" + match[3]
+}
+
 // dayCount is a number of days; its text has at most five digits.
 func dayCount(number, unit string) int {
 	n, _ := strconv.Atoi(number)

@@ -47,6 +47,7 @@ type Option struct {
 	Choices  []string // of a Choice, at most 25
 	Range    *Range   // of the number kinds; in the typed unit
 	Past     bool     // of a Day: a weekday or "4 jun" means the nearest past one
+	Clock    bool     // of a Day: a time may stand behind it, like "today 06:10"
 	Example  string   // a value that works; empty takes the kind's own
 	// Complete offers values that begin with the prefix, at most 25. The
 	// request holds the options given so far.

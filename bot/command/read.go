@@ -63,7 +63,11 @@ func (v *value) fill() (ok bool) {
 	case Numbers:
 		return v.fillNumbers()
 	case Day:
-		v.day, ok = readDay(v.text)
+		day := v.text
+		if v.option.Clock {
+			day, v.clock = cutClock(v.text)
+		}
+		v.day, ok = readDay(day)
 		v.text = strings.ToLower(v.text)
 	case MonthDay:
 		v.month, ok = readMonthDay(v.text)

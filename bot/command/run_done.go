@@ -2,7 +2,6 @@ package command
 
 import (
 	"context"
-	"fmt"
 	"strconv"
 	"strings"
 
@@ -14,18 +13,31 @@ import (
 func (d Desk) done() Command {
 	return Command{
 		Path: "done", Short: "log what was done: one pass over one or more surfaces", Listed: true, Asks: true,
-		Long: "The count starts again the day after. It shows what the entry will mean and asks once; /log undo takes it back. " +
-			"This log is not the legal spray record.",
-		Options: []Option{
+		Long: "Several surfaces and works in one entry are one pass, such as a tank mix. The count starts again the day after. " +
+			"It shows what the entry will mean and asks once; /log undo takes it back. This log is not the legal spray record.",
+		Options: append([]Option{
 			{Name: "surfaces", Kind: Names, Required: true, Help: "where it was done", Example: "greens", Complete: d.names(surfaceNames)},
 			{Name: "works", Kind: Names, Required: true, Help: "what was done", Example: "regulator", Complete: d.names(workNames)},
-			{Name: "when", Kind: Day, Past: true, Help: "the day it was done; today when not given", Example: "yesterday"},
-			{Name: "rate", Kind: Number, Range: AtLeast(0), Help: "nitrogen given, g N/m²", Example: "2.5"},
-			{Name: "note", Kind: Text, Help: "anything worth keeping", Example: "wind from the west"},
-			d.siteOption(),
-		},
-		Examples: []string{"/done greens regulator", "/done surfaces:greens works:feed when:yesterday rate:2.5"},
-		Run:      d.runDone,
+			{Name: "when", Kind: Day, Past: true, Clock: true, Help: "the day it was done, with a time if you like; today when not given", Example: "today 06:10"},
+		}, append(passOptions(), d.siteOption())...),
+		Examples: []string{"/done greens regulator", "/done surfaces:greens works:feed when:yesterday rate:2.5",
+			`/done greens,tees feed when:"today 06:10" rate:"14 g/m2" n:21`},
+		Run: d.runDone,
+	}
+}
+
+// passOptions say what an entry holds beyond where, what and when; logging and
+// amending share them.
+func passOptions() []Option {
+	return []Option{
+		{Name: "rate", Kind: Text, Help: "nitrogen in g/m², or with a unit; product with n:", Example: "2.5"},
+		{Name: "n", Kind: Number, Range: Between(0, 82), Help: "nitrogen percent of the product that rate: is an amount of", Example: "21"},
+		{Name: "slow", Kind: Number, Range: Between(0, 100), Help: "percent of the nitrogen that comes slowly", Example: "40"},
+		{Name: "weeks", Kind: Number, Range: Between(1, 52), Help: "with slow: over how many weeks it comes", Example: "8"},
+		{Name: "part", Kind: Name, Help: "the part of the surface that was done; the whole when not given", Example: "front nine"},
+		{Name: "result", Kind: Choice, Choices: []string{"good", string(planner.Doubtful), string(planner.Lost)}, Help: "doubtful keeps the old due date beside the new; lost did not happen"},
+		{Name: "watered", Kind: Day, Past: true, Help: "the day it was watered in, where the count waits for that", Example: "today"},
+		{Name: "note", Kind: Text, Help: "anything worth keeping", Example: "wind from the west"},
 	}
 }
 
@@ -34,30 +46,21 @@ func (d Desk) runDone(ctx context.Context, req Request) (reply.Reply, error) {
 	if err != nil {
 		return reply.Reply{}, err
 	}
-	entry, titles, err := v.entry()
+	entry, err := v.entry()
 	if err != nil {
 		return reply.Reply{}, err
 	}
-	plan, before, err := v.evaluate(ctx)
+	r, err := v.meaning(ctx, entry)
 	if err != nil {
 		return reply.Reply{}, err
 	}
-	edits := make([]planner.Edit, len(entry.Passes))
-	for i, pass := range entry.Passes {
-		edits[i] = planner.DoWork{Work: pass.Work, Name: titles[i], Day: entry.Day, NitrogenGM2: pass.NitrogenGM2}
-	}
-	changed, refusals := planner.Apply(plan, edits...)
-	if len(refusals) > 0 {
-		return reply.Reply{}, refusals[0]
-	}
-	after, err := planner.Evaluate(changed)
-	if err != nil {
-		return reply.Reply{}, err
-	}
-	r := v.meaning(entry, titles, before, after)
 	if v.Ask {
+		when := entry.Day.String()
+		if entry.Clock != "" {
+			when += " " + entry.Clock
+		}
 		r.Private = true
-		r.Confirm = &reply.Confirm{Question: "Log this?", Line: v.LineWith("when", entry.Day.String())}
+		r.Confirm = &reply.Confirm{Question: "Log this?", Line: v.LineWith("when", when)}
 		return r, nil
 	}
 	kept, err := v.book.Save(ctx, v.stamp(), entry)
@@ -70,79 +73,235 @@ func (d Desk) runDone(ctx context.Context, req Request) (reply.Reply, error) {
 	return r, nil
 }
 
-// entry builds the entry that the request describes, and a title for each pass.
-func (v visit) entry() (planner.Entry, []string, error) {
-	day, err := v.day("when", v.today)
-	if err != nil {
-		return planner.Entry{}, nil, err
-	}
-	if day > v.today {
-		return planner.Entry{}, nil, planner.Problemf(planner.Invalid, "%s is ahead of today.", day.Short()).
-			WithHint("Log it when it is done. To see what it would mean: /whatif work-on:%s", day)
-	}
-	note, _ := v.Values.Text("note")
-	entry := planner.Entry{Site: v.site.ID, Day: day, By: v.Caller.Name, At: v.stamp().At, Note: note}
-	rate, _ := v.Values.Number("rate")
+// entry builds the entry that the request describes.
+func (v visit) entry() (planner.Entry, error) {
+	entry := planner.Entry{Site: v.site.ID, Day: v.today, By: v.Caller.Name, At: v.stamp().At}
 	surfaces, _ := v.Values.Names("surfaces")
 	works, _ := v.Values.Names("works")
-	if rate > 0 && len(works) > 1 {
-		return planner.Entry{}, nil, planner.Problemf(planner.Invalid, "Which of the works gave the nitrogen?").
-			WithHint("Log the feed on a line of its own.")
-	}
-	var titles []string
 	for _, surfaceName := range surfaces {
 		surface, err := v.setup.Surface(v.site, surfaceName)
 		if err != nil {
-			return planner.Entry{}, nil, err
+			return entry, err
 		}
 		for _, workName := range works {
 			work, err := v.setup.Work(surface, workName)
 			if err != nil {
-				return planner.Entry{}, nil, err
+				return entry, err
 			}
-			if work.Settings.On(v.today).Counts == planner.ByNitrogen && rate == 0 {
-				return planner.Entry{}, nil, v.Missing("rate")
-			}
-			entry.Passes = append(entry.Passes, planner.Pass{Work: work.ID, NitrogenGM2: rate})
-			titles = append(titles, surface.Name+" "+work.Name)
+			entry.Passes = append(entry.Passes, planner.Pass{Work: work.ID})
 		}
 	}
-	return entry, titles, entry.Check()
+	if err := v.fill(&entry); err != nil {
+		return entry, err
+	}
+	return entry, v.needsNitrogen(entry)
 }
 
-// meaning says what an entry does to counts and dates.
-func (v visit) meaning(entry planner.Entry, titles []string, before, after planner.Evaluation) reply.Reply {
-	r := reply.Of()
-	for i, pass := range entry.Passes {
-		lines := []string{titles[i] + ", " + entry.Day.Short()}
-		if pass.NitrogenGM2 > 0 {
-			lines[0] += fmt.Sprintf(", %s g N/m²", briefing.Digits(pass.NitrogenGM2, planner.NitrogenGM2))
-		}
-		if state, ok := stateOf(before.Works, pass.Work); ok {
-			lines = append(lines, earlyNote(state)...)
-		}
-		if state, ok := stateOf(after.Works, pass.Work); ok {
-			if facts, started := state.OwnFacts(); started {
-				lines = append(lines, "counts from "+facts.Since.Short(), "next: "+briefing.When(state, v.today))
-				if sure := briefing.HowSure(facts, v.today); sure != "" {
-					lines = append(lines, sure)
-				}
+// fill reads the options of an entry over what it holds.
+func (v visit) fill(entry *planner.Entry) error {
+	day, err := v.day("when", entry.Day)
+	if err != nil {
+		return err
+	}
+	if day > v.today {
+		return planner.Problemf(planner.Invalid, "%s is ahead of today.", day.Short()).
+			WithHint("Log it when it is done. To see what it would mean: /whatif work-on:%s", day)
+	}
+	if v.Values.Has("when") {
+		entry.Day = day
+		entry.Clock, _ = v.Values.Clock("when")
+	}
+	if watered, given, err := v.Values.Day("watered", v.today); err != nil {
+		return err
+	} else if given {
+		entry.Watered = watered
+	}
+	if result, given := v.Values.Text("result"); given {
+		entry.Result = planner.Result(strings.TrimPrefix(result, "good"))
+	}
+	entry.Note = textOr(v.Values, "note", entry.Note)
+	if err := v.fillPasses(entry.Passes); err != nil {
+		return err
+	}
+	return entry.Check()
+}
+
+// fillPasses reads rate, slow share and part into the passes.
+func (v visit) fillPasses(passes []planner.Pass) error {
+	nPercent, hasN := v.Values.Number("n")
+	slow, hasSlow := v.Values.Number("slow")
+	weeks, hasWeeks := v.Values.Number("weeks")
+	text, hasRate := v.Values.Text("rate")
+	if hasRate && len(distinctWorks(passes, v.setup.Works)) > 1 {
+		return planner.Problemf(planner.Invalid, "Which of the works had that rate?").WithHint("Log the feed on a line of its own.")
+	}
+	switch {
+	case hasN && !hasRate:
+		return v.Missing("rate")
+	case hasSlow && slow > 0 && !hasWeeks:
+		return v.Missing("weeks")
+	case hasWeeks && !hasSlow:
+		return v.Missing("slow")
+	}
+	part, hasPart := v.Values.Text("part")
+	for i := range passes {
+		if hasRate {
+			rate, err := planner.ParseRate(text, nPercent, hasN)
+			if err != nil {
+				return err
 			}
-			r.Figures = append(r.Figures, state.Figures(v.today)...)
+			passes[i].Rate, passes[i].NitrogenGM2 = rate, rate.NitrogenGM2()
+		}
+		if hasSlow {
+			passes[i].SlowShare, passes[i].SlowWeeks = slow/100, weeks
+		}
+		if hasPart {
+			if err := v.checkPart(passes[i].Work, part); err != nil {
+				return err
+			}
+			passes[i].Part = planner.NameKey(part)
+		}
+	}
+	return nil
+}
+
+// distinctWorks are the names of the works that the passes are of.
+func distinctWorks(passes []planner.Pass, works []planner.Work) map[string]bool {
+	names := map[string]bool{}
+	for _, pass := range passes {
+		for _, work := range works {
+			if work.ID == pass.Work {
+				names[planner.NameKey(work.Name)] = true
+			}
+		}
+	}
+	return names
+}
+
+// checkPart refuses a part that the work's surface does not have.
+func (v visit) checkPart(id planner.WorkID, part string) error {
+	_, surface, _ := v.workOf(id)
+	names := namesOf(surface.Parts, func(p planner.Part) string { return p.Name })
+	for _, name := range names {
+		if planner.NameKey(name) == planner.NameKey(part) {
+			return nil
+		}
+	}
+	problem := planner.Problemf(planner.NotFound, "%s has no part %q.", surface.Name, part)
+	if len(names) == 0 {
+		return problem.WithHint("A lead names the parts:\n%s", Line("setup surface change", Pair{"name", surface.Name}, Pair{"parts", "front nine,back nine"}))
+	}
+	return problem.WithHint("It has: %s.", strings.Join(names, ", "))
+}
+
+// workOf finds a work and its surface by the work's id.
+func (v visit) workOf(id planner.WorkID) (planner.Work, planner.Surface, bool) {
+	for _, work := range v.setup.Works {
+		if work.ID != id {
+			continue
+		}
+		for _, surface := range v.setup.Surfaces {
+			if surface.ID == work.Surface {
+				return work, surface, true
+			}
+		}
+	}
+	return planner.Work{}, planner.Surface{}, false
+}
+
+// needsNitrogen asks for the nitrogen of a work that counts by it.
+func (v visit) needsNitrogen(entry planner.Entry) error {
+	for _, pass := range entry.Passes {
+		work, _, _ := v.workOf(pass.Work)
+		if pass.NitrogenGM2 == 0 && work.Settings.On(v.today).Counts == planner.ByNitrogen {
+			return v.Missing("rate")
+		}
+	}
+	return nil
+}
+
+// meaning says what an entry does to counts, dates, limits and the balance.
+func (v visit) meaning(ctx context.Context, entry planner.Entry) (reply.Reply, error) {
+	plan, before, err := v.evaluate(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	changed, refusals := planner.Apply(plan, planner.LogEntry{Entry: entry, Name: "the entry"})
+	if len(refusals) > 0 {
+		return reply.Reply{}, refusals[0]
+	}
+	after, err := planner.Evaluate(changed)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	r := reply.Of()
+	for _, pass := range entry.Passes {
+		work, surface, _ := v.workOf(pass.Work)
+		lines := passLines(surface, work, entry, pass)
+		if was, ok := stateOf(before.Works, pass.Work); ok {
+			lines = append(lines, briefing.PassNotes(was, entry.Day, plan)...)
+		}
+		if is, ok := stateOf(after.Works, pass.Work); ok && entry.Result != planner.Lost {
+			lines = append(lines, nextLines(is, v.today)...)
+			r.Figures = append(r.Figures, is.Figures(v.today)...)
 		}
 		r.Add(reply.Text(strings.Join(lines, "\n")))
 	}
-	return r
+	for _, state := range after.Nitrogen {
+		if givesNitrogen(entry, state.Surface, plan) {
+			r.Add(reply.Text(briefing.NitrogenLine(state, after.Works)))
+			r.Figures = append(r.Figures, state.Figures()...)
+		}
+	}
+	return r, nil
 }
 
-// earlyNote warns when a count that is still running is started again.
-func earlyNote(state planner.WorkState) []string {
-	facts, started := state.OwnFacts()
-	if !started || state.Status != planner.NotYet || facts.Target <= 0 {
-		return nil
+func givesNitrogen(entry planner.Entry, surface planner.Surface, plan planner.Plan) bool {
+	for _, work := range plan.WorksOn(surface.ID) {
+		if pass, ok := entry.Of(work.ID); ok && pass.NitrogenGM2 > 0 {
+			return true
+		}
 	}
-	share := 100 * facts.Total.Total / facts.Target
-	return []string{fmt.Sprintf("at %.0f %% of the interval: check the label's least gap and season total", share)}
+	return false
+}
+
+// passLines say what was done where, at what rate and how much of it.
+func passLines(surface planner.Surface, work planner.Work, entry planner.Entry, pass planner.Pass) []string {
+	title := surface.Name + " " + work.Name
+	if pass.Part != "" {
+		title += " (" + pass.Part + ")"
+	}
+	when := entry.Day.Short()
+	if entry.Clock != "" {
+		when += " " + entry.Clock
+	}
+	lines := []string{title + ", " + when}
+	if words := pass.Rate.Words(); words != "" {
+		lines = append(lines, words)
+		if total := pass.Rate.Over(surface.AreaM2 * surface.ShareOf(pass.Part)); total != "" {
+			lines = append(lines, total)
+		}
+	}
+	if pass.SlowShare > 0 {
+		lines = append(lines, briefing.Plain(100*pass.SlowShare)+" % of it over "+briefing.Plain(pass.SlowWeeks)+" weeks")
+	}
+	if entry.Result != planner.Good {
+		lines = append(lines, "result: "+string(entry.Result))
+	}
+	return lines
+}
+
+// nextLines say what the count does after the entry.
+func nextLines(state planner.WorkState, today planner.Day) []string {
+	facts, started := state.OwnFacts()
+	if !started {
+		return []string{"next: " + briefing.When(state, today)}
+	}
+	lines := []string{"counts from " + facts.Since.Short(), "next: " + briefing.When(state, today)}
+	if sure := briefing.HowSure(facts, today); sure != "" {
+		lines = append(lines, sure)
+	}
+	return append(lines, briefing.InTheWay(state)...)
 }
 
 func stateOf(states []planner.WorkState, id planner.WorkID) (planner.WorkState, bool) {

@@ -52,6 +52,16 @@ func (d Desk) runDue(ctx context.Context, req Request) (reply.Reply, error) {
 		r.Add(reply.Text(strings.Join(briefing.Brief(state, evaluation), "\n")))
 		r.Figures = append(r.Figures, state.Figures(v.today)...)
 	}
+	if !v.Values.Has("surface") && !v.Values.Has("work") {
+		for _, total := range evaluation.Totals {
+			for _, mark := range total.Marks {
+				if line := briefing.MarkLine(total, mark, evaluation); line != "" {
+					r.Add(reply.Text(line))
+				}
+				r.Figures = append(r.Figures, mark.Figures(total, v.today)...)
+			}
+		}
+	}
 	r.Add(reply.Text(briefing.AheadNote(evaluation.Outlook)), reply.Text(briefing.Caution))
 	return r, nil
 }

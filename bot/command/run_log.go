@@ -13,7 +13,8 @@ import (
 
 func (d Desk) logList() Command {
 	return Command{
-		Path: "log list", Short: "what was done, newest first",
+		Path: "log list", Short: "what was done, newest first; one work with how its intervals ran",
+		Long: "With surface and work it also tells how past intervals really ran, in days, degree days and growth days on both means, and the mean of the last five beside the target.",
 		Options: []Option{d.surfaceOption(), d.workOption(),
 			{Name: "most", Kind: Whole, Range: Between(1, 100), Help: "how many entries; 10 when not given", Example: "20"}, d.siteOption()},
 		Examples: []string{"/log list", "/log list surface:greens work:feed"},
@@ -54,6 +55,11 @@ func (d Desk) runLogList(ctx context.Context, req Request) (reply.Reply, error) 
 	if shown == 0 {
 		r.Add(reply.Text("Nothing is logged yet. Log a pass with /done greens regulator"))
 	}
+	if len(wanted) == 1 {
+		for id := range wanted {
+			return r, v.addIntervals(ctx, &r, id)
+		}
+	}
 	return r, nil
 }
 
@@ -90,8 +96,11 @@ func (v visit) entryLines(entry planner.Entry, titles map[planner.WorkID]string)
 		if !ok {
 			continue
 		}
-		if pass.NitrogenGM2 > 0 {
-			title += fmt.Sprintf(", %s g N/m²", briefing.Digits(pass.NitrogenGM2, planner.NitrogenGM2))
+		if pass.Part != "" {
+			title += " (" + pass.Part + ")"
+		}
+		if rate := pass.Rate.Words(); rate != "" {
+			title += ", " + rate
 		}
 		lines = append(lines, title)
 	}
@@ -99,10 +108,16 @@ func (v visit) entryLines(entry planner.Entry, titles map[planner.WorkID]string)
 		return nil
 	}
 	head := fmt.Sprintf("%d: %s %d", entry.ID, entry.Day.Short(), entry.Day.Year())
+	if entry.Clock != "" {
+		head += " " + entry.Clock
+	}
 	if entry.By != "" {
 		head += ", " + entry.By
 	}
 	lines = append([]string{head}, lines...)
+	if entry.Result != planner.Good {
+		lines = append(lines, "result: "+string(entry.Result))
+	}
 	if entry.Note != "" {
 		lines = append(lines, "\""+entry.Note+"\"")
 	}
@@ -134,4 +149,90 @@ func (d Desk) runLogUndo(ctx context.Context, req Request) (reply.Reply, error) 
 		return reply.Reply{}, err
 	}
 	return reply.Of(reply.Text("Taken back.\n" + strings.Join(v.entryLines(entry, titles), "\n"))), nil
+}
+
+// intervalsShown is how many past intervals are shown, and of how many the mean
+// is taken.
+const intervalsShown = 5
+
+// addIntervals tells how the work's past intervals really ran.
+func (v visit) addIntervals(ctx context.Context, r *reply.Reply, id planner.WorkID) error {
+	work, surface, ok := v.workOf(id)
+	if !ok {
+		return nil
+	}
+	plan, err := v.plan(ctx, v.today)
+	if err != nil {
+		return err
+	}
+	intervals, err := planner.PastIntervals(plan, work)
+	days, sums, some := planner.MeanInterval(intervals, intervalsShown)
+	if err != nil || !some {
+		return err
+	}
+	units := v.site.Units
+	text := []string{"How the intervals ran"}
+	for _, interval := range intervals[max(0, len(intervals)-intervalsShown):] {
+		text = append(text, fmt.Sprintf("%s to %s: %s", briefing.DayMonth(interval.From), briefing.DayMonth(interval.To), briefing.Days(interval.Days)))
+		for _, sum := range interval.Sums {
+			text = append(text, "  "+sumText(sum, sum.Sum.Total, units))
+		}
+	}
+	text = append(text, fmt.Sprintf("mean of the last %d: %s days", min(len(intervals), intervalsShown), briefing.Plain(days)))
+	newest := intervals[len(intervals)-1]
+	key := "interval." + planner.NameKey(surface.Name) + "." + planner.NameKey(work.Name) + "."
+	r.Figures = append(r.Figures, planner.Figure{Key: key + "days", Value: days, Unit: planner.Days, Basis: planner.NoBasis})
+	for i, sum := range newest.Sums {
+		text = append(text, "  "+sumText(sum, sums[i], units))
+		r.Figures = append(r.Figures, planner.Figure{Key: key + string(sum.Counts) + "." + string(sum.Basis), Value: sums[i], Unit: sum.Unit, Basis: sum.Basis})
+	}
+	text = append(text, "target: "+settingsText(work.Settings.On(v.today), units))
+	r.Add(reply.Text(strings.Join(text, "\n")))
+	return nil
+}
+
+// sumText is what an interval came to in one measure on one basis.
+func sumText(sum planner.IntervalSum, value float64, units planner.Units) string {
+	_, unit := units.Show(0, sum.Unit)
+	return fmt.Sprintf("%s %s, %s", briefing.Amount(value, sum.Unit, units), unit, sum.Basis.Words())
+}
+
+func (d Desk) logAmend() Command {
+	return Command{
+		Path: "log amend", Short: "correct an entry: day, rate, part, result, note",
+		Long: "Crew amend their own entries; a lead anyone's. What it was before stays in the change log.",
+		Options: append([]Option{
+			{Name: "entry", Kind: Whole, Required: true, Range: AtLeast(1), Help: "the entry's number, as /log list shows it", Example: "12"},
+			{Name: "when", Kind: Day, Past: true, Clock: true, Help: "the day it was done, with a time if you like", Example: "yesterday"},
+		}, append(passOptions(), d.siteOption())...),
+		Examples: []string{"/log amend entry:12 result:doubtful", "/log amend entry:12 rate:2.2 note:\"short of product\""},
+		Run:      d.runLogAmend,
+	}
+}
+
+func (d Desk) runLogAmend(ctx context.Context, req Request) (reply.Reply, error) {
+	v, err := d.visit(ctx, req)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	id, _ := v.Values.Whole("entry")
+	entry, err := v.book.Entry(ctx, v.site.ID, planner.EntryID(id), v.Caller.Name, v.Caller.Role >= Lead)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	if err := v.fill(&entry); err != nil {
+		return reply.Reply{}, err
+	}
+	if err := v.needsNitrogen(entry); err != nil {
+		return reply.Reply{}, err
+	}
+	r, err := v.meaning(ctx, entry)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	if _, err := v.book.Save(ctx, v.stamp(), entry); err != nil {
+		return reply.Reply{}, err
+	}
+	r.Blocks = append([]reply.Block{reply.Textf("Amended entry %d.", id)}, r.Blocks...)
+	return r, nil
 }

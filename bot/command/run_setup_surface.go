@@ -3,6 +3,7 @@ package command
 import (
 	"context"
 	"fmt"
+	"strings"
 
 	"swardbook/bot/briefing"
 	"swardbook/bot/reply"
@@ -35,6 +36,9 @@ func grassOptions() []Option {
 		{Name: "optimum", Kind: Temperature, Help: "with grass:own: temperature of best growth", Example: "22"},
 		{Name: "width", Kind: Warming, Help: "with grass:own: how fast growth falls off either side, degrees", Example: "6"},
 		{Name: "held", Kind: Yes, Help: "warm-season: growth is held above the optimum instead of falling"},
+		{Name: "area", Kind: Number, Range: Between(0, 1e7), Help: "area, m²; products are then told in kg and L", Example: "5200"},
+		{Name: "parts", Kind: Text, Help: "parts done apart, with shares of the area if they differ", Example: "front nine,back nine"},
+		{Name: "budget", Kind: Number, Range: Between(0, 100), Help: "nitrogen set aside for a season, g N/m²", Example: "18"},
 		{Name: "ceiling", Kind: Number, Range: Between(0, 20), Help: "most nitrogen used in a month, g N/m²; usual 3 cool, 4 warm (common practice)", Example: "3"},
 	}
 }
@@ -82,10 +86,45 @@ func (v visit) turf(turf planner.Turf) (planner.Turf, error) {
 		}
 		turf.Curve.HeldAbove = held
 	}
+	if budget, given := v.Values.Number("budget"); given {
+		turf.BudgetGM2 = budget
+	}
 	if ceiling, given := v.Values.Number("ceiling"); given {
 		turf.CeilingGM2 = ceiling
 	}
 	return turf, nil
+}
+
+// areaAndParts reads a surface's area and parts: "front nine,back nine" are
+// equal parts, "front nine 0.6,back nine 0.4" are not.
+func (v visit) areaAndParts(surface *planner.Surface) error {
+	if area, given := v.Values.Number("area"); given {
+		surface.AreaM2 = area
+	}
+	text, given := v.Values.Text("parts")
+	if !given {
+		return nil
+	}
+	surface.Parts = nil
+	if planner.NameKey(text) == "none" {
+		return nil
+	}
+	names := splitNames(text)
+	shared := 0
+	for _, name := range names {
+		part := planner.Part{Name: name, Share: 1 / float64(len(names))}
+		if at := strings.LastIndexByte(name, ' '); at > 0 {
+			if share, _, ok := readNumber(name[at+1:]); ok && share > 0 && share < 1 {
+				part = planner.Part{Name: name[:at], Share: share}
+				shared++
+			}
+		}
+		surface.Parts = append(surface.Parts, part)
+	}
+	if shared > 0 && shared < len(names) {
+		return v.Invalid("parts", "some parts have a share and some have none")
+	}
+	return nil
 }
 
 func turfText(turf planner.Turf, units planner.Units) string {
@@ -94,8 +133,23 @@ func turfText(turf planner.Turf, units planner.Units) string {
 	if turf.Curve.HeldAbove {
 		text += ", held above"
 	}
+	if turf.BudgetGM2 > 0 {
+		text += fmt.Sprintf(", %s g N/m² a season", briefing.Plain(turf.BudgetGM2))
+	}
 	if turf.CeilingGM2 > 0 {
 		text += fmt.Sprintf(", at most %s g N/m² a month", briefing.Plain(turf.CeilingGM2))
+	}
+	return text
+}
+
+// areaText is the surface's area and its parts.
+func areaText(surface planner.Surface) string {
+	text := ""
+	if surface.AreaM2 > 0 {
+		text += fmt.Sprintf(", %s m²", briefing.Plain(surface.AreaM2))
+	}
+	for _, part := range surface.Parts {
+		text += fmt.Sprintf(", %s (%s %%)", part.Name, briefing.Plain(100*part.Share))
 	}
 	return text
 }
@@ -111,6 +165,9 @@ func (d Desk) runSurfaceAdd(ctx context.Context, req Request) (reply.Reply, erro
 	}
 	name, _ := v.Values.Text("name")
 	surface := planner.Surface{Site: v.site.ID, Name: name, Turf: planner.Always(turf)}
+	if err := v.areaAndParts(&surface); err != nil {
+		return reply.Reply{}, err
+	}
 	return d.kept(ctx, v.stamp(), surface, reply.Of(reply.Textf("Added %s: %s.", name, turfText(turf, v.site.Units)),
 		reply.Textf("Next:\n%s", Line("setup work add", Pair{"surface", name}, Pair{"name", "regulator"},
 			Pair{"counts", "degree-days"}, Pair{"base", "0"}, Pair{"target", "200"}))))
@@ -142,6 +199,9 @@ func (d Desk) runSurfaceChange(ctx context.Context, req Request) (reply.Reply, e
 	if err != nil {
 		return reply.Reply{}, err
 	}
+	if err := v.areaAndParts(&surface); err != nil {
+		return reply.Reply{}, err
+	}
 	said := reply.Of(reply.Textf("Changed %s.", surface.Name))
 	if turf != before {
 		surface.Turf = surface.Turf.With(from, turf)
@@ -166,7 +226,7 @@ func (d Desk) runSurfaceList(ctx context.Context, req Request) (reply.Reply, err
 	}
 	var fields reply.Fields
 	for _, surface := range v.setup.SurfacesOf(v.site.ID) {
-		fields = append(fields, reply.Field{Name: surface.Name, Value: turfText(surface.Turf.On(v.today), v.site.Units)})
+		fields = append(fields, reply.Field{Name: surface.Name, Value: turfText(surface.Turf.On(v.today), v.site.Units) + areaText(surface)})
 	}
 	return listed(fields, "There is no surface yet. Like: /setup surface add name:greens grass:cool"), nil
 }

@@ -15,12 +15,15 @@ func (d Desk) setupTotal() []Command {
 		Option{Name: "grass", Kind: Choice, Choices: []string{"cool", "warm", "cool-f", "warm-f"}, Help: "growth days: of which grass"},
 		Option{Name: "from", Kind: MonthDay, Help: "start of the season; 1 January, or 1 July in the south, when not given", Example: "03-01"})
 	add := append([]Option{nameOption("what the total is called", "gdd10", nil)}, settings...)
-	change := append([]Option{which, newNameOption()}, settings...)
+	change := append([]Option{which, newNameOption(),
+		{Name: "mark", Kind: Name, Help: "a total that means something, by name", Example: "first spray"},
+		{Name: "at", Kind: Target, Range: AtLeast(0), Help: "with mark: the total; 0 takes the mark away", Example: "120"},
+	}, settings...)
 	return []Command{
 		{Path: "setup total add", Short: "add a season total: degree days or growth days since a date", Who: Lead, Options: append(add, d.siteOption()),
 			Examples: []string{"/setup total add name:gdd10 base:10 from:03-01", "/setup total add name:growth counts:growth-days grass:cool"}, Run: d.runTotalAdd},
 		{Path: "setup total change", Short: "change a season total from today on; older figures stay", Who: Lead, Options: append(change, d.siteOption()),
-			Examples: []string{"/setup total change name:gdd10 from:02-15"}, Run: d.runTotalChange},
+			Examples: []string{"/setup total change name:gdd10 from:02-15", `/setup total change name:gdd10 mark:"first spray" at:120`}, Run: d.runTotalChange},
 		{Path: "setup total drop", Short: "drop a season total", Who: Lead, Asks: true, Options: []Option{which, d.siteOption()},
 			Examples: []string{"/setup total drop name:gdd10"}, Run: d.runTotalDrop},
 		{Path: "setup total list", Short: "the season totals", Who: Lead, Options: []Option{d.siteOption()}, Examples: []string{"/setup total list"}, Run: d.runTotalList},
@@ -91,7 +94,51 @@ func (d Desk) runTotalChange(ctx context.Context, req Request) (reply.Reply, err
 	if settings != before {
 		total.Settings = total.Settings.With(v.today, settings)
 	}
-	return d.kept(ctx, v.stamp(), total, reply.Of(reply.Textf("Changed %s: %s.", total.Name, totalText(settings, v.site.Units))))
+	if err := v.mark(&total, settings); err != nil {
+		return reply.Reply{}, err
+	}
+	return d.kept(ctx, v.stamp(), total, reply.Of(reply.Textf("Changed %s: %s%s.", total.Name, totalText(settings, v.site.Units), marksText(total, settings, v.site.Units))))
+}
+
+// mark sets or takes away one mark of a season total.
+func (v visit) mark(total *planner.Total, settings planner.TotalSettings) error {
+	name, hasMark := v.Values.Text("mark")
+	typed, hasAt := v.Values.Degrees("at")
+	switch {
+	case !hasMark && !hasAt:
+		return nil
+	case !hasMark:
+		return v.Missing("mark")
+	case !hasAt:
+		return v.Missing("at")
+	}
+	at := 0.0
+	if typed.Value > 0 {
+		var err error
+		if at, err = v.target(settings.Counting, typed); err != nil {
+			return err
+		}
+	}
+	var marks []planner.Mark
+	for _, mark := range total.Marks {
+		if planner.NameKey(mark.Name) != planner.NameKey(name) {
+			marks = append(marks, mark)
+		}
+	}
+	if at > 0 {
+		marks = append(marks, planner.Mark{Name: name, At: at})
+	}
+	total.Marks = marks
+	return nil
+}
+
+func marksText(total planner.Total, settings planner.TotalSettings, units planner.Units) string {
+	text := ""
+	for _, mark := range total.Marks {
+		at, _ := units.Show(mark.At, unitCounted(settings.Counting))
+		text += fmt.Sprintf("; %s at %s", mark.Name, briefing.Plain(at))
+	}
+	return text
 }
 
 func (d Desk) runTotalDrop(ctx context.Context, req Request) (reply.Reply, error) {
@@ -110,7 +157,7 @@ func (d Desk) runTotalList(ctx context.Context, req Request) (reply.Reply, error
 	}
 	var fields reply.Fields
 	for _, total := range v.setup.TotalsOf(v.site.ID) {
-		fields = append(fields, reply.Field{Name: total.Name, Value: totalText(total.Settings.On(v.today), v.site.Units)})
+		fields = append(fields, reply.Field{Name: total.Name, Value: totalText(total.Settings.On(v.today), v.site.Units) + marksText(total, total.Settings.On(v.today), v.site.Units)})
 	}
 	return listed(fields, "There is no season total yet. Like: /setup total add name:gdd10 base:10 from:03-01"), nil
 }

@@ -21,6 +21,67 @@ func countingOptions(counts ...planner.Counts) []Option {
 	}
 }
 
+// limitOptions are what the label, the season and the target's paper say.
+func limitOptions() []Option {
+	return []Option{
+		{Name: "gap", Kind: Whole, Range: Between(0, 366), Help: "least days between two passes, as the label says", Example: "14"},
+		{Name: "most", Kind: Whole, Range: Between(0, 366), Help: "most passes a season", Example: "6"},
+		{Name: "most-total", Kind: Number, Range: AtLeast(0), Help: "most given a season, in g N/m², g/m² or mL/m²", Example: "18"},
+		{Name: "on-from", Kind: MonthDay, Help: "first day of its season; on all year when not given", Example: "03-15"},
+		{Name: "on-to", Kind: MonthDay, Help: "last day of its season", Example: "10-31"},
+		{Name: "resting", Kind: Yes, Help: "it rests until you say no"},
+		{Name: "starts-empty", Kind: Yes, Help: "a nitrogen balance starts each season with nothing left"},
+		{Name: "watered-in", Kind: Yes, Help: "the count starts after it was watered in"},
+		{Name: "rain-free", Kind: Number, Range: Between(0, 240), Help: "hours without rain that the label wants after it", Example: "4"},
+		{Name: "source", Kind: Text, Help: "where the target comes from", Example: "label"},
+		{Name: "ingredient", Kind: Text, Help: "the active ingredient the target was found with", Example: "the label's"},
+		{Name: "of-grass", Kind: Text, Help: "the grass the target was found on", Example: "bentgrass"},
+		{Name: "height", Kind: Number, Range: Between(0, 200), Help: "the height of cut the target was found at, mm", Example: "3.2"},
+	}
+}
+
+// limits reads the limit options over the settings before.
+func (v visit) limits(settings *planner.WorkSettings) error {
+	whole := func(option string, into *int) {
+		if n, given := v.Values.Whole(option); given {
+			*into = n
+		}
+	}
+	amount := func(option string, into *float64) {
+		if n, given := v.Values.Number(option); given {
+			*into = n
+		}
+	}
+	yes := func(option string, into *bool) {
+		if said, given := v.Values.Yes(option); given {
+			*into = said
+		}
+	}
+	whole("gap", &settings.Limits.LeastDays)
+	whole("most", &settings.Limits.MostTimes)
+	amount("most-total", &settings.Limits.MostTotal)
+	yes("resting", &settings.Season.Resting)
+	yes("starts-empty", &settings.Season.StartsEmpty)
+	yes("watered-in", &settings.WateredIn)
+	amount("rain-free", &settings.RainFreeHours)
+	settings.Origin.Source = textOr(v.Values, "source", settings.Origin.Source)
+	settings.Origin.Ingredient = textOr(v.Values, "ingredient", settings.Origin.Ingredient)
+	settings.Origin.Grass = textOr(v.Values, "of-grass", settings.Origin.Grass)
+	amount("height", &settings.Origin.HeightMM)
+	from, hasFrom := v.Values.MonthDay("on-from")
+	to, hasTo := v.Values.MonthDay("on-to")
+	if hasFrom {
+		settings.Season.From = from
+	}
+	if hasTo {
+		settings.Season.To = to
+	}
+	if (settings.Season.From == planner.MonthDay{}) != (settings.Season.To == planner.MonthDay{}) {
+		return v.Missing("on-from", "on-to")
+	}
+	return nil
+}
+
 func words[T ~string](list []T) []string {
 	return namesOf(list, func(one T) string { return string(one) })
 }
@@ -70,6 +131,7 @@ func (d Desk) setupWork() []Command {
 		{Name: "mean", Kind: Choice, Choices: []string{string(planner.Hourly), string(planner.Midrange)}, Help: "the 24-hour or the high/low mean; by the site's readings when not given"},
 		{Name: "latest", Kind: Target, Range: AtLeast(0), Help: "total past which it is overdue; a tenth over the target when not given", Example: "230"},
 	}
+	settings = append(settings, limitOptions()...)
 	add := []Option{required(d.surfaceOption()), nameOption("what the work is called", "regulator", nil), required(counting[0])}
 	add = append(append(add, settings...), counting[1:]...)
 	change := []Option{required(d.surfaceOption()), which, newNameOption()}
@@ -115,6 +177,9 @@ func (v visit) workSettings(settings planner.WorkSettings, surface planner.Surfa
 			return settings, err
 		}
 		settings.Latest = latest
+	}
+	if err := v.limits(&settings); err != nil {
+		return settings, err
 	}
 	settings.Basis = planner.Basis(textOr(v.Values, "mean", string(settings.Basis)))
 	if !settings.StandsOnMean() {
@@ -221,12 +286,37 @@ func settingsText(settings planner.WorkSettings, units planner.Units) string {
 		latest, _ := units.Show(settings.Latest, unit)
 		text += fmt.Sprintf(", overdue past %s", briefing.Plain(latest))
 	}
+	text += limitsText(settings)
 	switch {
 	case settings.Basis != "":
 		text += ", " + settings.Basis.Words()
 	case settings.StandsOnMean():
 		text += ", on the 24-hour mean if the station gives hourly readings"
 	}
+	return text
+}
+
+// limitsText says limits, season and origin in words.
+func limitsText(settings planner.WorkSettings) string {
+	text := ""
+	add := func(given bool, format string, args ...any) {
+		if given {
+			text += ", " + fmt.Sprintf(format, args...)
+		}
+	}
+	limits, season, origin := settings.Limits, settings.Season, settings.Origin
+	add(limits.LeastDays > 0, "%d days between", limits.LeastDays)
+	add(limits.MostTimes > 0, "at most %d times a season", limits.MostTimes)
+	add(limits.MostTotal > 0, "at most %s given a season", briefing.Plain(limits.MostTotal))
+	add(season.From != planner.MonthDay{}, "on from %s to %s", season.From, season.To)
+	add(season.StartsEmpty, "starting empty")
+	add(season.Resting, "resting")
+	add(settings.WateredIn, "counts from watering in")
+	add(settings.RainFreeHours > 0, "%s rain-free hours", briefing.Plain(settings.RainFreeHours))
+	add(origin.Source != "", "target from %s", origin.Source)
+	add(origin.Ingredient != "", "%s", origin.Ingredient)
+	add(origin.Grass != "", "on %s", origin.Grass)
+	add(origin.HeightMM > 0, "at %s mm", briefing.Plain(origin.HeightMM))
 	return text
 }
 

@@ -23,7 +23,9 @@ func (d Desk) whatIf() Command {
 			{Name: "highs", Kind: Numbers, Help: "highs of the days ahead, one a day", Example: "29 30 28"},
 			{Name: "lows", Kind: Numbers, Help: "lows of the days ahead, one a day", Example: "18 19 18"},
 			{Name: "work-on", Kind: Day, Help: "the work is done on this day", Example: "tomorrow"},
-			{Name: "rate", Kind: Number, Range: Between(0, 5), Help: "with work-on: nitrogen given, g N/m²", Example: "2.5"},
+			{Name: "rate", Kind: Text, Help: "with work-on: nitrogen given, g N/m² or with a unit", Example: "2.5"},
+			{Name: "gap", Kind: Whole, Range: Between(0, 366), Help: "another least number of days between two passes", Example: "10"},
+			{Name: "open", Kind: Yes, Help: "take closed days as open"},
 			{Name: "target", Kind: Target, Range: AtLeast(0), Help: "another target for the work", Example: "250"},
 			d.siteOption(),
 		},
@@ -59,6 +61,9 @@ func (d Desk) runWhatIf(ctx context.Context, req Request) (reply.Reply, error) {
 		return reply.Reply{}, err
 	}
 	r := v.sideBySide(chosen, base, whatIf, edits)
+	if day, given, _ := v.Values.Day("work-on", v.today); given {
+		r.Add(passNotes(chosen[0], day, plan)...)
+	}
 	r.Private = true
 	r.Figures = append(base.Figures().Under("base."), whatIf.Figures().Under("whatif.")...)
 	return r, nil
@@ -84,6 +89,15 @@ func (v visit) sideBySide(chosen []planner.WorkState, base, whatIf planner.Evalu
 	}
 	r.Add(reply.Text(briefing.AheadNote(base.Outlook)), reply.Text(briefing.Caution))
 	return r
+}
+
+// passNotes say what stands against doing the work on the day.
+func passNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []reply.Block {
+	notes := briefing.PassNotes(state, day, plan)
+	if len(notes) == 0 {
+		return nil
+	}
+	return []reply.Block{reply.Text(strings.Join(notes, "\n"))}
 }
 
 func shortDate(state planner.WorkState) string {
@@ -120,6 +134,9 @@ func (v visit) edits(chosen []planner.WorkState) ([]planner.Edit, error) {
 		days, _ := v.Values.Whole("warm-days")
 		edits = append(edits, planner.Warm{From: from, Days: days, ByC: byC})
 	}
+	if open, _ := v.Values.Yes("open"); open {
+		edits = append(edits, planner.OpenAll{})
+	}
 	forWork, err := v.workEdits(chosen)
 	if err != nil {
 		return nil, err
@@ -133,7 +150,7 @@ func (v visit) edits(chosen []planner.WorkState) ([]planner.Edit, error) {
 
 // workEdits are the edits of one work, which must then be the only one chosen.
 func (v visit) workEdits(chosen []planner.WorkState) ([]planner.Edit, error) {
-	if !v.Values.Has("work-on") && !v.Values.Has("target") {
+	if !v.Values.Has("work-on") && !v.Values.Has("target") && !v.Values.Has("gap") {
 		if v.Values.Has("rate") {
 			return nil, planner.Problemf(planner.Missing, "A rate needs the day it is given.").WithHint("Add work-on:tomorrow.")
 		}
@@ -153,13 +170,23 @@ func (v visit) workEdits(chosen []planner.WorkState) ([]planner.Edit, error) {
 		}
 		edits = append(edits, planner.SetTarget{Work: state.Work.ID, Name: briefing.Title(state), Target: target, Unit: state.Unit})
 	}
+	if gap, given := v.Values.Whole("gap"); given {
+		limits := state.Settings.Limits
+		limits.LeastDays = gap
+		edits = append(edits, planner.SetLimits{Work: state.Work.ID, Name: briefing.Title(state), Limits: limits})
+	}
 	if v.Values.Has("work-on") {
 		day, err := v.day("work-on", v.today)
 		if err != nil {
 			return nil, err
 		}
-		rate, _ := v.Values.Number("rate")
-		edits = append(edits, planner.DoWork{Work: state.Work.ID, Name: briefing.Title(state), Day: day, NitrogenGM2: rate})
+		var rate planner.Rate
+		if text, given := v.Values.Text("rate"); given {
+			if rate, err = planner.ParseRate(text, 0, false); err != nil {
+				return nil, err
+			}
+		}
+		edits = append(edits, planner.DoWork{Work: state.Work.ID, Name: briefing.Title(state), Day: day, NitrogenGM2: rate.NitrogenGM2()})
 	}
 	return edits, nil
 }

@@ -18,6 +18,7 @@ type value struct {
 	numbers []float64
 	unit    planner.Units
 	day     dayWords
+	clock   string // behind the day, like 06:10; empty when none was given
 	month   planner.MonthDay
 	yes     bool
 }
@@ -94,6 +95,13 @@ func (v Values) Day(name string, today planner.Day) (day planner.Day, given bool
 		return 0, true, planner.Problemf(planner.Invalid, "%q is outside the years 1700 to 2299", found.text)
 	}
 	return day, true, nil
+}
+
+// Clock is the time behind the value of a Day option that takes one, like
+// 06:10.
+func (v Values) Clock(name string) (string, bool) {
+	given, ok := v.of(name, Day)
+	return given.clock, ok && given.clock != ""
 }
 
 // MonthDay is the value of a MonthDay option.

@@ -41,7 +41,8 @@ var _ planner.Ahead = Simple{}
 // Outlook returns the days ahead of asOf. Typed days stand in the path and in
 // every member; after them each past year goes on from the same month and day
 // as it went, and the path is their mean, day by day. Days a year lacks are
-// taken from the mean of the others.
+// taken from the mean of the others, days that all lack from the mean of the
+// newest known days.
 func (Simple) Outlook(record planner.Record, hand []planner.HandDay, asOf planner.Day) planner.Outlook {
 	record = record.Before(asOf)
 	out := planner.Outlook{AsOf: asOf, Start: firstGap(record, asOf), Engine: EnginePastYears}
@@ -70,13 +71,14 @@ func (Simple) Outlook(record planner.Record, hand []planner.HandDay, asOf planne
 }
 
 // firstGap is the first day in reach that is missing from the record and that
-// no straight line fills; asOf when there is none.
+// no straight line fills; asOf when there is none. Days before the record
+// begins are missing too: a work may have been done before the station stood.
+// Without any record there is nothing to fill them with.
 func firstGap(record planner.Record, asOf planner.Day) planner.Day {
-	first, ok := record.First()
-	if !ok {
+	if _, ok := record.First(); !ok {
 		return asOf
 	}
-	for day := max(first, asOf-lookback); day < asOf; day++ {
+	for day := asOf - lookback; day < asOf; day++ {
 		if facts, _ := record.Filled(day); facts.Empty() {
 			return day
 		}
@@ -85,7 +87,8 @@ func firstGap(record planner.Record, asOf planner.Day) planner.Day {
 }
 
 // pastYears returns, newest first, each past year that is known well enough,
-// going on from the month and day of start.
+// going on from the month and day of asOf; the days from start to asOf are those
+// before it.
 func pastYears(record planner.Record, start, asOf planner.Day, length int) [][]planner.DayFacts {
 	first, ok := record.First()
 	if !ok {
@@ -93,13 +96,13 @@ func pastYears(record planner.Record, start, asOf planner.Day, length int) [][]p
 	}
 	var members [][]planner.DayFacts
 	for ago := 1; ; ago++ {
-		from := start.InYear(start.Year() - ago)
-		if from+planner.Day(length) <= first {
+		sameDay := asOf.InYear(asOf.Year() - ago)
+		if sameDay+Horizon <= first {
 			return members
 		}
 		member := make([]planner.DayFacts, length)
 		for i := range member {
-			member[i], _ = record.Filled(from + planner.Day(i))
+			member[i], _ = record.Filled(sameDay + start - asOf + planner.Day(i))
 		}
 		ahead := member[asOf-start:]
 		if wellKnown(ahead) && wellKnown(ahead[:nearDays]) {

@@ -67,6 +67,8 @@ func decodeNoun(kind string, text sql.NullString) (planner.Noun, error) {
 		return decode[planner.Work](text.String)
 	case planner.Total{}.Kind():
 		return decode[planner.Total](text.String)
+	case planner.Closed{}.Kind():
+		return decode[planner.Closed](text.String)
 	case planner.Entry{}.Kind():
 		return decode[planner.Entry](text.String)
 	case kindImport, kindAhead:

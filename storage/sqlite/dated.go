@@ -29,16 +29,22 @@ var (
 	}
 	surfaceTurf = setting[planner.Turf]{
 		table: "surface_turf", parent: "surface", words: "grass",
-		columns: "grass, optimum_c, width_c, held_above, ceiling_g_m2",
+		columns: "grass, optimum_c, width_c, held_above, ceiling_g_m2, budget_g_m2",
 		fields: func(t *planner.Turf) []any {
-			return []any{&t.Grass, &t.Curve.OptimumC, &t.Curve.WidthC, &t.Curve.HeldAbove, &t.CeilingGM2}
+			return []any{&t.Grass, &t.Curve.OptimumC, &t.Curve.WidthC, &t.Curve.HeldAbove, &t.CeilingGM2, &t.BudgetGM2}
 		},
 	}
 	workSettings = setting[planner.WorkSettings]{
 		table: "work_setting", parent: "work", words: "setting",
-		columns: "counts, method, lower_c, upper_c, cutoff, target, basis, latest",
+		columns: "counts, method, lower_c, upper_c, cutoff, target, basis, latest, " +
+			"least_days, most_times, most_total, season_from_month, season_from_day, season_to_month, season_to_day, " +
+			"resting, starts_empty, watered_in, rain_free_hours, origin_source, origin_ingredient, origin_grass, origin_height_mm",
 		fields: func(s *planner.WorkSettings) []any {
-			return append(countingFields(&s.Counting), &s.Target, &s.Basis, &s.Latest)
+			return append(countingFields(&s.Counting), &s.Target, &s.Basis, &s.Latest,
+				&s.Limits.LeastDays, &s.Limits.MostTimes, &s.Limits.MostTotal,
+				&s.Season.From.Month, &s.Season.From.Day, &s.Season.To.Month, &s.Season.To.Day,
+				&s.Season.Resting, &s.Season.StartsEmpty, &s.WateredIn, &s.RainFreeHours,
+				&s.Origin.Source, &s.Origin.Ingredient, &s.Origin.Grass, &s.Origin.HeightMM)
 		},
 	}
 	totalSettings = setting[planner.TotalSettings]{

@@ -54,6 +54,10 @@ func TestOpenRefusals(t *testing.T) {
 	if err := os.WriteFile(text, []byte(strings.Repeat("cut the greens\n", 500)), 0o600); err != nil {
 		t.Fatal(err)
 	}
+	short := filepath.Join(folder, "short.txt")
+	if err := os.WriteFile(short, []byte("cut"), 0o600); err != nil {
+		t.Fatal(err)
+	}
 	foreign := filepath.Join(folder, "foreign.db")
 	makeDatabase(t, foreign, "CREATE TABLE bird (name)")
 	marked := filepath.Join(folder, "marked.db")
@@ -70,6 +74,7 @@ func TestOpenRefusals(t *testing.T) {
 		{"a file for a folder", filepath.Join(text, "store.db"), planner.NotFound, "there is no folder"},
 		{"a folder", folder, planner.Invalid, "is a folder"},
 		{"no database", text, planner.Refused, "is no database"},
+		{"a few bytes", short, planner.Refused, "is no database"},
 		{"another program's tables", foreign, planner.Refused, "is a database of another program"},
 		{"another program's mark", marked, planner.Refused, "is a database of another program"},
 		{"newer", newer, planner.Refused, "was written by a newer program (schema 2, this one knows 1)"},

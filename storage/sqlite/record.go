@@ -94,6 +94,9 @@ func (r *factRow) facts() (planner.DayFacts, error) {
 	if err != nil {
 		return planner.DayFacts{}, err
 	}
+	if hoursC == nil && r.meanC.Valid && !r.published.Bool {
+		return planner.DayFacts{}, errors.New("the hourly values of its 24-hour mean are missing")
+	}
 	return planner.DayFacts{
 		Day: day, HasExtremes: r.highC.Valid, HighC: r.highC.Float64, LowC: r.lowC.Float64, ExtremesFrom: from,
 		HasHourly: r.meanC.Valid, HourlyC: r.meanC.Float64, Published: r.published.Bool,

@@ -34,6 +34,8 @@ func (t *Team) Save(ctx context.Context, stamp planner.Stamp, noun planner.Noun)
 		return save(ctx, t, stamp, works{}, noun)
 	case planner.Total:
 		return save(ctx, t, stamp, totals{}, noun)
+	case planner.Closed:
+		return save(ctx, t, stamp, closedDays{}, noun)
 	case planner.Entry:
 		return save(ctx, t, stamp, entries{}, noun)
 	}

@@ -18,10 +18,11 @@ func (entries) list(ctx context.Context, on session, team int64, where string, a
 	passes := map[planner.EntryID][]planner.Pass{}
 	_, err := collect(ctx, on, func(rows *sql.Rows) (pass planner.Pass, err error) {
 		var entry planner.EntryID
-		err = rows.Scan(&entry, &pass.Work, &pass.NitrogenGM2)
+		err = rows.Scan(&entry, &pass.Work, &pass.NitrogenGM2, &pass.Rate.Kind, &pass.Rate.Value, &pass.Rate.NPercent,
+			&pass.Part, &pass.SlowShare, &pass.SlowWeeks)
 		passes[entry] = append(passes[entry], pass)
 		return pass, err
-	}, `SELECT entry.id, entry_pass.work, entry_pass.nitrogen_g_m2 FROM entry JOIN entry_pass
+	}, `SELECT entry.id, work, nitrogen_g_m2, rate_kind, rate_value, n_percent, part, slow_share, slow_weeks FROM entry JOIN entry_pass
 		ON entry_pass.team = entry.team AND entry_pass.entry = entry.id
 		WHERE entry.team = ? AND `+where+` ORDER BY entry.id, entry_pass.place`, args...)
 	if err != nil {
@@ -30,11 +31,12 @@ func (entries) list(ctx context.Context, on session, team int64, where string, a
 	return collect(ctx, on, func(rows *sql.Rows) (planner.Entry, error) {
 		var entry planner.Entry
 		var at int64
-		err := rows.Scan(&entry.ID, &entry.Site, &entry.Day, &entry.By, &at, &entry.Note, &entry.Undone)
+		err := rows.Scan(&entry.ID, &entry.Site, &entry.Day, &entry.By, &at, &entry.Note,
+			&entry.Result, &entry.Clock, &entry.Watered, &entry.Undone)
 		entry.At = time.Unix(at, 0).UTC()
 		entry.Passes = passes[entry.ID]
 		return entry, err
-	}, `SELECT id, site, day, who, at, note, undone FROM entry WHERE team = ? AND `+where+` ORDER BY id`, args...)
+	}, `SELECT id, site, day, who, at, note, result, clock, watered, undone FROM entry WHERE team = ? AND `+where+` ORDER BY id`, args...)
 }
 
 // Entries returns the site's log, undone entries left out, by day and then in
@@ -66,7 +68,8 @@ func (entries) write(ctx context.Context, s saving, before, after planner.Entry)
 	}
 	err := s.put(ctx, "entry", after.Key(),
 		column{"site", after.Site}, column{"day", after.Day}, column{"who", after.By}, column{"at", after.At.Unix()},
-		column{"note", after.Note}, column{"undone", after.Undone})
+		column{"note", after.Note}, column{"result", after.Result}, column{"clock", after.Clock},
+		column{"watered", after.Watered}, column{"undone", after.Undone})
 	if err != nil {
 		return err
 	}
@@ -77,8 +80,10 @@ func (entries) write(ctx context.Context, s saving, before, after planner.Entry)
 		if err := s.allowPass(ctx, before, after, place); err != nil {
 			return err
 		}
-		_, err := s.on.ExecContext(ctx, `INSERT INTO entry_pass (team, entry, place, work, nitrogen_g_m2) VALUES (?, ?, ?, ?, ?)`,
-			s.team, after.ID, place, pass.Work, pass.NitrogenGM2)
+		_, err := s.on.ExecContext(ctx, `INSERT INTO entry_pass (team, entry, place, work, nitrogen_g_m2,
+			rate_kind, rate_value, n_percent, part, slow_share, slow_weeks) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
+			s.team, after.ID, place, pass.Work, pass.NitrogenGM2, pass.Rate.Kind, pass.Rate.Value, pass.Rate.NPercent,
+			pass.Part, pass.SlowShare, pass.SlowWeeks)
 		if err != nil {
 			return err
 		}

@@ -32,7 +32,10 @@ func (t *Team) Setup(ctx context.Context) (planner.Setup, error) {
 		if setup.Works, err = (works{}).list(ctx, conn, t.id, surfaceOpen); err != nil {
 			return err
 		}
-		setup.Totals, err = totals{}.list(ctx, conn, t.id, siteOpen)
+		if setup.Totals, err = (totals{}).list(ctx, conn, t.id, siteOpen); err != nil {
+			return err
+		}
+		setup.Closed, err = closedDays{}.list(ctx, conn, t.id, siteOpen)
 		return err
 	})
 	if err != nil {

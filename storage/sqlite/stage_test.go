@@ -8,6 +8,7 @@ import (
 	"testing"
 
 	"github.com/google/go-cmp/cmp"
+	sqlite3 "modernc.org/sqlite/lib"
 
 	"swardbook/planner"
 )
@@ -226,6 +227,7 @@ func TestStoredNonsenseIsAnError(t *testing.T) {
 	for _, row := range []struct{ call, statement string }{
 		{"Record", "UPDATE day_fact SET hours_c = x'00112233445566' WHERE day = 1"},
 		{"Record", "UPDATE day_fact SET hours_c = x'' WHERE day = 1"},
+		{"Record", "UPDATE day_fact SET hours_c = NULL WHERE day = 1"},
 		{"Record", "UPDATE day_fact SET hours_c = x'000000000000f07f' WHERE day = 1"}, // an infinity
 		{"Record", "UPDATE day_fact SET extremes_from = 9 WHERE day = 1"},
 		{"Record", "UPDATE day_fact SET extremes_from = -1 WHERE day = 1"},
@@ -251,6 +253,28 @@ func TestStoredNonsenseIsAnError(t *testing.T) {
 			t.Errorf("%s after %s: no error", row.call, row.statement)
 		}
 		db.Close()
+	}
+}
+
+// What the schema itself keeps out.
+func TestSchemaRefuses(t *testing.T) {
+	t.Parallel()
+	db, home := newHome(t, filepath.Join(t.TempDir(), "store.db"))
+	if _, err := merged(t.Context(), home, someReadings(0, 72)); err != nil {
+		t.Fatal(err)
+	}
+	for _, statement := range []string{
+		"UPDATE day_fact SET low_c = NULL WHERE day = 1",
+		"UPDATE day_fact SET slots_real = 'many' WHERE day = 1",
+		"UPDATE reading SET c = 'warm'",
+		"UPDATE reading SET import = 9",
+		"UPDATE station SET site = 9",
+		"UPDATE site SET archived = 2",
+		"INSERT INTO hand_ahead VALUES (1, 1, 5, 0, 1, 1, NULL, NULL, 0)",
+	} {
+		if _, err := db.writer.Exec(statement); code(err)&primary != sqlite3.SQLITE_CONSTRAINT {
+			t.Errorf("%s: %v", statement, err)
+		}
 	}
 }
 

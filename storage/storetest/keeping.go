@@ -73,12 +73,19 @@ func testSetup(t *testing.T, newTeam func(string) Store) {
 	second.total.Settings = second.total.Settings.With(lateJune, planner.TotalSettings{
 		Counting: planner.Counting{Counts: planner.ByDegreeDays, Method: calc.MethodDoubleTriangle,
 			Thresholds: calc.Thresholds{LowerC: 10.1, UpperC: 29.7, Cutoff: calc.CutoffVertical}},
+		Curve: calc.GrowthCurve{OptimumC: 26.3, WidthC: 6.1, HeldAbove: true},
 		Start: planner.MonthDay{Month: time.November, Day: 30}})
 	want(t, "the saved site", save(t, store, second.site), second.site)
 	want(t, "the saved station", save(t, store, second.station), second.station)
 	want(t, "the saved surface", save(t, store, second.surface), second.surface)
 	want(t, "the saved work", save(t, store, second.work), second.work)
 	want(t, "the saved total", save(t, store, second.total), second.total)
+	entry := newEntry(second.site.ID, lateJune, second.work.ID)
+	entry.Passes[0].NitrogenGM2 = 2.9
+	entry = save(t, store, entry)
+	want(t, "the log", log(t, store, second.site.ID), []planner.Entry{entry})
+	everyField(t, []planner.Noun{first.site, first.station, first.surface, first.work, first.total, entry,
+		second.site, second.station, second.surface, second.work, second.total})
 	want(t, "Setup", setup(t, store), planner.Setup{
 		Sites:    []planner.Site{first.site, second.site},
 		Stations: []planner.Station{first.station, second.station},

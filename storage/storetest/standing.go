@@ -226,7 +226,7 @@ func testDayRules(t *testing.T, newTeam func(string) Store) {
 	site = save(t, store, site)
 	station := save(t, store, newStation(site.ID, "roof", 1))
 	dropped := save(t, store, newStation(site.ID, "pond", 2))
-	readings := hourly(midMay, 400) // more than is built at once
+	readings := hourly(midMay, 270) // more than is built at once
 	daily := []planner.DailyReading{{Day: midMay - 30, HighC: 20, LowC: 10}}
 	load(t, store, station.ID, File{Readings: readings, Daily: daily})
 	load(t, store, dropped.ID, File{Readings: readings[:100]})

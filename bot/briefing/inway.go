@@ -1,0 +1,118 @@
+package briefing
+
+import (
+	"fmt"
+
+	"swardbook/planner"
+)
+
+// InTheWay says what holds or flags a work's date: the least days between two
+// passes, the most a season, closed days, its season, parts that are behind, a
+// doubtful pass. One short line each; none when nothing is in the way.
+func InTheWay(state planner.WorkState) []string {
+	var lines []string
+	add := func(format string, args ...any) { lines = append(lines, fmt.Sprintf(format, args...)) }
+	facts, started := state.OwnFacts()
+	if started && facts.Held.Known {
+		add("count full %s; your %d-day gap holds it to %s", DayMonth(facts.Middle.Day), state.Settings.Limits.LeastDays, facts.Held.Day.Short())
+	}
+	limits := state.Settings.Limits
+	if limits.MostTimes > 0 {
+		add("%d of %d times since %s", state.Season.Times, limits.MostTimes, DayMonth(state.Season.Since))
+	}
+	if limits.MostTotal > 0 {
+		add("%s of at most %s given since %s", Plain(state.Season.Given), Plain(limits.MostTotal), DayMonth(state.Season.Since))
+	}
+	if state.RestsThen {
+		add("rests then: its season ends %s", monthDay(state.Settings.Season.To))
+	}
+	if closed := state.Closed; closed != nil {
+		add("closed then: %s", closed.Why)
+		switch {
+		case closed.Before.Known && closed.After.Known:
+			add("last day before %s, first after %s", DayMonth(closed.Before.Day), DayMonth(closed.After.Day))
+		case closed.After.Known:
+			add("first day after: %s", closed.After.Day.Short())
+		}
+	}
+	for _, part := range state.Behind {
+		add("%s not done yet: the old count stands for it", part)
+	}
+	if doubted := state.Doubted; doubted != nil {
+		add("last pass doubtful; without it: %s", passage(doubted.Date()))
+	}
+	if state.AskForgotten {
+		add("was it done on or about %s and not logged?", DayMonth(facts.Date().Day))
+	}
+	return lines
+}
+
+func passage(p planner.Passage) string {
+	if !p.Known {
+		return "no date"
+	}
+	return p.Day.Short()
+}
+
+func monthDay(m planner.MonthDay) string { return DayMonth(m.In(2023)) }
+
+// PassNotes say what to check before a pass on the day: how far the running
+// count is, the gap to the last pass, the season's limits, closed days. state
+// is the work as it stands without the pass.
+func PassNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []string {
+	var lines []string
+	add := func(format string, args ...any) { lines = append(lines, fmt.Sprintf(format, args...)) }
+	facts, started := state.OwnFacts()
+	if started && state.Status == planner.NotYet && facts.Target > 0 && day > state.LastDone {
+		add("at %.0f %% of the interval: check the label's least gap and season total", 100*facts.Total.Total/facts.Target)
+	}
+	limits := state.Settings.Limits
+	if gap := int(day - state.LastDone); started && gap > 0 && gap < limits.LeastDays {
+		add("%s after the last: your least is %d", Days(gap), limits.LeastDays)
+	}
+	if limits.MostTimes > 0 && state.Season.Times+1 > limits.MostTimes {
+		add("past your most of %d times a season", limits.MostTimes)
+	}
+	if closed, ok := plan.ClosedOn(state.Work.ID, day); ok {
+		add("%s is closed: %s", day.Short(), closed.Name)
+	}
+	if !state.Settings.Season.On(day) {
+		add("out of its season")
+	}
+	if hours := state.Settings.RainFreeHours; hours > 0 {
+		add("%s rain-free hours: if it rained sooner, amend it with result:doubtful or lost", Plain(hours))
+	}
+	return lines
+}
+
+// NitrogenLine is a surface's balance on the mean of its works: what is left,
+// what is still to come, the season against its budget.
+func NitrogenLine(state planner.NitrogenState, works []planner.WorkState) string {
+	own := planner.Basis("")
+	for _, work := range works {
+		if work.Surface.ID == state.Surface.ID && work.Settings.Counts == planner.ByNitrogen {
+			own = work.Own
+		}
+	}
+	facts := state.Bases[0]
+	for _, on := range state.Bases {
+		if on.Basis == own {
+			facts = on
+		}
+	}
+	text := fmt.Sprintf("%s nitrogen: %s g N/m² left", state.Surface.Name, Digits(facts.LeftGM2, planner.NitrogenGM2))
+	if facts.LeftGM2 < 0 {
+		text = fmt.Sprintf("%s nitrogen: %s g N/m² short", state.Surface.Name, Digits(-facts.LeftGM2, planner.NitrogenGM2))
+	}
+	if facts.Used.Missing > 0 {
+		text += " at most"
+	}
+	if state.SlowToComeGM2 > 0.005 {
+		text += fmt.Sprintf("\n%s still to come slowly", Digits(state.SlowToComeGM2, planner.NitrogenGM2))
+	}
+	text += fmt.Sprintf("\nseason so far %s", Digits(state.SeasonGivenGM2, planner.NitrogenGM2))
+	if state.BudgetGM2 > 0 {
+		text += fmt.Sprintf(" of %s", Plain(state.BudgetGM2))
+	}
+	return text + "\n" + facts.Basis.Words()
+}
