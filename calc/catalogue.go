@@ -41,6 +41,7 @@ func Catalogue() []Formula {
 	all = append(all, degreeDayFormulas()...)
 	all = append(all, cutoffFormulas()...)
 	all = append(all, growthFormulas()...)
+	all = append(all, weatherFormulas()...)
 	all = append(all, unitFormulas()...)
 	return append(all, passageFormulas()...)
 }
@@ -171,6 +172,21 @@ func growthFormulas() []Formula {
 			ID: "nitrogen-use", Title: "Nitrogen used in a day",
 			Words:  "The day's growth potential times the surface's monthly ceiling, divided by the days in the month.",
 			Source: "common practice", Status: StatusCommonPractice,
+		},
+	}
+}
+
+func weatherFormulas() []Formula {
+	return []Formula{
+		{
+			ID: "heat-index", Title: "Heat index",
+			Words:  "How hot the air feels in shade, from temperature and relative humidity: a simple formula below 80 °F, a regression above. Full sun adds up to 15 °F. Classes: caution from 80 °F (27 °C), extreme caution 90 (32), danger 103 (39), extreme danger 125 (52).",
+			Source: "US National Weather Service, heat index equation page; classes second-hand", Status: StatusPrinted,
+		},
+		{
+			ID: "hours-below", Title: "Hours below a temperature",
+			Words:  "The share of a day that lies below the temperature when it swings from low to high and back as a sine, times 24.",
+			Source: "Baskerville & Emin 1969", Status: StatusComputed,
 		},
 	}
 }

@@ -60,7 +60,7 @@ func TestCatalogueIsComplete(t *testing.T) {
 		"growth-potential", "growth-potential-held", "growth-potential-hours",
 		"growth-curve-cool", "growth-curve-warm", "growth-curve-cool-f", "growth-curve-warm-f",
 		"nitrogen-use", "unit-temperature", "unit-degree-days", "unit-kg-per-hectare",
-		"unit-pounds-per-1000-square-feet", "first-passage", "nearest-rank",
+		"unit-pounds-per-1000-square-feet", "first-passage", "nearest-rank", "heat-index", "hours-below",
 	}
 	for _, m := range calc.Methods() {
 		want = append(want, "degree-days-"+string(m))

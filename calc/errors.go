@@ -23,6 +23,8 @@ var (
 	ErrCurve = errors.New("unusable growth curve")
 	// ErrNitrogen: a potential, ceiling or month length for nitrogen is out of range.
 	ErrNitrogen = errors.New("unusable nitrogen figure")
+	// ErrHumidity: a relative humidity is not between 0 and 100 %.
+	ErrHumidity = errors.New("unusable humidity")
 	// ErrShare: a share is outside 0 to 1.
 	ErrShare = errors.New("unusable share")
 )

@@ -307,3 +307,20 @@ func ExampleCatalogue() {
 	// High/low mean: Add the day's high and low and divide by 2.
 	// McMaster & Wilhelm 1997; Bernhardt & Carleton 2018, J. Climate 31:979 (printed)
 }
+
+func ExampleHeatIndexF() {
+	index, err := calc.HeatIndexF(96, 65)
+	fmt.Printf("%.0f °F, %v\n", index, err)
+	// Output: 121 °F, <nil>
+}
+
+func ExampleHeatBandOf() {
+	fmt.Println(calc.HeatBandOf(95))
+	// Output: extreme caution
+}
+
+func ExampleHoursBelow() {
+	hours, err := calc.HoursBelow(4, -4, 0)
+	fmt.Printf("%.0f hours below freezing, %v\n", hours, err)
+	// Output: 12 hours below freezing, <nil>
+}
