@@ -83,7 +83,7 @@ func (b *Book) Plan(ctx context.Context, site Site, asOf, today Day) (Plan, erro
 		Surfaces: setup.SurfacesOf(site.ID), Works: setup.WorksOf(site.ID), Totals: setup.TotalsOf(site.ID),
 		Closed:  setup.ClosedOf(site.ID),
 		Log:     filter(log, func(e Entry) bool { return e.Day < asOf || e.Day == asOf && asOf == today }),
-		Outlook: b.ahead.Outlook(record, hand, asOf),
+		Outlook: b.ahead.Outlook(record, hand, asOf), Hand: hand,
 	}, nil
 }
 
@@ -153,14 +153,8 @@ func (b *Book) UndoEntry(ctx context.Context, stamp Stamp, site SiteID, id Entry
 // SaveAhead keeps days ahead typed by hand, issued on the day.
 func (b *Book) SaveAhead(ctx context.Context, stamp Stamp, site SiteID, issued Day, days []HandDay) error {
 	for _, day := range days {
-		if day.Cleared {
-			continue
-		}
-		if err := (DailyReading{Day: day.Day, HighC: day.HighC, LowC: day.LowC}).Check(); err != nil {
-			return Problemf(Invalid, "%s: %v", day.Day.Short(), err)
-		}
-		if day.Day < issued {
-			return Problemf(Invalid, "%s is past.", day.Day.Short()).WithHint("Past days come from the station: /weather day or /weather file.")
+		if err := CheckHandDay(issued, day); err != nil {
+			return err
 		}
 	}
 	return b.recorder.SaveAhead(ctx, stamp, site, issued, days)

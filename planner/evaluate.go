@@ -77,11 +77,7 @@ func Evaluate(plan Plan) (Evaluation, error) {
 			e.Nitrogen = append(e.Nitrogen, state)
 		}
 	}
-	for _, closed := range plan.Closed {
-		if anyWork := (Closed{From: closed.From, To: closed.To, Yearly: closed.Yearly}); anyWork.Covers(0, plan.AsOf) {
-			e.Closed = append(e.Closed, closed)
-		}
-	}
+	e.Closed = closedOnDay(plan.Closed, plan.AsOf)
 	return e, nil
 }
 

@@ -15,6 +15,11 @@ const (
 	Days        Unit = "days"
 	Count       Unit = "count"
 	Date        Unit = "date"
+
+	Hours           Unit = "h"
+	Percent         Unit = "%"
+	Millimetres     Unit = "mm"
+	MetresPerSecond Unit = "m/s"
 )
 
 // Figure is one computed number or date: what text, tables, JSON and cells are

@@ -83,6 +83,44 @@ type HandDay struct {
 	HighC   float64
 	LowC    float64
 	Cleared bool
+	// What else may be typed, for the evening's post.
+	HumidityPercent Optional // relative humidity in the hottest hour
+	RainMM          Optional
+	WindMS          Optional
+}
+
+// Optional is a number that may not be known.
+type Optional struct {
+	Value float64
+	Known bool
+}
+
+// CheckHandDay refuses a day ahead that cannot be: one before the day it was
+// typed on, impossible temperatures, humidity outside 0 to 100 %, rain or wind
+// below 0 or beyond any storm. A cleared day needs no values.
+func CheckHandDay(issued Day, day HandDay) error {
+	switch {
+	case issued < DayMin || day.Day > DayMax:
+		return Problemf(Invalid, "a day ahead is outside the years 1700 to 2299")
+	case day.Day < issued:
+		return Problemf(Invalid, "%s is past.", day.Day.Short()).
+			WithHint("Past days come from the station: /weather day or /weather file.")
+	case day.Cleared:
+		return nil
+	}
+	if err := (DailyReading{Day: day.Day, HighC: day.HighC, LowC: day.LowC}).Check(); err != nil {
+		return Problemf(Invalid, "%s: %v", day.Day.Short(), err).WithCause(err)
+	}
+	for _, one := range []struct {
+		name  string
+		value Optional
+		most  float64
+	}{{"humidity in percent", day.HumidityPercent, 100}, {"rain in mm", day.RainMM, 2000}, {"wind in m/s", day.WindMS, 120}} {
+		if one.value.Known && !(one.value.Value >= 0 && one.value.Value <= one.most) {
+			return Problemf(Invalid, "%s: %g is no %s", day.Day.Short(), one.value.Value, one.name).WithHint("Give 0 to %g.", one.most)
+		}
+	}
+	return nil
 }
 
 // ImportRequest asks to read one station file.

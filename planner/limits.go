@@ -61,7 +61,8 @@ type Origin struct {
 	HeightMM   float64 `json:"height_mm,omitempty"`
 }
 
-// SeasonUse is what a work has taken of its limits this season.
+// SeasonUse is what a work has taken of its limits this season; on a surface
+// that is done in parts, what its most treated part has had.
 type SeasonUse struct {
 	Since Day
 	Times int     // passes since then, lost ones left out
@@ -75,15 +76,29 @@ func (p Plan) seasonUse(work Work, settings WorkSettings) SeasonUse {
 	if use.Since == DayMin {
 		use.Since = p.Site.SeasonStart().OnOrBefore(p.AsOf)
 	}
-	for _, entry := range p.Log {
-		pass, ok := entry.Of(work.ID)
-		if !ok || entry.Day < use.Since || entry.Result == Lost {
-			continue
-		}
-		use.Times++
-		use.Given += pass.Rate.Value
+	surface, _ := p.Surface(work.Surface)
+	parts := surface.Parts
+	if len(parts) == 0 {
+		parts = []Part{{}}
+	}
+	for _, part := range parts {
+		times, given := p.usedOn(part, work, use.Since)
+		use.Times, use.Given = max(use.Times, times), max(use.Given, given)
 	}
 	return use
+}
+
+// usedOn counts what one part of the surface has had since the day.
+func (p Plan) usedOn(part Part, work Work, since Day) (times int, given float64) {
+	for _, entry := range p.Log {
+		pass, ok := entry.Of(work.ID)
+		if !ok || entry.Day < since || entry.Result == Lost || pass.Part != "" && NameKey(pass.Part) != NameKey(part.Name) {
+			continue
+		}
+		times++
+		given += pass.Rate.Value
+	}
+	return times, given
 }
 
 // full says which limit of the season leaves no further pass; "" when none.

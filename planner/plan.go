@@ -51,6 +51,7 @@ type Plan struct {
 	Closed   []Closed
 	Log      []Entry // by day, undone entries left out
 	Outlook  Outlook
+	Hand     []HandDay // days ahead as typed, with what the outlook does not hold
 }
 
 // Surface returns the surface with the id.

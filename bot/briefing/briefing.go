@@ -94,7 +94,7 @@ func Brief(state planner.WorkState, e planner.Evaluation) []string {
 		return append([]string{Title(state) + ": not started", "log the last one with /done"}, InTheWay(state)...)
 	}
 	lines := []string{Title(state) + ": " + headline(state, facts)}
-	if soon := soonAndSure(state, facts, e.AsOf); soon != "" {
+	if soon := soonAndSure(state, facts, e.AsOf); soon != "" && state.Status != planner.Full {
 		lines = append(lines, soon)
 	}
 	lines = append(lines, Progress(state, facts, e))

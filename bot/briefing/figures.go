@@ -58,7 +58,7 @@ func yesterdayBlocks(e planner.Evaluation) []reply.Block {
 	if note := DayNote(y.DayFacts); note != "" {
 		blocks = append(blocks, reply.Text(note))
 	}
-	if y.HasExtremes && y.LowC <= frostNearC {
+	if y.HasExtremes && y.LowC < planner.WhiteFrostC {
 		blocks = append(blocks, reply.Text("Low near or below 0 °C: grass can be white with frost while the air is a few degrees above. Keep traffic off frozen turf."))
 	}
 	if len(y.Growth) > 0 {
@@ -66,10 +66,6 @@ func yesterdayBlocks(e planner.Evaluation) []reply.Block {
 	}
 	return blocks
 }
-
-// frostNearC is the low at which frost on the grass is thought of: ground
-// frost comes with the screen some degrees above 0 (common practice).
-const frostNearC = 3.0
 
 // DayFields are the high, the low and both means of a day.
 func DayFields(day planner.DayFacts, units planner.Units) reply.Fields {

@@ -11,9 +11,10 @@ import (
 func (d Desk) briefing() Command {
 	return Command{
 		Path: "briefing", Short: "the morning post, now or for a past day", Listed: true,
-		Long:     "A past day is computed again on readings up to that morning, and on what was logged and set up by then.",
-		Options:  []Option{{Name: "date", Kind: Day, Past: true, Help: "which morning; today when not given", Example: "yesterday"}, d.siteOption()},
-		Examples: []string{"/briefing", "/briefing date:2013-07-01"},
+		Long: "A past day is computed again on readings up to that morning, and on what was logged and set up by then.",
+		Options: []Option{{Name: "date", Kind: Day, Past: true, Help: "which morning; today when not given", Example: "yesterday"},
+			{Name: "post", Kind: Choice, Choices: []string{"morning", "tomorrow"}, Help: "the morning's, or the evening's about tomorrow"}, d.siteOption()},
+		Examples: []string{"/briefing", "/briefing date:2013-07-01", "/briefing post:tomorrow"},
 		Run:      d.runBriefing,
 	}
 }
@@ -31,6 +32,9 @@ func (d Desk) runBriefing(ctx context.Context, req Request) (reply.Reply, error)
 		return reply.Reply{}, planner.Problemf(planner.Invalid, "%s is ahead of today.", asOf.Short()).
 			WithHint("/due says what falls due, /weather ahead what weather is expected.")
 	}
+	if post, _ := v.Values.Text("post"); post == "tomorrow" {
+		return v.evening(ctx, asOf)
+	}
 	plan, err := v.plan(ctx, asOf)
 	if err != nil {
 		return reply.Reply{}, err
@@ -44,6 +48,19 @@ func (d Desk) runBriefing(ctx context.Context, req Request) (reply.Reply, error)
 		r.Add(reply.Text(note))
 	}
 	return r, nil
+}
+
+// evening tells the next day.
+func (v visit) evening(ctx context.Context, asOf planner.Day) (reply.Reply, error) {
+	plan, err := v.plan(ctx, asOf)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	tomorrow, err := planner.NextDay(plan)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	return briefing.Evening(tomorrow, plan), nil
 }
 
 // recordNote says when the record is empty or ends before yesterday.

@@ -156,10 +156,11 @@ func (v visit) fillPasses(passes []planner.Pass) error {
 			passes[i].SlowShare, passes[i].SlowWeeks = slow/100, weeks
 		}
 		if hasPart {
-			if err := v.checkPart(passes[i].Work, part); err != nil {
+			known, err := v.partOf(passes[i].Work, part)
+			if err != nil {
 				return err
 			}
-			passes[i].Part = planner.NameKey(part)
+			passes[i].Part = known
 		}
 	}
 	return nil
@@ -178,20 +179,21 @@ func distinctWorks(passes []planner.Pass, works []planner.Work) map[string]bool 
 	return names
 }
 
-// checkPart refuses a part that the work's surface does not have.
-func (v visit) checkPart(id planner.WorkID, part string) error {
+// partOf is the part of the work's surface with the name; one that it does not
+// have is a problem.
+func (v visit) partOf(id planner.WorkID, part string) (string, error) {
 	_, surface, _ := v.workOf(id)
 	names := namesOf(surface.Parts, func(p planner.Part) string { return p.Name })
 	for _, name := range names {
 		if planner.NameKey(name) == planner.NameKey(part) {
-			return nil
+			return name, nil
 		}
 	}
 	problem := planner.Problemf(planner.NotFound, "%s has no part %q.", surface.Name, part)
 	if len(names) == 0 {
-		return problem.WithHint("A lead names the parts:\n%s", Line("setup surface change", Pair{"name", surface.Name}, Pair{"parts", "front nine,back nine"}))
+		return "", problem.WithHint("A lead names the parts:\n%s", Line("setup surface change", Pair{"name", surface.Name}, Pair{"parts", "front nine,back nine"}))
 	}
-	return problem.WithHint("It has: %s.", strings.Join(names, ", "))
+	return "", problem.WithHint("It has: %s.", strings.Join(names, ", "))
 }
 
 // workOf finds a work and its surface by the work's id.

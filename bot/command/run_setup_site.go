@@ -12,9 +12,9 @@ import (
 func (d Desk) setupSite() []Command {
 	place := []Option{
 		{Name: "units", Kind: Choice, Choices: []string{"c", "f"}, Help: "shows and takes °C or °F"},
-		{Name: "offset", Kind: Number, Range: Between(-12, 14), Help: "standard time, hours from UTC, where the zone's own is not meant", Example: "-5"},
+		{Name: "offset", Kind: Number, Range: Between(-12, 14), Help: "standard time, hours from UTC, if not the zone's", Example: "-5"},
 		{Name: "day", Kind: Choice, Choices: []string{string(planner.StandardMidnight), string(planner.CivilMidnight), string(planner.FixedHour)},
-			Help: "the day runs by standard time (usual), by the clock on the wall, or to a fixed hour"},
+			Help: "the day runs by standard time, the clock on the wall, or to an hour"},
 		{Name: "hour", Kind: Whole, Range: Between(1, 23), Help: "with day:hour: the hour at which a day ends", Example: "9"},
 		{Name: "hours", Kind: Choice, Choices: []string{"00-23", "01-24"}, Help: "which 24 readings make the 24-hour mean"},
 	}

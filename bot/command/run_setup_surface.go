@@ -32,14 +32,14 @@ func grassCurve(grass string) (calc.GrowthCurve, bool) {
 func grassOptions() []Option {
 	return []Option{
 		{Name: "grass", Kind: Choice, Choices: []string{"cool", "warm", "cool-f", "warm-f", ownGrass},
-			Help: "cool- or warm-season; -f takes the °F pair of the formula; own needs optimum and width"},
+			Help: "cool- or warm-season; -f: the formula's °F pair; own: optimum and width"},
 		{Name: "optimum", Kind: Temperature, Help: "with grass:own: temperature of best growth", Example: "22"},
-		{Name: "width", Kind: Warming, Help: "with grass:own: how fast growth falls off either side, degrees", Example: "6"},
-		{Name: "held", Kind: Yes, Help: "warm-season: growth is held above the optimum instead of falling"},
-		{Name: "area", Kind: Number, Range: Between(0, 1e7), Help: "area, m²; products are then told in kg and L", Example: "5200"},
-		{Name: "parts", Kind: Text, Help: "parts done apart, with shares of the area if they differ", Example: "front nine,back nine"},
+		{Name: "width", Kind: Warming, Help: "with grass:own: width of the curve, degrees", Example: "6"},
+		{Name: "held", Kind: Yes, Help: "warm-season: held above the optimum"},
+		{Name: "area", Kind: Number, Range: Between(0, 1e7), Help: "area, m²", Example: "5200"},
+		{Name: "parts", Kind: Text, Help: "parts done apart, with shares if they differ", Example: "front nine,back nine"},
 		{Name: "budget", Kind: Number, Range: Between(0, 100), Help: "nitrogen set aside for a season, g N/m²", Example: "18"},
-		{Name: "ceiling", Kind: Number, Range: Between(0, 20), Help: "most nitrogen used in a month, g N/m²; usual 3 cool, 4 warm (common practice)", Example: "3"},
+		{Name: "ceiling", Kind: Number, Range: Between(0, 20), Help: "most nitrogen used in a month, g N/m²", Example: "3"},
 	}
 }
 

@@ -13,7 +13,7 @@ func (d Desk) setupTotal() []Command {
 	which := nameOption("which season total", "gdd10", d.names(totalNames))
 	settings := append(countingOptions(planner.ByDegreeDays, planner.ByGrowthDays),
 		Option{Name: "grass", Kind: Choice, Choices: []string{"cool", "warm", "cool-f", "warm-f"}, Help: "growth days: of which grass"},
-		Option{Name: "from", Kind: MonthDay, Help: "start of the season; 1 January, or 1 July in the south, when not given", Example: "03-01"})
+		Option{Name: "from", Kind: MonthDay, Help: "start of the season; 1 Jan, or 1 Jul in the south", Example: "03-01"})
 	add := append([]Option{nameOption("what the total is called", "gdd10", nil)}, settings...)
 	change := append([]Option{which, newNameOption(),
 		{Name: "mark", Kind: Name, Help: "a total that means something, by name", Example: "first spray"},

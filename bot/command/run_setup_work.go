@@ -14,10 +14,10 @@ import (
 func countingOptions(counts ...planner.Counts) []Option {
 	return []Option{
 		{Name: "counts", Kind: Choice, Choices: words(counts), Help: "what is counted"},
-		{Name: "base", Kind: Temperature, Help: "degree days: temperature above which they count; 0 °C when not given", Example: "0"},
-		{Name: "upper", Kind: Temperature, Help: "degree days: upper limit; none when not given", Example: "30"},
-		{Name: "cutoff", Kind: Choice, Choices: words(calc.Cutoffs()), Help: "degree days: what the upper limit does; horizontal when not given"},
-		{Name: "method", Kind: Choice, Choices: words(calc.Methods()), Help: "degree days: from the day's mean when not given; /help formulas"},
+		{Name: "base", Kind: Temperature, Help: "degree days: base, 0 °C when not given", Example: "0"},
+		{Name: "upper", Kind: Temperature, Help: "degree days: upper limit", Example: "30"},
+		{Name: "cutoff", Kind: Choice, Choices: words(calc.Cutoffs()), Help: "degree days: what the limit does"},
+		{Name: "method", Kind: Choice, Choices: words(calc.Methods()), Help: "degree days: method; /help formulas"},
 	}
 }
 
@@ -127,21 +127,21 @@ func (d Desk) setupWork() []Command {
 	which := nameOption("which work", "regulator", d.workOption().Complete)
 	counting := countingOptions(planner.ByDays, planner.ByDegreeDays, planner.ByGrowthDays, planner.ByNitrogen)
 	settings := []Option{
-		{Name: "target", Kind: Target, Range: AtLeast(0), Help: "total at which it falls due; by nitrogen: the reserve left, g N/m²", Example: "200"},
-		{Name: "mean", Kind: Choice, Choices: []string{string(planner.Hourly), string(planner.Midrange)}, Help: "the 24-hour or the high/low mean; by the site's readings when not given"},
-		{Name: "latest", Kind: Target, Range: AtLeast(0), Help: "total past which it is overdue; a tenth over the target when not given", Example: "230"},
+		{Name: "target", Kind: Target, Range: AtLeast(0), Help: "total at which it falls due; nitrogen: the reserve left", Example: "200"},
+		{Name: "mean", Kind: Choice, Choices: []string{string(planner.Hourly), string(planner.Midrange)}, Help: "24-hour or high/low mean"},
+		{Name: "latest", Kind: Target, Range: AtLeast(0), Help: "total past which it is overdue", Example: "230"},
 	}
-	settings = append(settings, limitOptions()...)
 	add := []Option{required(d.surfaceOption()), nameOption("what the work is called", "regulator", nil), required(counting[0])}
 	add = append(append(add, settings...), counting[1:]...)
 	change := []Option{required(d.surfaceOption()), which, newNameOption()}
-	change = append(append(change, settings...), counting...)
+	change = append(append(append(change, settings...), counting...), limitOptions()...)
 	return []Command{
 		{Path: "setup work add", Short: "add a work: a feed, a regulator spray, a cut", Who: Lead, Options: append(add, d.siteOption()),
 			Long: "A target holds for the product, grass, height of cut and mean it was found with; it does not transfer. Swardbook plans dates and prescribes no product and no rate.",
 			Examples: []string{"/setup work add surface:greens name:regulator counts:degree-days base:0 target:200",
 				"/setup work add surface:greens name:feed counts:nitrogen", "/setup work add surface:pitch name:cut counts:days target:3"}, Run: d.runWorkAdd},
-		{Path: "setup work change", Short: "change a work from today on; older figures stay", Who: Lead, Options: append(change, d.siteOption()),
+		{Path: "setup work change", Long: "Limits are what the label and your rules say: they move or flag dates.",
+			Short: "change a work, its limits and season, from today on", Who: Lead, Options: append(change, d.siteOption()),
 			Examples: []string{"/setup work change surface:greens name:regulator target:220"}, Run: d.runWorkChange},
 		{Path: "setup work drop", Short: "drop a work; the log is kept", Who: Lead, Asks: true, Options: []Option{required(d.surfaceOption()), which, d.siteOption()},
 			Examples: []string{"/setup work drop surface:greens name:regulator"}, Run: d.runWorkDrop},

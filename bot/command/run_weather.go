@@ -216,6 +216,9 @@ func (d Desk) weatherAhead() Command {
 			{Name: "from", Kind: Day, Help: "first day; today when not given", Example: "today"},
 			{Name: "highs", Kind: Numbers, Help: "highs, one a day", Example: "29 30 28"},
 			{Name: "lows", Kind: Numbers, Help: "lows, one a day", Example: "18 19 18"},
+			{Name: "humidity", Kind: Numbers, Help: "relative humidity in the hottest hour, percent, one a day", Example: "60 55 50"},
+			{Name: "rain", Kind: Numbers, Help: "rain, mm, one a day", Example: "0 4 0"},
+			{Name: "wind", Kind: Numbers, Help: "wind, m/s, one a day", Example: "3 6 4"},
 			{Name: "clear", Kind: Yes, Help: "take typed days from that day on back"},
 			d.siteOption(),
 		},
@@ -235,6 +238,9 @@ func (d Desk) runWeatherAhead(ctx context.Context, req Request) (reply.Reply, er
 	}
 	days, err := v.typedDays(from)
 	if err != nil {
+		return reply.Reply{}, err
+	}
+	if err := v.alsoTyped(days); err != nil {
 		return reply.Reply{}, err
 	}
 	r := reply.Of()
@@ -264,6 +270,30 @@ func (d Desk) runWeatherAhead(ctx context.Context, req Request) (reply.Reply, er
 	r.Add(aheadTable(plan.Outlook, v.site.Units), reply.Text(briefing.AheadNote(plan.Outlook)))
 	r.Figures = aheadFigures(plan.Outlook)
 	return r, nil
+}
+
+// alsoTyped reads humidity, rain and wind into the typed days, one a day.
+func (v visit) alsoTyped(days []planner.HandDay) error {
+	for _, option := range []struct {
+		name string
+		into func(*planner.HandDay) *planner.Optional
+	}{
+		{"humidity", func(day *planner.HandDay) *planner.Optional { return &day.HumidityPercent }},
+		{"rain", func(day *planner.HandDay) *planner.Optional { return &day.RainMM }},
+		{"wind", func(day *planner.HandDay) *planner.Optional { return &day.WindMS }},
+	} {
+		values, given := v.Values.Numbers(option.name)
+		if !given {
+			continue
+		}
+		if len(values) != len(days) {
+			return v.Invalid(option.name, "%d days and %d values of %s", len(days), len(values), option.name)
+		}
+		for i, value := range values {
+			*option.into(&days[i]) = planner.Optional{Value: value, Known: true}
+		}
+	}
+	return nil
 }
 
 // typedFrom returns the typed days that hold from the day on, each cleared.

@@ -20,7 +20,7 @@ func (t *Team) SaveAhead(ctx context.Context, stamp planner.Stamp, site planner.
 		return planner.Problemf(planner.Missing, "no day ahead was given").WithHint("Give a date with its high and low.")
 	}
 	for _, day := range days {
-		if err := checkHandDay(issued, day); err != nil {
+		if err := planner.CheckHandDay(issued, day); err != nil {
 			return err
 		}
 	}
@@ -53,28 +53,11 @@ func plain(days []planner.HandDay) []planner.HandDay {
 	out := make([]planner.HandDay, len(days))
 	for i, day := range days {
 		if day.Cleared {
-			day.HighC, day.LowC = 0, 0
+			day = planner.HandDay{Day: day.Day, Cleared: true}
 		}
 		out[i] = day
 	}
 	return out
-}
-
-func checkHandDay(issued planner.Day, day planner.HandDay) error {
-	switch {
-	case issued < planner.DayMin || day.Day > planner.DayMax:
-		return planner.Problemf(planner.Invalid, "a day ahead is outside the years 1700 to 2299")
-	case day.Day < issued:
-		return planner.Problemf(planner.Invalid, "%s is not ahead of %s", day.Day, issued).
-			WithHint("Days ahead begin with the day on which they are typed.")
-	case day.Cleared:
-		return nil
-	}
-	reading := planner.DailyReading{Day: day.Day, HighC: day.HighC, LowC: day.LowC}
-	if err := reading.Check(); err != nil {
-		return planner.Problemf(planner.Invalid, "%s: %v", day.Day, err).WithCause(err)
-	}
-	return nil
 }
 
 func addHandDay(ctx context.Context, on session, team, change int64, site planner.SiteID, issued planner.Day, day planner.HandDay) error {
@@ -82,12 +65,14 @@ func addHandDay(ctx context.Context, on session, team, change int64, site planne
 	if err != nil {
 		return err
 	}
-	var highC, lowC any
-	if !day.Cleared {
-		highC, lowC = day.HighC, day.LowC
+	known := func(value planner.Optional) sql.NullFloat64 {
+		return sql.NullFloat64{Float64: value.Value, Valid: value.Known && !day.Cleared}
 	}
-	_, err = on.ExecContext(ctx, `INSERT INTO hand_ahead (team, site, day, issued, seq, change, high_c, low_c, cleared)
-		VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?)`, team, site, day.Day, issued, seq, change, highC, lowC, day.Cleared)
+	_, err = on.ExecContext(ctx, `INSERT INTO hand_ahead (team, site, day, issued, seq, change, high_c, low_c, cleared,
+		humidity_percent, rain_mm, wind_ms) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
+		team, site, day.Day, issued, seq, change, known(planner.Optional{Value: day.HighC, Known: true}),
+		known(planner.Optional{Value: day.LowC, Known: true}), day.Cleared,
+		known(day.HumidityPercent), known(day.RainMM), known(day.WindMS))
 	return err
 }
 
@@ -96,10 +81,14 @@ func addHandDay(ctx context.Context, on session, team, change int64, site planne
 // out.
 func (t *Team) Ahead(ctx context.Context, site planner.SiteID, asOf planner.Day) ([]planner.HandDay, error) {
 	days, err := collect(ctx, t.db.reader, func(rows *sql.Rows) (day planner.HandDay, err error) {
-		err = rows.Scan(&day.Day, &day.HighC, &day.LowC)
+		var humidity, rain, wind sql.NullFloat64
+		err = rows.Scan(&day.Day, &day.HighC, &day.LowC, &humidity, &rain, &wind)
+		day.HumidityPercent = planner.Optional{Value: humidity.Float64, Known: humidity.Valid}
+		day.RainMM = planner.Optional{Value: rain.Float64, Known: rain.Valid}
+		day.WindMS = planner.Optional{Value: wind.Float64, Known: wind.Valid}
 		return day, err
-	}, `SELECT day, high_c, low_c FROM (
-			SELECT day, high_c, low_c, cleared, row_number() OVER (PARTITION BY day ORDER BY issued DESC, seq DESC) AS newest
+	}, `SELECT day, high_c, low_c, humidity_percent, rain_mm, wind_ms FROM (
+			SELECT *, row_number() OVER (PARTITION BY day ORDER BY issued DESC, seq DESC) AS newest
 			FROM hand_ahead WHERE team = ?1 AND site = ?2 AND day >= ?3 AND issued <= ?3)
 		WHERE newest = 1 AND cleared = 0 ORDER BY day`, t.id, site, asOf)
 	return days, storeError("read days ahead", err)

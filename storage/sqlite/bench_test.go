@@ -32,7 +32,8 @@ func BenchmarkImport(b *testing.B) {
 			for b.Loop() {
 				b.StopTimer()
 				db, _ := newHome(b, filepath.Join(b.TempDir(), "store.db"))
-				if _, err := db.writer.Exec(`INSERT INTO import VALUES (1, 1, 1, 1, '', '', '', '', '', 0, '', 0, 0, 0, 0, 0, 0)`); err != nil {
+				if _, err := db.writer.Exec(`INSERT INTO import (team, id, station, change, file_name, sha256, units, clock, format,
+					at, who, rows, new, changed, same, empty, refused) VALUES (1, 1, 1, 1, '', '', '', '', '', 0, '', 0, 0, 0, 0, 0, 0)`); err != nil {
 					b.Fatal(err)
 				}
 				b.StartTimer()

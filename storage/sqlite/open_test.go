@@ -7,12 +7,14 @@ import (
 	"fmt"
 	"io/fs"
 	"os"
+	"path"
 	"path/filepath"
 	"strings"
 	"testing"
 	"testing/fstest"
 
 	"github.com/google/go-cmp/cmp"
+	"github.com/pressly/goose/v3"
 
 	"swardbook/planner"
 )
@@ -77,7 +79,7 @@ func TestOpenRefusals(t *testing.T) {
 		{"a few bytes", short, planner.Refused, "is no database"},
 		{"another program's tables", foreign, planner.Refused, "is a database of another program"},
 		{"another program's mark", marked, planner.Refused, "is a database of another program"},
-		{"newer", newer, planner.Refused, "was written by a newer program (schema 2, this one knows 1)"},
+		{"newer", newer, planner.Refused, fmt.Sprintf("was written by a newer program (schema %d, this one knows %d)", newest(t)+1, newest(t))},
 	} {
 		t.Run(row.name, func(t *testing.T) {
 			before, _ := os.ReadFile(row.path)
@@ -130,8 +132,8 @@ func TestOpenTakes(t *testing.T) {
 
 func TestMigrationCopiesFirst(t *testing.T) {
 	t.Parallel()
-	path := filepath.Join(t.TempDir(), "store.db")
-	db, home := newHome(t, path)
+	file := filepath.Join(t.TempDir(), "store.db")
+	db, home := newHome(t, file)
 	want, err := home.Setup(t.Context())
 	if err != nil {
 		t.Fatal(err)
@@ -139,18 +141,18 @@ func TestMigrationCopiesFirst(t *testing.T) {
 	db.Close()
 
 	// A migration that fails leaves the file at its version, and a copy.
-	if _, err := open(t.Context(), path, withMigration(t, "ALTER TABLE team ADD COLUMN motto TEXT; SELECT nonsense()")); err == nil {
+	if _, err := open(t.Context(), file, withMigration(t, "ALTER TABLE team ADD COLUMN motto TEXT; SELECT nonsense()")); err == nil {
 		t.Fatal("a broken migration was applied")
 	}
-	openWith(t, path, embeddedMigrations(t)) // still schema 1
+	openWith(t, file, embeddedMigrations(t)) // not newer than before
 
-	openWith(t, path, withMigration(t, "ALTER TABLE team ADD COLUMN motto TEXT"))
-	db, home = reopen(t, path+".before-2")
+	openWith(t, file, withMigration(t, "ALTER TABLE team ADD COLUMN motto TEXT"))
+	db, home = reopen(t, fmt.Sprintf("%s.before-%d", file, newest(t)+1))
 	if got, err := home.Setup(t.Context()); err != nil || !cmp.Equal(got, want) {
 		t.Errorf("the copy holds %+v, %v", got, err)
 	}
 	db.Close()
-	if left, _ := filepath.Glob(path + ".copy-*"); len(left) > 0 {
+	if left, _ := filepath.Glob(file + ".copy-*"); len(left) > 0 {
 		t.Errorf("drafts of copies were left behind: %v", left)
 	}
 }
@@ -243,17 +245,38 @@ func embeddedMigrations(t *testing.T) fs.FS {
 	return migrations
 }
 
-// withMigration is the program's migrations and one more.
-func withMigration(t *testing.T, statements string) fs.FS {
+// newest is the schema of this program.
+func newest(t *testing.T) int {
 	t.Helper()
-	first, err := fs.ReadFile(embedded, "migrations/00001_start.sql")
+	names, err := fs.Glob(embedded, "migrations/*.sql")
 	if err != nil {
 		t.Fatal(err)
 	}
-	return fstest.MapFS{
-		"00001_start.sql": {Data: first},
-		"00002_more.sql":  {Data: []byte("-- +goose Up\n" + statements + ";\n")},
+	version, err := goose.NumericComponent(names[len(names)-1])
+	if err != nil {
+		t.Fatal(err)
 	}
+	return int(version)
+}
+
+// withMigration is the program's migrations and one more.
+func withMigration(t *testing.T, statements string) fs.FS {
+	t.Helper()
+	migrations := fstest.MapFS{}
+	names, err := fs.Glob(embedded, "migrations/*.sql")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, name := range names {
+		data, err := fs.ReadFile(embedded, name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		migrations[path.Base(name)] = &fstest.MapFile{Data: data}
+	}
+	next := fmt.Sprintf("%05d_more.sql", newest(t)+1)
+	migrations[next] = &fstest.MapFile{Data: []byte("-- +goose Up\n" + statements + ";\n")}
+	return migrations
 }
 
 func openWith(t *testing.T, path string, migrations fs.FS) {

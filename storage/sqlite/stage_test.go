@@ -234,12 +234,12 @@ func TestStoredNonsenseIsAnError(t *testing.T) {
 		{"Record", "UPDATE day_fact SET extremes_from = 257 WHERE day = 1"},
 		{"Record", "UPDATE day_fact SET day = 5000000000 WHERE day = 1"},
 		{"Record", "UPDATE day_fact SET day = 200000 WHERE day = 1"},
-		{"Changes", "INSERT INTO change VALUES (1, 77, 0, '', '', 'site', 1, NULL, '{', NULL)"},
-		{"Changes", "INSERT INTO change VALUES (1, 77, 0, '', '', 'site', 1, '{\"name\":7}', NULL, NULL)"},
-		{"Changes", "INSERT INTO change VALUES (1, 77, 0, '', '', 'bird', 1, NULL, '{}', NULL)"},
-		{"Setup", "INSERT INTO site_rule VALUES (1, 1, 9, 5000000000, 1, 0, '', 0, 0)"},
-		{"Ahead", "INSERT INTO hand_ahead VALUES (1, 1, 5000000000, 0, 1, 1, 2, 1, 0)"},
-		{"Entries", "INSERT INTO entry VALUES (1, 1, 1, -5000000000, '', 0, '', 0)"},
+		{"Changes", "INSERT INTO change (team, id, at, who, command, kind, thing, before, after, undoes) VALUES (1, 77, 0, '', '', 'site', 1, NULL, '{', NULL)"},
+		{"Changes", "INSERT INTO change (team, id, at, who, command, kind, thing, before, after, undoes) VALUES (1, 77, 0, '', '', 'site', 1, '{\"name\":7}', NULL, NULL)"},
+		{"Changes", "INSERT INTO change (team, id, at, who, command, kind, thing, before, after, undoes) VALUES (1, 77, 0, '', '', 'bird', 1, NULL, '{}', NULL)"},
+		{"Setup", "INSERT INTO site_rule (team, site, step, valid_from, change, offset_seconds, boundary, closing_hour, first_slot) VALUES (1, 1, 9, 5000000000, 1, 0, '', 0, 0)"},
+		{"Ahead", "INSERT INTO hand_ahead (team, site, day, issued, seq, change, high_c, low_c, cleared) VALUES (1, 1, 5000000000, 0, 1, 1, 2, 1, 0)"},
+		{"Entries", "INSERT INTO entry (team, id, site, day, who, at, note, undone) VALUES (1, 1, 1, -5000000000, '', 0, '', 0)"},
 	} {
 		db, home := newHome(t, filepath.Join(t.TempDir(), "store.db"))
 		if _, err := merged(ctx, home, someReadings(0, 72)); err != nil {
@@ -270,7 +270,7 @@ func TestSchemaRefuses(t *testing.T) {
 		"UPDATE reading SET import = 9",
 		"UPDATE station SET site = 9",
 		"UPDATE site SET archived = 2",
-		"INSERT INTO hand_ahead VALUES (1, 1, 5, 0, 1, 1, NULL, NULL, 0)",
+		"INSERT INTO hand_ahead (team, site, day, issued, seq, change, high_c, low_c, cleared) VALUES (1, 1, 5, 0, 1, 1, NULL, NULL, 0)",
 	} {
 		if _, err := db.writer.Exec(statement); code(err)&primary != sqlite3.SQLITE_CONSTRAINT {
 			t.Errorf("%s: %v", statement, err)

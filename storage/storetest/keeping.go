@@ -16,6 +16,7 @@ type ground struct {
 	surface planner.Surface
 	work    planner.Work
 	total   planner.Total
+	closed  planner.Closed
 }
 
 func newGround(t *testing.T, store Store, name string) ground {
@@ -26,6 +27,7 @@ func newGround(t *testing.T, store Store, name string) ground {
 	g.surface = save(t, store, newSurface(g.site.ID, "greens"))
 	g.work = save(t, store, newWork(g.surface.ID, "regulator"))
 	g.total = save(t, store, newTotal(g.site.ID, "growth"))
+	g.closed = save(t, store, newClosed(g.site.ID, "derby", g.work.ID))
 	return g
 }
 
@@ -59,40 +61,69 @@ func testSetup(t *testing.T, newTeam func(string) Store) {
 	first := newGround(t, store, "Quillmere")
 	second := newGround(t, store, "Ashby 2")
 
-	// Every field, at values that show a slip: no two alike, none its zero.
-	second.site.Name, second.site.Lat, second.site.Lon, second.site.Zone, second.site.Units = "Aldermoor", -33.5, 151.25, "Australia/Sydney", planner.Celsius
-	second.site.Rules = second.site.Rules.With(lateJune, planner.DayRule{OffsetSeconds: 36000, Boundary: planner.FixedHour, ClosingHour: 9, FirstSlot: 1})
-	second.station.Name, second.station.Rank = "by the pond", 7
-	second.surface.Name = "Pitch 2"
-	second.surface.Turf = second.surface.Turf.With(lateJune, planner.Turf{Grass: "own",
-		Curve: calc.GrowthCurve{OptimumC: 25.1, WidthC: 6.3, HeldAbove: true}, CeilingGM2: 4.7})
-	second.work.Name = "feed"
-	second.work.Settings = second.work.Settings.With(lateJune, planner.WorkSettings{
-		Counting: planner.Counting{Counts: planner.ByNitrogen}, Target: 0.1, Basis: planner.Midrange, Latest: 0.3})
-	second.total.Name = "gdd 10"
-	second.total.Settings = second.total.Settings.With(lateJune, planner.TotalSettings{
-		Counting: planner.Counting{Counts: planner.ByDegreeDays, Method: calc.MethodDoubleTriangle,
-			Thresholds: calc.Thresholds{LowerC: 10.1, UpperC: 29.7, Cutoff: calc.CutoffVertical}},
-		Curve: calc.GrowthCurve{OptimumC: 26.3, WidthC: 6.1, HeldAbove: true},
-		Start: planner.MonthDay{Month: time.November, Day: 30}})
+	second = withEveryField(second)
 	want(t, "the saved site", save(t, store, second.site), second.site)
 	want(t, "the saved station", save(t, store, second.station), second.station)
 	want(t, "the saved surface", save(t, store, second.surface), second.surface)
 	want(t, "the saved work", save(t, store, second.work), second.work)
 	want(t, "the saved total", save(t, store, second.total), second.total)
-	entry := newEntry(second.site.ID, lateJune, second.work.ID)
-	entry.Passes[0].NitrogenGM2 = 2.9
+	mow := save(t, store, newWork(second.surface.ID, "mow"))
+	second.closed.Works = []planner.WorkID{mow.ID, second.work.ID}
+	want(t, "the saved closed days", save(t, store, second.closed), second.closed)
+	entry := newEntry(second.site.ID, lateJune, mow.ID, second.work.ID)
+	entry.Result, entry.Clock, entry.Watered = planner.Doubtful, "06:10", lateJune+1
+	entry.Passes[1] = planner.Pass{Work: second.work.ID, NitrogenGM2: 2.94, Part: "north half", SlowShare: 0.4, SlowWeeks: 8.5,
+		Rate: planner.Rate{Kind: planner.MassRate, Value: 14, NPercent: 21}}
 	entry = save(t, store, entry)
 	want(t, "the log", log(t, store, second.site.ID), []planner.Entry{entry})
-	everyField(t, []planner.Noun{first.site, first.station, first.surface, first.work, first.total, entry,
-		second.site, second.station, second.surface, second.work, second.total})
+	everyField(t, []planner.Noun{second.site, second.station, second.surface, second.work, second.total, second.closed, entry})
 	want(t, "Setup", setup(t, store), planner.Setup{
 		Sites:    []planner.Site{first.site, second.site},
 		Stations: []planner.Station{first.station, second.station},
 		Surfaces: []planner.Surface{first.surface, second.surface},
-		Works:    []planner.Work{first.work, second.work},
+		Works:    []planner.Work{first.work, second.work, mow},
 		Totals:   []planner.Total{first.total, second.total},
+		Closed:   []planner.Closed{first.closed, second.closed},
 	})
+
+	// What is kept as a list may be shortened and emptied.
+	second.surface.Parts, second.total.Marks, second.closed.Works = nil, second.total.Marks[1:], second.closed.Works[:1]
+	save(t, store, second.surface)
+	save(t, store, second.total)
+	save(t, store, second.closed)
+	shorter := setup(t, store)
+	want(t, "the surface without parts", shorter.Surfaces[1], second.surface)
+	want(t, "the total with fewer marks", shorter.Totals[1], second.total)
+	want(t, "the closed days of fewer works", shorter.Closed[1], second.closed)
+}
+
+// withEveryField sets every field of the nouns, at values that show a slip: no
+// two alike, none its zero.
+func withEveryField(g ground) ground {
+	g.site.Name, g.site.Lat, g.site.Lon, g.site.Zone, g.site.Units = "Aldermoor", -33.5, 151.25, "Australia/Sydney", planner.Celsius
+	g.site.Rules = g.site.Rules.With(lateJune, planner.DayRule{OffsetSeconds: 36000, Boundary: planner.FixedHour, ClosingHour: 9, FirstSlot: 1})
+	g.station.Name, g.station.Rank = "by the pond", 7
+	g.surface.Name, g.surface.AreaM2 = "Pitch 2", 7140.5
+	g.surface.Parts = []planner.Part{{Name: "north half", Share: 0.625}, {Name: "south half", Share: 0.375}}
+	g.surface.Turf = g.surface.Turf.With(lateJune, planner.Turf{Grass: "own",
+		Curve: calc.GrowthCurve{OptimumC: 25.1, WidthC: 6.3, HeldAbove: true}, CeilingGM2: 4.7, BudgetGM2: 17.3})
+	g.work.Name = "feed"
+	g.work.Settings = g.work.Settings.With(lateJune, planner.WorkSettings{
+		Counting: planner.Counting{Counts: planner.ByNitrogen}, Target: 0.1, Basis: planner.Midrange, Latest: 0.3,
+		Limits:    planner.Limits{LeastDays: 14, MostTimes: 6, MostTotal: 18.5},
+		Season:    planner.WorkSeason{From: planner.MonthDay{Month: time.April, Day: 2}, To: planner.MonthDay{Month: time.October, Day: 31}, Resting: true, StartsEmpty: true},
+		Origin:    planner.Origin{Source: "own trials", Ingredient: "urea", Grass: "bent", HeightMM: 3.2},
+		WateredIn: true, RainFreeHours: 4.5,
+	})
+	g.total.Name = "gdd 10"
+	g.total.Marks = []planner.Mark{{Name: "first spray", At: 120.5}, {Name: "second", At: 90}}
+	g.total.Settings = g.total.Settings.With(lateJune, planner.TotalSettings{
+		Counting: planner.Counting{Counts: planner.ByDegreeDays, Method: calc.MethodDoubleTriangle,
+			Thresholds: calc.Thresholds{LowerC: 10.1, UpperC: 29.7, Cutoff: calc.CutoffVertical}},
+		Curve: calc.GrowthCurve{OptimumC: 26.3, WidthC: 6.1, HeldAbove: true},
+		Start: planner.MonthDay{Month: time.November, Day: 30}})
+	g.closed.Name, g.closed.From, g.closed.To = "reseeding", midMay+1, lateJune+2
+	return g
 }
 
 func testArchived(t *testing.T, newTeam func(string) Store) {
@@ -116,11 +147,12 @@ func testArchived(t *testing.T, newTeam func(string) Store) {
 	save(t, store, g.site)
 	want(t, "Setup with the site again", setup(t, store), whole)
 
-	station, work, total := g.station, g.work, g.total
-	station.Archived, work.Archived, total.Archived = true, true, true
+	station, work, total, closed := g.station, g.work, g.total, g.closed
+	station.Archived, work.Archived, total.Archived, closed.Archived = true, true, true, true
 	save(t, store, station)
 	save(t, store, work)
 	save(t, store, total)
+	save(t, store, closed)
 	want(t, "Setup without what is under them", setup(t, store),
 		planner.Setup{Sites: whole.Sites, Surfaces: whole.Surfaces})
 }
@@ -134,6 +166,7 @@ func testNames(t *testing.T, newTeam func(string) Store) {
 	refuse(t, store, planner.Taken, newSurface(g.site.ID, "Greens"))
 	refuse(t, store, planner.Taken, newWork(g.surface.ID, "Regulator"))
 	refuse(t, store, planner.Taken, newTotal(g.site.ID, "GROWTH"))
+	refuse(t, store, planner.Taken, newClosed(g.site.ID, "Derby"))
 	_, err := store.Save(t.Context(), stamp(""), newSurface(g.site.ID, "greens"))
 	if err == nil || err.Error() != "greens is already a surface of North End" {
 		t.Errorf("the problem of a taken name reads %q", err)
@@ -159,19 +192,22 @@ func testParents(t *testing.T, newTeam func(string) Store) {
 	g, other := newGround(t, store, "Quillmere"), newGround(t, store, "Ashby")
 	const none = 99
 	for _, noun := range []planner.Noun{
-		newStation(none, "mast", 1), newSurface(none, "tees"), newWork(none, "cut"), newTotal(none, "heat"),
+		newStation(none, "mast", 1), newSurface(none, "tees"), newWork(none, "cut"), newTotal(none, "heat"), newClosed(none, "match"),
+		newClosed(g.site.ID, "match", none), newClosed(g.site.ID, "match", g.work.ID, other.work.ID),
 		newEntry(none, lateJune, g.work.ID), newEntry(g.site.ID, lateJune, none), newEntry(g.site.ID, lateJune, other.work.ID),
 		planner.Site{ID: none, Name: "Nowhere", Zone: "UTC", Units: planner.Celsius, Rules: planner.Always(standard)},
 		planner.Station{ID: none, Site: g.site.ID, Name: "mast", Rank: 1},
 	} {
 		refuse(t, store, planner.NotFound, noun)
 	}
+	closed := g.closed
+	closed.Site, closed.Works, closed.Name = other.site.ID, nil, "e"
 	station, surface, work, total := g.station, g.surface, g.work, g.total
 	station.Site, surface.Site, work.Surface, total.Site = other.site.ID, other.site.ID, other.surface.ID, other.site.ID
 	surface.Name, station.Name, work.Name, total.Name = "a", "b", "c", "d"
 	entry := save(t, store, newEntry(g.site.ID, lateJune, g.work.ID))
 	entry.Site, entry.Passes = other.site.ID, []planner.Pass{{Work: other.work.ID}}
-	for _, noun := range []planner.Noun{station, surface, work, total, entry} {
+	for _, noun := range []planner.Noun{station, surface, work, total, closed, entry} {
 		refuse(t, store, planner.Invalid, noun)
 	}
 
@@ -186,6 +222,7 @@ func testParents(t *testing.T, newTeam func(string) Store) {
 	refuse(t, store, planner.NotFound, newStation(g.site.ID, "mast", 1))
 	refuse(t, store, planner.NotFound, newSurface(g.site.ID, "tees"))
 	refuse(t, store, planner.NotFound, newTotal(g.site.ID, "heat"))
+	refuse(t, store, planner.NotFound, newClosed(g.site.ID, "match"))
 	refuse(t, store, planner.NotFound, newWork(g.surface.ID, "cut"))
 	refuse(t, store, planner.NotFound, newEntry(g.site.ID, lateJune, g.work.ID))
 	_, err := store.Import(t.Context(), stamp(""), g.station.ID, File{})
@@ -282,7 +319,7 @@ func testChanges(t *testing.T, newTeam func(string) Store) {
 	entry := save(t, store, newEntry(g.site.ID, lateJune, g.work.ID))
 	entry.Undone = true
 	undo := stamp("/log undo")
-	undo.By, undo.Undoes = "Kim", 6
+	undo.By, undo.Undoes = "Kim", 7
 	if _, err := store.Save(t.Context(), undo, entry); err != nil {
 		t.Fatal(err)
 	}
@@ -297,16 +334,16 @@ func testChanges(t *testing.T, newTeam func(string) Store) {
 		s.At = s.At.Truncate(time.Second)
 		return planner.Change{ID: id, Stamp: s, Kind: noun.Kind(), Thing: noun.Key(), After: noun}
 	}
-	last := row(7, entry)
+	last := row(8, entry)
 	last.By, last.Command, last.Undoes, last.Before = undo.By, undo.Command, undo.Undoes, kept
-	all := []planner.Change{last, row(6, kept), row(5, g.total), row(4, g.work), row(3, g.surface), row(2, g.station), row(1, g.site)}
+	all := []planner.Change{last, row(7, kept), row(6, g.closed), row(5, g.total), row(4, g.work), row(3, g.surface), row(2, g.station), row(1, g.site)}
 	want(t, "all changes", changes, all)
 	for _, limited := range []struct {
 		kind  string
 		limit int
 		want  []planner.Change
 	}{
-		{"", 2, all[:2]}, {"entry", 1, all[:1]}, {"entry", 9, all[:2]}, {"site", 9, all[6:]}, {"plan", 9, nil}, {"", 0, nil}, {"", -1, nil},
+		{"", 2, all[:2]}, {"entry", 1, all[:1]}, {"entry", 9, all[:2]}, {"site", 9, all[7:]}, {"closed", 9, all[2:3]}, {"plan", 9, nil}, {"", 0, nil}, {"", -1, nil},
 	} {
 		got, err := store.Changes(t.Context(), limited.kind, limited.limit)
 		if err != nil {

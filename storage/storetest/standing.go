@@ -44,8 +44,8 @@ func testTeams(t *testing.T, newTeam func(string) Store) {
 	entry := before.Entries[mine.site.ID][0]
 	fresh := entry
 	fresh.ID = 0
-	for _, noun := range []planner.Noun{mine.site, mine.station, mine.surface, mine.work, mine.total, entry,
-		newStation(mine.site.ID, "mast", 1), newSurface(mine.site.ID, "tees"), newWork(mine.surface.ID, "cut"), newTotal(mine.site.ID, "heat"), fresh} {
+	for _, noun := range []planner.Noun{mine.site, mine.station, mine.surface, mine.work, mine.total, mine.closed, entry,
+		newClosed(mine.site.ID, "match"), newStation(mine.site.ID, "mast", 1), newSurface(mine.site.ID, "tees"), newWork(mine.surface.ID, "cut"), newTotal(mine.site.ID, "heat"), fresh} {
 		refuse(t, two, planner.NotFound, noun)
 	}
 	_, err := two.Import(t.Context(), stamp(""), mine.station.ID, File{Readings: hourly(lateJune, 1)})

@@ -156,6 +156,10 @@ func newTotal(site planner.SiteID, name string) planner.Total {
 	})}
 }
 
+func newClosed(site planner.SiteID, name string, works ...planner.WorkID) planner.Closed {
+	return planner.Closed{Site: site, Name: name, Works: works, From: midMay, To: lateJune, Yearly: true}
+}
+
 func newEntry(site planner.SiteID, day planner.Day, works ...planner.WorkID) planner.Entry {
 	entry := planner.Entry{Site: site, Day: day, By: "Sam", At: time.Date(2024, time.June, 4, 5, 6, 7, 890, time.UTC), Note: "in the rain"}
 	for i, work := range works {

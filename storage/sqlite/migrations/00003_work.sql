@@ -79,3 +79,8 @@ CREATE TABLE closed_work (
     FOREIGN KEY (team, closed) REFERENCES closed (team, id),
     FOREIGN KEY (team, work) REFERENCES work (team, id)
 ) STRICT, WITHOUT ROWID;
+
+-- What else may be typed for a day ahead; NULL when it was not.
+ALTER TABLE hand_ahead ADD COLUMN humidity_percent REAL;
+ALTER TABLE hand_ahead ADD COLUMN rain_mm REAL;
+ALTER TABLE hand_ahead ADD COLUMN wind_ms REAL;
