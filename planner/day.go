@@ -120,5 +120,11 @@ func (m MonthDay) OnOrBefore(day Day) Day {
 	return start
 }
 
+// ofYear reports whether some year has the month and day.
+func (m MonthDay) ofYear() bool {
+	const leapYear = 2000
+	return m.Month >= time.January && m.Month <= time.December && m.Day >= 1 && m.Day <= DayOf(leapYear, m.Month, 1).DaysInMonth()
+}
+
 // String writes the month and day as MM-DD.
 func (m MonthDay) String() string { return fmt.Sprintf("%02d-%02d", int(m.Month), m.Day) }

@@ -147,6 +147,9 @@ func (d DoWork) Sentence(Units) string {
 }
 
 func (d DoWork) apply(plan Plan) (Plan, error) {
+	if !slices.ContainsFunc(plan.Works, func(work Work) bool { return work.ID == d.Work }) {
+		return plan, errNoSuchWork()
+	}
 	return LogEntry{Name: d.Name, Entry: Entry{Site: plan.Site.ID, Day: d.Day,
 		Passes: []Pass{{Work: d.Work, NitrogenGM2: d.NitrogenGM2, Rate: nitrogenRate(d.NitrogenGM2)}}}}.apply(plan)
 }
@@ -224,7 +227,7 @@ func (OpenAll) apply(plan Plan) (Plan, error) {
 	return plan, nil
 }
 
-// SetTarget gives a work another target.
+// SetTarget gives a work another target, and with it the default latest again.
 type SetTarget struct {
 	Work   WorkID
 	Name   string // how the sentence names it
@@ -258,5 +261,7 @@ func (p Plan) withSettings(id WorkID, change func(*WorkSettings)) (Plan, error) 
 		p.Works = works
 		return p, nil
 	}
-	return p, Problemf(NotFound, "the plan has no such work")
+	return p, errNoSuchWork()
 }
+
+func errNoSuchWork() error { return Problemf(NotFound, "the plan has no such work") }

@@ -15,6 +15,9 @@ type Setup struct {
 	Works    []Work
 	Totals   []Total
 	Closed   []Closed
+	Posts    []Post
+	People   []People
+	Channels []Channel
 }
 
 // Stamp says who changes something, when, and by which command line.

@@ -438,6 +438,9 @@ func (t Total) Check() error {
 		return Problemf(Invalid, "the total needs a site and a measure")
 	}
 	for _, settings := range t.Settings {
+		if start := settings.Value.Start; !start.ofYear() {
+			return Problemf(Invalid, "a season cannot start on %s", start).WithHint("Write MM-DD, like from:03-01.")
+		}
 		if c := settings.Value.Counts; c != ByDegreeDays && c != ByGrowthDays {
 			return Problemf(Invalid, "a season total cannot count %s", c).WithHint("Use counts:degree-days or counts:growth-days.")
 		}
@@ -479,6 +482,9 @@ func (e Entry) Check() error {
 		return Problemf(Invalid, "watered in on %s does not go with %s", e.Watered, e.Day).WithHint("Watering in comes on the day or in the month after.")
 	}
 	for _, pass := range e.Passes {
+		if pass.Work == 0 {
+			return Problemf(Invalid, "the entry names no work")
+		}
 		if err := pass.Rate.Check(); err != nil {
 			return err
 		}

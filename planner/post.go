@@ -37,6 +37,7 @@ const DefaultWindowMinutes = 4 * 60
 
 const (
 	minutesPerDay    = 24 * 60
+	minWindowMinutes = 15      // a restart takes a few
 	maxWindowMinutes = 23 * 60 // less than a day, so that no post meets the next
 	maxOutsideID     = 64
 )
@@ -64,8 +65,8 @@ func (p Post) Check() error {
 	if p.Minute < 0 || p.Minute >= minutesPerDay {
 		return Problemf(Invalid, "minute %d is no time of the day", p.Minute).WithHint("Give a time like 05:30.")
 	}
-	if p.WindowMinutes < 0 || p.WindowMinutes > maxWindowMinutes {
-		return Problemf(Invalid, "a post cannot go out %d minutes late", p.WindowMinutes).WithHint("Give 0 to 23 hours, like window:4.")
+	if p.WindowMinutes < minWindowMinutes || p.WindowMinutes > maxWindowMinutes {
+		return Problemf(Invalid, "a post cannot go out %d minutes late", p.WindowMinutes).WithHint("Give a quarter of an hour to 23 hours, like window:4.")
 	}
 	if p.On > everyWeekday {
 		return Problemf(Invalid, "there are seven days in a week")

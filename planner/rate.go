@@ -48,7 +48,8 @@ func (r Rate) Check() error {
 	case r.Kind != NutrientRate && r.Kind != MassRate && r.Kind != VolumeRate:
 		return Problemf(Invalid, "%q is no kind of rate", r.Kind)
 	case !(r.Value >= 0 && r.Value <= maxRate):
-		return Problemf(Invalid, "%g is no rate that can be given to a square metre", r.Value)
+		return Problemf(Invalid, "%g is no rate that can be given to a square metre", r.Value).
+			WithHint("Give 0 to %d g or mL a square metre, like rate:2.5.", maxRate)
 	case !(r.NPercent >= 0 && r.NPercent <= maxNPercent):
 		return Problemf(Invalid, "%g %% nitrogen is not possible", r.NPercent).WithHint("Urea has the most of the solid feeds, 46 %% (common practice).")
 	case r.NitrogenGM2() > maxPassGM2:

@@ -11,14 +11,17 @@ import (
 
 func (d Desk) setupTotal() []Command {
 	which := nameOption("which season total", "gdd10", d.names(totalNames))
-	settings := append(countingOptions(planner.ByDegreeDays, planner.ByGrowthDays),
+	counting := countingOptions(planner.ByDegreeDays, planner.ByGrowthDays)
+	start := Option{Name: "from", Kind: MonthDay, Help: "start of the season; 1 Jan, or 1 Jul in the south", Example: "03-01"}
+	settings := append(counting,
 		Option{Name: "grass", Kind: Choice, Choices: []string{"cool", "warm", "cool-f", "warm-f"}, Help: "growth days: of which grass"},
-		Option{Name: "from", Kind: MonthDay, Help: "start of the season; 1 Jan, or 1 Jul in the south", Example: "03-01"})
+		start)
 	add := append([]Option{nameOption("what the total is called", "gdd10", nil)}, settings...)
+	// What a total counts stays: another measure or method is another total.
 	change := append([]Option{which, newNameOption(),
 		{Name: "mark", Kind: Name, Help: "a total that means something, by name", Example: "first spray"},
 		{Name: "at", Kind: Target, Range: AtLeast(0), Help: "with mark: the total; 0 takes the mark away", Example: "120"},
-	}, settings...)
+	}, counting[1], counting[2], start)
 	return []Command{
 		{Path: "setup total add", Short: "add a season total: degree days or growth days since a date", Who: Lead, Options: append(add, d.siteOption()),
 			Examples: []string{"/setup total add name:gdd10 base:10 from:03-01", "/setup total add name:growth counts:growth-days grass:cool"}, Run: d.runTotalAdd},

@@ -134,7 +134,8 @@ func (d Desk) setupWork() []Command {
 	add := []Option{required(d.surfaceOption()), nameOption("what the work is called", "regulator", nil), required(counting[0])}
 	add = append(append(add, settings...), counting[1:]...)
 	change := []Option{required(d.surfaceOption()), which, newNameOption()}
-	change = append(append(append(change, settings...), counting...), limitOptions()...)
+	// What a work counts stays: another measure or method is another work.
+	change = append(append(append(change, settings...), counting[1:3]...), limitOptions()...)
 	return []Command{
 		{Path: "setup work add", Short: "add a work: a feed, a regulator spray, a cut", Who: Lead, Options: append(add, d.siteOption()),
 			Long: "A target holds for the product, grass, height of cut and mean it was found with; it does not transfer. Swardbook plans dates and prescribes no product and no rate.",

@@ -71,6 +71,12 @@ func decodeNoun(kind string, text sql.NullString) (planner.Noun, error) {
 		return decode[planner.Closed](text.String)
 	case planner.Entry{}.Kind():
 		return decode[planner.Entry](text.String)
+	case planner.Post{}.Kind():
+		return decode[planner.Post](text.String)
+	case planner.People{}.Kind():
+		return decode[planner.People](text.String)
+	case planner.Channel{}.Kind():
+		return decode[planner.Channel](text.String)
 	case kindImport, kindAhead:
 		return nil, nil
 	}

@@ -38,6 +38,12 @@ func (t *Team) Save(ctx context.Context, stamp planner.Stamp, noun planner.Noun)
 		return save(ctx, t, stamp, closedDays{}, noun)
 	case planner.Entry:
 		return save(ctx, t, stamp, entries{}, noun)
+	case planner.Post:
+		return save(ctx, t, stamp, posts{}, noun)
+	case planner.People:
+		return save(ctx, t, stamp, peopleBound{}, noun)
+	case planner.Channel:
+		return save(ctx, t, stamp, channels{}, noun)
 	}
 	return nil, planner.Problemf(planner.Internal, "a %T is nothing that can be kept", noun)
 }

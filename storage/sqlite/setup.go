@@ -35,7 +35,16 @@ func (t *Team) Setup(ctx context.Context) (planner.Setup, error) {
 		if setup.Totals, err = (totals{}).list(ctx, conn, t.id, siteOpen); err != nil {
 			return err
 		}
-		setup.Closed, err = closedDays{}.list(ctx, conn, t.id, siteOpen)
+		if setup.Closed, err = (closedDays{}).list(ctx, conn, t.id, siteOpen); err != nil {
+			return err
+		}
+		if setup.Posts, err = (posts{}).list(ctx, conn, t.id, siteOpen); err != nil {
+			return err
+		}
+		if setup.People, err = (peopleBound{}).list(ctx, conn, t.id, notArchived); err != nil {
+			return err
+		}
+		setup.Channels, err = channels{}.list(ctx, conn, t.id, siteOpen)
 		return err
 	})
 	if err != nil {

@@ -17,7 +17,8 @@ import (
 func testTeams(t *testing.T, newTeam func(string) Store) {
 	one, two := newTeam("one"), newTeam("two")
 	mine := newGround(t, one, "Quillmere")
-	save(t, one, newEntry(mine.site.ID, lateJune, mine.work.ID))
+	feed := save(t, one, newWork(mine.surface.ID, "feed")) // the second team will have no work of this id
+	save(t, one, newEntry(mine.site.ID, lateJune, mine.work.ID, feed.ID))
 	load(t, one, mine.station.ID, File{Readings: hourly(lateJune, 3)})
 	days := []planner.HandDay{{Day: lateJune, HighC: 20, LowC: 10}}
 	if err := one.SaveAhead(t.Context(), stamp(""), mine.site.ID, lateJune-1, days); err != nil {
@@ -59,15 +60,20 @@ func testTeams(t *testing.T, newTeam func(string) Store) {
 
 	// The same ids, now both teams': each keeps its own.
 	theirs := newGround(t, two, "Quillmere")
+	save(t, two, newEntry(theirs.site.ID, midMay, theirs.work.ID))
 	theirs.site.Name, theirs.work.Archived = "Ashby", true
 	save(t, two, theirs.site)
+	refuse(t, two, planner.NotFound, newEntry(theirs.site.ID, lateJune, feed.ID))
+	refuse(t, two, planner.NotFound, newClosed(theirs.site.ID, "match", feed.ID))
 	save(t, two, theirs.work)
 	refuse(t, two, planner.NotFound, newEntry(theirs.site.ID, lateJune, mine.work.ID)) // dropped here, not there
 	changed := hourly(lateJune, 3)
-	for i := range changed {
-		changed[i].C++
+	for range 2 {
+		for i := range changed {
+			changed[i].C++
+		}
+		load(t, two, theirs.station.ID, File{Readings: changed})
 	}
-	load(t, two, theirs.station.ID, File{Readings: changed})
 	cleared := []planner.HandDay{{Day: lateJune, Cleared: true}}
 	if err := two.SaveAhead(t.Context(), stamp(""), theirs.site.ID, lateJune-1, cleared); err != nil {
 		t.Fatal(err)

@@ -48,7 +48,8 @@ type Repeat struct{ Line, First int }
 //
 //  1. Save gives ids by team and kind from 1 on, and none twice, also when what
 //     had it was dropped or its Save refused.
-//  2. Setup returns what was saved, every field of it, in the order added.
+//  2. Setup returns what was saved, every field of it, in the order added; the
+//     suite fails when a noun has a field that it sets no value in.
 //  3. What is archived is not in Setup, nor what is under an archived site or
 //     surface; it comes back with it.
 //  4. A name is unique under its parent among what is not archived, ignoring

@@ -1,0 +1,133 @@
+package schedule
+
+import (
+	"context"
+	"fmt"
+	"strings"
+	"time"
+
+	"swardbook/bot/command"
+	"swardbook/bot/reply"
+	"swardbook/planner"
+)
+
+// Desk writes posts by the same commands that people type.
+type Desk struct {
+	Table command.Table
+	Book  *planner.Book
+}
+
+var _ Writer = Desk{}
+
+// Compose runs the post's command for its day, says what is late, missed or
+// missing, and puts the buttons of a post under it.
+func (d Desk) Compose(ctx context.Context, task Task, now time.Time) (Content, error) {
+	setup, site, err := d.site(ctx, task.Post)
+	if err != nil {
+		return Content{}, err
+	}
+	kind, ok := command.PostKind(task.Post.What)
+	if !ok {
+		return Content{}, planner.Problemf(planner.Invalid, "%q is nothing that can be posted", task.Post.What)
+	}
+	one := len(setup.Sites) == 1
+	line := siteLine(kind.Path, site, one)
+	if kind.Dated {
+		line += " date:" + task.Day.String()
+	}
+	r, err := d.Table.Run(ctx, command.Request{
+		Caller: command.Caller{ID: "post", Name: By, Role: command.Lead}, Now: now, Line: line, Confirmed: true})
+	if err != nil {
+		return Content{}, err
+	}
+	whole, err := d.Whole(ctx, task.Post, task.Day)
+	if err != nil {
+		return Content{}, err
+	}
+	partial := !whole
+	if notes := notes(task, partial, site); len(notes) > 0 {
+		r.Blocks = append([]reply.Block{reply.Text(strings.Join(notes, "\n"))}, r.Blocks...)
+	}
+	r.Private, r.Confirm = false, nil
+	r.Blocks = append(withoutActions(r.Blocks), d.actions(site, one))
+	return Content{Reply: r, Partial: partial}, nil
+}
+
+func (d Desk) site(ctx context.Context, post planner.Post) (planner.Setup, planner.Site, error) {
+	setup, err := d.Book.Setup(ctx)
+	if err != nil {
+		return setup, planner.Site{}, err
+	}
+	for _, site := range setup.Sites {
+		if site.ID == post.Site {
+			return setup, site, nil
+		}
+	}
+	return setup, planner.Site{}, planner.Problemf(planner.NotFound, "the post's site was dropped")
+}
+
+// Whole reports whether the day before has what the site's record has of its
+// days: hourly readings if there are any, a high and a low in any case.
+func (d Desk) Whole(ctx context.Context, post planner.Post, day planner.Day) (bool, error) {
+	record, err := d.Book.Record(ctx, post.Site)
+	if err != nil {
+		return false, err
+	}
+	for i := len(record.Facts) - 1; i >= 0; i-- {
+		if facts := record.Facts[i]; facts.Day == day-1 {
+			return facts.HasExtremes && (facts.HasHourly || !record.HasHourly()), nil
+		}
+	}
+	return false, nil
+}
+
+// siteLine is a command about the site; of a team's only site it need not say so.
+func siteLine(path string, site planner.Site, only bool) string {
+	if only {
+		return command.Line(path)
+	}
+	return command.Line(path, command.Pair{Name: "site", Value: site.Name})
+}
+
+// notes are the lines above a post.
+func notes(task Task, partial bool, site planner.Site) []string {
+	var lines []string
+	if task.Part == 1 {
+		lines = append(lines, "Yesterday's weather is in: this takes the place of today's first post.")
+	} else if task.Late {
+		lines = append(lines, "Late: this was due at "+task.Post.Clock()+".")
+	}
+	switch n := len(task.Missed); {
+	case n == 1:
+		lines = append(lines, "No post went out on "+task.Missed[0].Short()+".")
+	case n > 1:
+		lines = append(lines, fmt.Sprintf("No post went out on %d days, %s to %s.", n, task.Missed[0].Short(), task.Missed[n-1].Short()))
+	}
+	if partial && task.Part == 0 {
+		lines = append(lines, "Yesterday's weather is not whole yet. Once it is, this post is followed up.")
+	}
+	return lines
+}
+
+func withoutActions(blocks []reply.Block) []reply.Block {
+	var rest []reply.Block
+	for _, block := range blocks {
+		if _, ok := block.(reply.Actions); !ok {
+			rest = append(rest, block)
+		}
+	}
+	return rest
+}
+
+// actions are the buttons of a post.
+func (d Desk) actions(site planner.Site, only bool) reply.Actions {
+	var actions reply.Actions
+	for _, button := range []struct{ label, path string }{
+		{"Due", "due"}, {"Done…", "done"}, {"Sheet", "sheet get"}, {"More", "season"},
+	} {
+		if _, found := d.Table.Find(button.path); found {
+			actions = append(actions, reply.Action{Label: button.label, Line: siteLine(button.path, site, only)})
+		}
+	}
+	return actions
+}

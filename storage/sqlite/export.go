@@ -1,0 +1,118 @@
+package sqlite
+
+import (
+	"bytes"
+	"context"
+	"database/sql"
+	"encoding/csv"
+	"encoding/hex"
+	"fmt"
+	"strconv"
+	"time"
+
+	"swardbook/planner"
+)
+
+// Export returns all that is kept of the site as comma-separated files, one a
+// kind of row, days as dates and times in UTC. Kinds with no rows are left
+// out. A site that is not the team's is a NotFound problem.
+func (t *Team) Export(ctx context.Context, site planner.SiteID) (files []planner.DataFile, err error) {
+	err = t.db.read(ctx, "export a site", func(conn *sql.Conn) error {
+		err := mustExist(ctx, conn, "site", int64(site), `SELECT 1 FROM site WHERE team = ? AND id = ?`, t.id, site)
+		if err != nil {
+			return err
+		}
+		keys, err := foreignKeys(ctx, conn)
+		if err != nil {
+			return err
+		}
+		below := hanging(keys, "site")
+		changes := ""
+		for _, table := range below {
+			where := below.condition(keys, table)
+			content, err := asCSV(ctx, conn, fmt.Sprintf(`SELECT * FROM %q WHERE %s`, table, where), t.id, site)
+			if err != nil {
+				return fmt.Errorf("%s: %w", table, err)
+			}
+			if content != nil {
+				files = append(files, planner.DataFile{Name: table + ".csv", Content: content})
+			}
+			if keyOf(keys, table) != "" {
+				changes += fmt.Sprintf(` OR kind = '%s' AND thing IN (SELECT id FROM %q WHERE %s)`, table, table, where)
+			}
+		}
+		content, err := asCSV(ctx, conn, `SELECT * FROM change WHERE team = ?1 AND (kind = '`+kindAhead+`' AND thing = ?2`+changes+`)`, t.id, site)
+		if content != nil {
+			files = append(files, planner.DataFile{Name: "change.csv", Content: content})
+		}
+		return err
+	})
+	return files, err
+}
+
+// asCSV runs the query and writes its rows with a header; nil when there are
+// none. The team's number is left out: it means nothing outside.
+func asCSV(ctx context.Context, on session, query string, args ...any) ([]byte, error) {
+	rows, err := on.QueryContext(ctx, query, args...)
+	if err != nil {
+		return nil, err
+	}
+	defer rows.Close()
+	columns, err := rows.Columns()
+	if err != nil {
+		return nil, err
+	}
+	var out bytes.Buffer
+	writer := csv.NewWriter(&out)
+	count := 0
+	values, targets := make([]any, len(columns)), make([]any, len(columns))
+	for i := range values {
+		targets[i] = &values[i]
+	}
+	for ; rows.Next(); count++ {
+		if err := rows.Scan(targets...); err != nil {
+			return nil, err
+		}
+		if count == 0 {
+			_ = writer.Write(columns[1:]) // the buffer takes all
+		}
+		row := make([]string, 0, len(columns))
+		for i := 1; i < len(columns); i++ {
+			row = append(row, exported(columns[i], values[i]))
+		}
+		_ = writer.Write(row)
+	}
+	writer.Flush()
+	if err := rows.Err(); err != nil || count == 0 {
+		return nil, err
+	}
+	return out.Bytes(), writer.Error()
+}
+
+// dayColumns hold planner.Day numbers.
+var dayColumns = map[string]bool{"day": true, "valid_from": true, "from_day": true, "to_day": true, "issued": true, "watered": true}
+
+func exported(column string, value any) string {
+	switch v := value.(type) {
+	case nil:
+		return ""
+	case int64:
+		switch {
+		case dayColumns[column] && v >= int64(planner.DayMin) && v <= int64(planner.DayMax) && (v != 0 || column != "watered"):
+			if v == int64(planner.DayMin) {
+				return "" // since ever
+			}
+			return planner.Day(v).String()
+		case column == "at":
+			return time.Unix(v, 0).UTC().Format(time.RFC3339)
+		}
+		return strconv.FormatInt(v, 10)
+	case float64:
+		return strconv.FormatFloat(v, 'g', -1, 64)
+	case []byte:
+		return hex.EncodeToString(v)
+	case string:
+		return v
+	}
+	return fmt.Sprint(value)
+}
