@@ -54,6 +54,7 @@ type Command struct {
 	Who      Role     // the least role that may run it
 	Listed   bool     // shown to the crew
 	Asks     bool     // says what it will mean and asks before it acts
+	Shared   bool     // what it answers once it has acted is for everybody, not for the caller alone
 	Examples []string // command lines that work, the first being the plainest
 	Run      Handler
 }
@@ -101,6 +102,9 @@ type Request struct {
 	// Confirmed says that the caller has said yes. Set when the command comes
 	// in it skips the question.
 	Confirmed bool
+	// Channel is the chat channel the command came from; empty where there is
+	// none.
+	Channel string
 	// OpenFile opens the file that a File option names; nil where there are no
 	// files.
 	OpenFile func(name string) (io.ReadCloser, error)

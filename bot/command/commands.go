@@ -17,5 +17,9 @@ func (d Desk) Table(log *slog.Logger) Table {
 	commands = append(commands, d.setupWork()...)
 	commands = append(commands, d.setupTotal()...)
 	commands = append(commands, d.setupClosed()...)
+	commands = append(commands, d.setupPost()...)
+	commands = append(commands, d.setupPeople()...)
+	commands = append(commands, d.setupChannel()...)
+	commands = append(commands, d.setupData()...)
 	return New(log, commands...)
 }

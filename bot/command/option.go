@@ -27,6 +27,8 @@ const (
 	Target                      // 200, 200c or 360f: a total of what a work counts
 	Yes                         // yes or no
 	File                        // a file; in the terminal its path
+	ChatChannel                 // a channel of the chat server, by its id
+	ChatGroup                   // a group of people of the chat server, by its id
 )
 
 // Range bounds a number, both ends included.
@@ -116,4 +118,6 @@ var kinds = map[Kind]struct{ allowed, more, example string }{
 	Target:      {"a number", " (200, 200c or 360f)", "200"},
 	Yes:         {"yes or no", "", "yes"},
 	File:        {"a file", "", "week.csv"},
+	ChatChannel: {"a channel of the chat server", " (chosen from its list, or its number)", "1010101010101010101"},
+	ChatGroup:   {"a group of the chat server", " (chosen from its list, or its number)", "2020202020202020202"},
 }

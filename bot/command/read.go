@@ -78,6 +78,8 @@ func (v *value) fill() (ok bool) {
 		return v.fillDegrees()
 	case Yes:
 		return v.fillYes()
+	case ChatChannel, ChatGroup:
+		return outsidePattern.MatchString(v.text)
 	}
 	return ok
 }
@@ -161,6 +163,9 @@ var (
 	numberPattern = regexp.MustCompile(`^-?(?:\d{1,12}(?:\.\d{0,12})?|\.\d{1,12})$`)
 	wholePattern  = regexp.MustCompile(`^-?\d{1,9}$`)
 )
+
+// outsidePattern is an id that a chat server gives.
+var outsidePattern = regexp.MustCompile(`^[A-Za-z0-9_-]{1,64}$`)
 
 // readNumber reads a plain number, and gives its text without a plus sign or
 // the long minus sign that some keyboards type.

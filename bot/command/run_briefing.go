@@ -10,7 +10,7 @@ import (
 
 func (d Desk) briefing() Command {
 	return Command{
-		Path: "briefing", Short: "the morning post, now or for a past day", Listed: true,
+		Path: "briefing", Short: "the morning post, now or for a past day", Listed: true, Shared: true,
 		Long: "A past day is computed again on readings up to that morning, and on what was logged and set up by then.",
 		Options: []Option{{Name: "date", Kind: Day, Past: true, Help: "which morning; today when not given", Example: "yesterday"},
 			{Name: "post", Kind: Choice, Choices: []string{"morning", "tomorrow"}, Help: "the morning's, or the evening's about tomorrow"}, d.siteOption()},

@@ -12,7 +12,7 @@ import (
 
 func (d Desk) done() Command {
 	return Command{
-		Path: "done", Short: "log what was done: one pass over one or more surfaces", Listed: true, Asks: true,
+		Path: "done", Short: "log what was done: one pass over one or more surfaces", Listed: true, Asks: true, Shared: true,
 		Long: "Several surfaces and works in one entry are one pass, such as a tank mix. The count starts again the day after. " +
 			"It shows what the entry will mean and asks once; /log undo takes it back. This log is not the legal spray record.",
 		Options: append([]Option{

@@ -10,6 +10,8 @@ import (
 // Desk answers commands from the team's book.
 type Desk struct {
 	Book *planner.Book
+	// Data exports and erases; nil where that is not offered.
+	Data planner.DataKeeper
 	// Version is what /help says the program is.
 	Version string
 }
