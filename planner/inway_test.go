@@ -1,6 +1,7 @@
 package planner_test
 
 import (
+	"fmt"
 	"testing"
 
 	"pgregory.net/rapid"
@@ -23,7 +24,7 @@ func simple(settings planner.WorkSettings, asOf planner.Day, log ...planner.Entr
 		Site: planner.Site{ID: 1, Name: "Quillmere", Lat: 40, Units: planner.Celsius}, AsOf: asOf, Record: record,
 		Surfaces: []planner.Surface{{ID: 1, Site: 1, Name: "greens",
 			Turf:  planner.Always(planner.Turf{Grass: "cool", Curve: calc.CoolSeason(), CeilingGM2: 3}),
-			Parts: []planner.Part{{Name: "front nine", Share: 0.5}, {Name: "back nine", Share: 0.5}}}},
+			Parts: []planner.Part{{ID: 1, Name: "front nine", Share: 0.5}, {ID: 2, Name: "back nine", Share: 0.5}}}},
 		Works:   []planner.Work{{ID: 1, Surface: 1, Name: "regulator", Settings: planner.Always(settings)}},
 		Log:     log,
 		Outlook: outlook.Simple{}.Outlook(record, nil, asOf),
@@ -42,7 +43,12 @@ func doneOn(day planner.Day, change ...func(*planner.Entry)) planner.Entry {
 	return entry
 }
 
-func inPart(name string) func(*planner.Entry) {
+const (
+	frontNine planner.PartID = 1
+	backNine  planner.PartID = 2
+)
+
+func inPart(name planner.PartID) func(*planner.Entry) {
 	return func(e *planner.Entry) { e.Passes[0].Part = name }
 }
 
@@ -99,7 +105,7 @@ func TestInTheWay(t *testing.T) {
 		{name: "least days shorter than the count change nothing", target: 7, settings: func(s *planner.WorkSettings) { s.Limits.LeastDays = 3 }, log: []planner.Entry{doneOn(june(5))}, asOf: june(10), status: planner.NotYet, date: june(12)},
 		{name: "most times a season", target: 7, settings: func(s *planner.WorkSettings) { s.Limits.MostTimes = 2 }, log: []planner.Entry{doneOn(june(1)), doneOn(june(5))}, asOf: june(10), status: planner.Full, date: june(12)},
 		{name: "passes of last year do not count", target: 7, settings: func(s *planner.WorkSettings) { s.Limits.MostTimes = 2 }, log: []planner.Entry{doneOn(planner.DayOf(2022, 12, 31)), doneOn(june(5))}, asOf: june(10), status: planner.NotYet, date: june(12)},
-		{name: "two parts are one time", target: 7, settings: func(s *planner.WorkSettings) { s.Limits.MostTimes = 2 }, log: []planner.Entry{doneOn(june(4), inPart("front nine")), doneOn(june(5), inPart("back nine"))}, asOf: june(10), status: planner.NotYet, date: june(11)},
+		{name: "two parts are one time", target: 7, settings: func(s *planner.WorkSettings) { s.Limits.MostTimes = 2 }, log: []planner.Entry{doneOn(june(4), inPart(frontNine)), doneOn(june(5), inPart(backNine))}, asOf: june(10), status: planner.NotYet, date: june(11)},
 		{name: "closed day", target: 7, closed: []planner.Closed{{Name: "match", From: june(11), To: june(13)}}, log: []planner.Entry{doneOn(june(5))}, asOf: june(10), status: planner.NotYet, date: june(12),
 			check: func(t *testing.T, s planner.WorkState) {
 				if s.Closed == nil || s.Closed.Why != "match" || s.Closed.Before.Day != june(10) || s.Closed.After.Day != june(14) {
@@ -139,13 +145,13 @@ func TestInTheWay(t *testing.T) {
 					t.Errorf("doubted %+v", s.Doubted)
 				}
 			}},
-		{name: "part done: the old count stands for the rest", target: 7, log: []planner.Entry{doneOn(june(5)), doneOn(june(8), inPart("front nine"))}, asOf: june(10), status: planner.NotYet, date: june(12),
+		{name: "part done: the old count stands for the rest", target: 7, log: []planner.Entry{doneOn(june(5)), doneOn(june(8), inPart(frontNine))}, asOf: june(10), status: planner.NotYet, date: june(12),
 			check: func(t *testing.T, s planner.WorkState) {
 				if len(s.Behind) != 1 || s.Behind[0] != "back nine" {
 					t.Errorf("behind: %v", s.Behind)
 				}
 			}},
-		{name: "both parts done: from the earliest", target: 7, log: []planner.Entry{doneOn(june(5)), doneOn(june(7), inPart("front nine")), doneOn(june(9), inPart("back nine"))}, asOf: june(10), status: planner.NotYet, date: june(14)},
+		{name: "both parts done: from the earliest", target: 7, log: []planner.Entry{doneOn(june(5)), doneOn(june(7), inPart(frontNine)), doneOn(june(9), inPart(backNine))}, asOf: june(10), status: planner.NotYet, date: june(14)},
 		{name: "counts from watering in", target: 7, settings: func(s *planner.WorkSettings) { s.WateredIn = true }, log: []planner.Entry{doneOn(june(5), func(e *planner.Entry) { e.Watered = june(7) })}, asOf: june(10), status: planner.NotYet, date: june(14)},
 		{name: "watering in does not matter to others", target: 7, log: []planner.Entry{doneOn(june(5), func(e *planner.Entry) { e.Watered = june(7) })}, asOf: june(10), status: planner.NotYet, date: june(12)},
 	} {
@@ -180,7 +186,7 @@ func TestNitrogenOfPartsAndSlowFeeds(t *testing.T) {
 	}
 	// At 20 °C growth potential is 1, so 3/30 = 0.1 g N/m² is used each June day.
 	whole := stateOf(t, simple(settings, june(10), feed(june(5), 1)))
-	part := stateOf(t, simple(settings, june(10), feed(june(5), 1, inPart("front nine"))))
+	part := stateOf(t, simple(settings, june(10), feed(june(5), 1, inPart(frontNine))))
 	slow := stateOf(t, simple(settings, june(10), feed(june(5), 1, func(e *planner.Entry) { e.Passes[0].SlowShare, e.Passes[0].SlowWeeks = 0.7, 1 })))
 	for _, row := range []struct {
 		name  string
@@ -289,5 +295,30 @@ func TestNextDay(t *testing.T) {
 	plan.Hand[0].HumidityPercent.Known = false
 	if dry, _ := planner.NextDay(plan); dry.HeatIndexC.Known {
 		t.Error("a heat index without humidity")
+	}
+}
+
+// A part keeps its id when it is named again, a dropped one stays for the log,
+// and no id is given twice.
+func TestWithParts(t *testing.T) {
+	surface := planner.Surface{Site: 1, Name: "greens", Turf: planner.Always(planner.Turf{Grass: "cool", Curve: calc.CoolSeason()})}
+	surface = surface.WithParts([]planner.Part{{Name: "front nine", Share: 0.5}, {Name: "back nine", Share: 0.5}})
+	surface = surface.WithParts([]planner.Part{{Name: "Front Nine", Share: 0.4}, {Name: "nursery", Share: 0.6}})
+	want := []planner.Part{{ID: 1, Name: "Front Nine", Share: 0.4}, {ID: 2, Name: "back nine", Share: 0.5, Dropped: true}, {ID: 3, Name: "nursery", Share: 0.6}}
+	if fmt.Sprint(surface.Parts) != fmt.Sprint(want) {
+		t.Errorf("%+v, want %+v", surface.Parts, want)
+	}
+	if surface.ShareOf(2) != 0.5 || surface.ShareOf(0) != 1 || surface.PartName(2) != "back nine" || len(surface.ActiveParts()) != 2 {
+		t.Error("a dropped part is not known any more, or not dropped")
+	}
+	if err := surface.Check(); err != nil {
+		t.Error(err)
+	}
+	if again := surface.WithParts(nil).WithParts([]planner.Part{{Name: "practice", Share: 1}}); again.Parts[3].ID != 4 {
+		t.Errorf("an id was given twice: %+v", again.Parts)
+	}
+	surface.Parts[0].Share = 0.5
+	if surface.Check() == nil {
+		t.Error("shares that make 1.1 were taken")
 	}
 }

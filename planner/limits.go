@@ -77,7 +77,7 @@ func (p Plan) seasonUse(work Work, settings WorkSettings) SeasonUse {
 		use.Since = p.Site.SeasonStart().OnOrBefore(p.AsOf)
 	}
 	surface, _ := p.Surface(work.Surface)
-	parts := surface.Parts
+	parts := surface.ActiveParts()
 	if len(parts) == 0 {
 		parts = []Part{{}}
 	}
@@ -92,7 +92,7 @@ func (p Plan) seasonUse(work Work, settings WorkSettings) SeasonUse {
 func (p Plan) usedOn(part Part, work Work, since Day) (times int, given float64) {
 	for _, entry := range p.Log {
 		pass, ok := entry.Of(work.ID)
-		if !ok || entry.Day < since || entry.Result == Lost || pass.Part != "" && NameKey(pass.Part) != NameKey(part.Name) {
+		if !ok || entry.Day < since || entry.Result == Lost || pass.Part != 0 && pass.Part != part.ID {
 			continue
 		}
 		times++

@@ -239,7 +239,7 @@ type Pass struct {
 	// NitrogenGM2 is the nitrogen given, g N/m²; 0 when none was.
 	NitrogenGM2 float64 `json:"nitrogen_g_m2,omitempty"`
 	Rate        Rate    `json:"rate,omitzero"`        // as it was said
-	Part        string  `json:"part,omitempty"`       // the part done; empty for the whole surface
+	Part        PartID  `json:"part,omitempty"`       // the part done; 0 for the whole surface
 	SlowShare   float64 `json:"slow_share,omitempty"` // of the nitrogen, 0 to 1
 	SlowWeeks   float64 `json:"slow_weeks,omitempty"` // over which the slow share comes
 }

@@ -1,50 +1,96 @@
 package planner
 
-import "math"
+import (
+	"math"
+	"slices"
+)
+
+// PartID names a part of one surface for good; 0 stands for the whole surface.
+type PartID int
 
 // Part is a named part of a surface that is at times done apart from the rest,
-// such as the front nine.
+// such as the front nine. A part that is dropped stays, for the log's sake.
 type Part struct {
-	Name  string  `json:"name"`
-	Share float64 `json:"share"` // of the surface's area, 0 to 1
+	ID      PartID  `json:"id"`
+	Name    string  `json:"name"`
+	Share   float64 `json:"share"` // of the surface's area, 0 to 1
+	Dropped bool    `json:"dropped,omitempty"`
 }
 
-// ShareOf is the part's share of the area; 1 for the whole surface (no name).
-func (s Surface) ShareOf(part string) float64 {
-	for _, known := range s.Parts {
-		if NameKey(known.Name) == NameKey(part) {
-			return known.Share
+// ActiveParts are the parts that were not dropped; none when the surface is
+// done as a whole.
+func (s Surface) ActiveParts() []Part {
+	return filter(s.Parts, func(part Part) bool { return !part.Dropped })
+}
+
+// ShareOf is the part's share of the area; 1 for the whole surface.
+func (s Surface) ShareOf(id PartID) float64 {
+	for _, part := range s.Parts {
+		if part.ID == id {
+			return part.Share
 		}
 	}
 	return 1
 }
 
-func (s Surface) checkParts() error {
-	if len(s.Parts) == 0 {
-		return nil
+// PartName is the part's name; "" for the whole surface.
+func (s Surface) PartName(id PartID) string {
+	for _, part := range s.Parts {
+		if part.ID == id {
+			return part.Name
+		}
 	}
+	return ""
+}
+
+// WithParts returns the surface done in the parts given, by name and share: a
+// part that it has or had keeps its id, another gets a new one, and those not
+// given are dropped. No parts make it a surface done as a whole.
+func (s Surface) WithParts(parts []Part) Surface {
+	kept := slices.Clone(s.Parts)
+	newest := PartID(0)
+	for i := range kept {
+		kept[i].Dropped = true
+		newest = max(newest, kept[i].ID)
+	}
+	for _, part := range parts {
+		at := slices.IndexFunc(kept, func(known Part) bool { return NameKey(known.Name) == NameKey(part.Name) })
+		if at < 0 {
+			newest++
+			kept, at = append(kept, Part{ID: newest}), len(kept)
+		}
+		kept[at] = Part{ID: kept[at].ID, Name: part.Name, Share: part.Share}
+	}
+	s.Parts = kept
+	return s
+}
+
+func (s Surface) checkParts() error {
 	total := 0.0
 	seen := map[string]bool{}
+	ids := map[PartID]bool{}
 	for _, part := range s.Parts {
 		if err := CheckName(part.Name); err != nil {
 			return err
 		}
-		if !(part.Share > 0 && part.Share <= 1) || seen[NameKey(part.Name)] {
+		if !(part.Share > 0 && part.Share <= 1) || seen[NameKey(part.Name)] || part.ID < 1 || ids[part.ID] {
 			return Problemf(Invalid, "the part %q cannot be used", part.Name).WithHint("Each part has a name of its own and a share above 0.")
 		}
-		seen[NameKey(part.Name)] = true
-		total += part.Share
+		seen[NameKey(part.Name)], ids[part.ID] = true, true
+		if !part.Dropped {
+			total += part.Share
+		}
 	}
-	if math.Abs(total-1) > 1e-9 {
+	if len(s.ActiveParts()) > 0 && math.Abs(total-1) > 1e-9 {
 		return Problemf(Invalid, "the parts of %s make %s of it", s.Name, number(total)).WithHint("The shares of all parts together make 1.")
 	}
 	return nil
 }
 
-// standing passes of one work, by day.
+// donePass is one pass of a work that counts.
 type donePass struct {
 	Day    Day // the count starts the day after: the day it was done, or watered in
-	Part   string
+	Part   PartID
 	Result Result
 }
 
@@ -71,7 +117,7 @@ func (p Plan) passesOf(work WorkID, settings WorkSettings) []donePass {
 // of its parts' newest passes. Parts never done are left out, and named when
 // others were done since.
 func wholeSince(surface Surface, done []donePass) (since Day, behind []string, ok bool) {
-	parts := surface.Parts
+	parts := surface.ActiveParts()
 	if len(parts) == 0 {
 		parts = []Part{{}}
 	}
@@ -80,7 +126,7 @@ func wholeSince(surface Surface, done []donePass) (since Day, behind []string, o
 	for i, part := range parts {
 		newest[i] = DayMin
 		for _, pass := range done {
-			if pass.Part == "" || NameKey(pass.Part) == NameKey(part.Name) {
+			if pass.Part == 0 || pass.Part == part.ID {
 				newest[i] = max(newest[i], pass.Day)
 			}
 		}

@@ -85,7 +85,7 @@ func newClub() club {
 		}
 		surface := planner.Surface{ID: planner.SurfaceID(i + 1), Site: 1, Name: fmt.Sprintf("surface-%d", i+1), Turf: turf}
 		if i%2 == 0 {
-			surface.Parts = []planner.Part{{Name: "front", Share: 0.6}, {Name: "back", Share: 0.4}}
+			surface.Parts = []planner.Part{{ID: 1, Name: "front", Share: 0.6}, {ID: 2, Name: "back", Share: 0.4}}
 		}
 		c.surfaces = append(c.surfaces, surface)
 	}
@@ -112,7 +112,7 @@ func newClub() club {
 		entry := planner.Entry{ID: planner.EntryID(i + 1), Site: 1, Day: first + planner.Day(60+random.IntN(280)), By: "Alder", At: time.Unix(0, 0)}
 		pass := planner.Pass{Work: work.ID}
 		if len(surface.Parts) > 0 && random.IntN(3) == 0 {
-			pass.Part = surface.Parts[random.IntN(2)].Name
+			pass.Part = surface.Parts[random.IntN(2)].ID
 		}
 		if random.IntN(4) == 0 {
 			pass.Rate = planner.Rate{Kind: planner.MassRate, Value: 4 + 8*random.Float64(), NPercent: 20}
@@ -170,7 +170,7 @@ func (c club) ledger(surface planner.Surface, basis planner.Basis, asOf planner.
 			}
 			share := 1.0
 			for _, part := range surface.Parts {
-				if part.Name == pass.Part {
+				if part.ID == pass.Part {
 					share = part.Share
 				}
 			}

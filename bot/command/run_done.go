@@ -181,19 +181,20 @@ func distinctWorks(passes []planner.Pass, works []planner.Work) map[string]bool 
 
 // partOf is the part of the work's surface with the name; one that it does not
 // have is a problem.
-func (v visit) partOf(id planner.WorkID, part string) (string, error) {
+func (v visit) partOf(id planner.WorkID, name string) (planner.PartID, error) {
 	_, surface, _ := v.workOf(id)
-	names := namesOf(surface.Parts, func(p planner.Part) string { return p.Name })
-	for _, name := range names {
-		if planner.NameKey(name) == planner.NameKey(part) {
-			return name, nil
+	parts := surface.ActiveParts()
+	for _, part := range parts {
+		if planner.NameKey(part.Name) == planner.NameKey(name) {
+			return part.ID, nil
 		}
 	}
-	problem := planner.Problemf(planner.NotFound, "%s has no part %q.", surface.Name, part)
+	names := namesOf(parts, func(p planner.Part) string { return p.Name })
+	problem := planner.Problemf(planner.NotFound, "%s has no part %q.", surface.Name, name)
 	if len(names) == 0 {
-		return "", problem.WithHint("A lead names the parts:\n%s", Line("setup surface change", Pair{"name", surface.Name}, Pair{"parts", "front nine,back nine"}))
+		return 0, problem.WithHint("A lead names the parts:\n%s", Line("setup surface change", Pair{"name", surface.Name}, Pair{"parts", "front nine,back nine"}))
 	}
-	return "", problem.WithHint("It has: %s.", strings.Join(names, ", "))
+	return 0, problem.WithHint("It has: %s.", strings.Join(names, ", "))
 }
 
 // workOf finds a work and its surface by the work's id.
@@ -270,8 +271,8 @@ func givesNitrogen(entry planner.Entry, surface planner.Surface, plan planner.Pl
 // passLines say what was done where, at what rate and how much of it.
 func passLines(surface planner.Surface, work planner.Work, entry planner.Entry, pass planner.Pass) []string {
 	title := surface.Name + " " + work.Name
-	if pass.Part != "" {
-		title += " (" + pass.Part + ")"
+	if part := surface.PartName(pass.Part); part != "" {
+		title += " (" + part + ")"
 	}
 	when := entry.Day.Short()
 	if entry.Clock != "" {

@@ -96,8 +96,8 @@ func (v visit) entryLines(entry planner.Entry, titles map[planner.WorkID]string)
 		if !ok {
 			continue
 		}
-		if pass.Part != "" {
-			title += " (" + pass.Part + ")"
+		if _, surface, ok := v.workOf(pass.Work); ok && pass.Part != 0 {
+			title += " (" + surface.PartName(pass.Part) + ")"
 		}
 		if rate := pass.Rate.Words(); rate != "" {
 			title += ", " + rate
@@ -126,7 +126,7 @@ func (v visit) entryLines(entry planner.Entry, titles map[planner.WorkID]string)
 
 func (d Desk) logUndo() Command {
 	return Command{
-		Path: "log undo", Short: "take an entry back: your newest, or the one with the number",
+		Path: "log undo", Shared: true, Short: "take an entry back: your newest, or the one with the number",
 		Long:     "Crew take their own entries back; a lead anyone's.",
 		Options:  []Option{{Name: "entry", Kind: Whole, Range: AtLeast(1), Help: "the entry's number; your newest when not given", Example: "12"}, d.siteOption()},
 		Examples: []string{"/log undo", "/log undo entry:12"},
@@ -199,7 +199,7 @@ func sumText(sum planner.IntervalSum, value float64, units planner.Units) string
 
 func (d Desk) logAmend() Command {
 	return Command{
-		Path: "log amend", Short: "correct an entry: day, rate, part, result, note",
+		Path: "log amend", Shared: true, Short: "correct an entry: day, rate, part, result, note",
 		Long: "Crew amend their own entries; a lead anyone's. What it was before stays in the change log.",
 		Options: append([]Option{
 			{Name: "entry", Kind: Whole, Required: true, Range: AtLeast(1), Help: "the entry's number, as /log list shows it", Example: "12"},

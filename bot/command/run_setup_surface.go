@@ -105,10 +105,11 @@ func (v visit) areaAndParts(surface *planner.Surface) error {
 	if !given {
 		return nil
 	}
-	surface.Parts = nil
 	if planner.NameKey(text) == "none" {
+		*surface = surface.WithParts(nil)
 		return nil
 	}
+	var parts []planner.Part
 	names := splitNames(text)
 	shared := 0
 	for _, name := range names {
@@ -119,11 +120,12 @@ func (v visit) areaAndParts(surface *planner.Surface) error {
 				shared++
 			}
 		}
-		surface.Parts = append(surface.Parts, part)
+		parts = append(parts, part)
 	}
 	if shared > 0 && shared < len(names) {
 		return v.Invalid("parts", "some parts have a share and some have none")
 	}
+	*surface = surface.WithParts(parts)
 	return nil
 }
 
@@ -148,7 +150,7 @@ func areaText(surface planner.Surface) string {
 	if surface.AreaM2 > 0 {
 		text += fmt.Sprintf(", %s m²", briefing.Plain(surface.AreaM2))
 	}
-	for _, part := range surface.Parts {
+	for _, part := range surface.ActiveParts() {
 		text += fmt.Sprintf(", %s (%s %%)", part.Name, briefing.Plain(100*part.Share))
 	}
 	return text

@@ -12,6 +12,8 @@ type Desk struct {
 	Book *planner.Book
 	// Data exports and erases; nil where that is not offered.
 	Data planner.DataKeeper
+	// Posts tells what became of posts; nil where nothing is posted.
+	Posts planner.PostLedger
 	// Version is what /help says the program is.
 	Version string
 }

@@ -11,8 +11,8 @@ import (
 type surfaces struct{}
 
 var surfaceParts = list[planner.Part]{
-	table: "surface_part", parent: "surface", columns: "name, share",
-	fields: func(p *planner.Part) []any { return []any{&p.Name, &p.Share} },
+	table: "surface_part", parent: "surface", columns: "part, name, share, dropped",
+	fields: func(p *planner.Part) []any { return []any{&p.ID, &p.Name, &p.Share, &p.Dropped} },
 }
 
 func (surfaces) list(ctx context.Context, on session, team int64, where string, args ...any) ([]planner.Surface, error) {

@@ -72,7 +72,7 @@ func testSetup(t *testing.T, newTeam func(string) Store) {
 	want(t, "the saved closed days", save(t, store, second.closed), second.closed)
 	entry := newEntry(second.site.ID, lateJune, mow.ID, second.work.ID)
 	entry.Result, entry.Clock, entry.Watered = planner.Doubtful, "06:10", lateJune+1
-	entry.Passes[1] = planner.Pass{Work: second.work.ID, NitrogenGM2: 2.94, Part: "north half", SlowShare: 0.4, SlowWeeks: 8.5,
+	entry.Passes[1] = planner.Pass{Work: second.work.ID, NitrogenGM2: 2.94, Part: 1, SlowShare: 0.4, SlowWeeks: 8.5,
 		Rate: planner.Rate{Kind: planner.MassRate, Value: 14, NPercent: 21}}
 	entry = save(t, store, entry)
 	want(t, "the log", log(t, store, second.site.ID), []planner.Entry{entry})
@@ -104,7 +104,7 @@ func withEveryField(g ground) ground {
 	g.site.Rules = g.site.Rules.With(lateJune, planner.DayRule{OffsetSeconds: 36000, Boundary: planner.FixedHour, ClosingHour: 9, FirstSlot: 1})
 	g.station.Name, g.station.Rank = "by the pond", 7
 	g.surface.Name, g.surface.AreaM2 = "Pitch 2", 7140.5
-	g.surface.Parts = []planner.Part{{Name: "north half", Share: 0.625}, {Name: "south half", Share: 0.375}}
+	g.surface.Parts = []planner.Part{{ID: 1, Name: "north half", Share: 0.625}, {ID: 2, Name: "south half", Share: 0.375}, {ID: 3, Name: "nursery", Share: 0.5, Dropped: true}}
 	g.surface.Turf = g.surface.Turf.With(lateJune, planner.Turf{Grass: "own",
 		Curve: calc.GrowthCurve{OptimumC: 25.1, WidthC: 6.3, HeldAbove: true}, CeilingGM2: 4.7, BudgetGM2: 17.3})
 	g.work.Name = "feed"

@@ -10,9 +10,12 @@ CREATE TABLE surface_part (
     team    INTEGER NOT NULL,
     surface INTEGER NOT NULL,
     place   INTEGER NOT NULL,
+    part    INTEGER NOT NULL,
     name    TEXT    NOT NULL,
     share   REAL    NOT NULL,
+    dropped INTEGER NOT NULL CHECK (dropped IN (0, 1)),
     PRIMARY KEY (team, surface, place),
+    UNIQUE (team, surface, part),
     FOREIGN KEY (team, surface) REFERENCES surface (team, id)
 ) STRICT, WITHOUT ROWID;
 
@@ -49,7 +52,7 @@ ALTER TABLE entry ADD COLUMN watered INTEGER NOT NULL DEFAULT 0;
 ALTER TABLE entry_pass ADD COLUMN rate_kind TEXT NOT NULL DEFAULT '';
 ALTER TABLE entry_pass ADD COLUMN rate_value REAL NOT NULL DEFAULT 0;
 ALTER TABLE entry_pass ADD COLUMN n_percent REAL NOT NULL DEFAULT 0;
-ALTER TABLE entry_pass ADD COLUMN part TEXT NOT NULL DEFAULT '';
+ALTER TABLE entry_pass ADD COLUMN part INTEGER NOT NULL DEFAULT 0;
 ALTER TABLE entry_pass ADD COLUMN slow_share REAL NOT NULL DEFAULT 0;
 ALTER TABLE entry_pass ADD COLUMN slow_weeks REAL NOT NULL DEFAULT 0;
 
