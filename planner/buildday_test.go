@@ -421,7 +421,7 @@ func slowDay(w planner.Window, readings []planner.Reading) planner.DayFacts {
 	if facts.HasExtremes {
 		facts.ExtremesFrom = planner.FromHourly
 	}
-	if open {
+	if open || n == 0 {
 		return facts
 	}
 	facts.HoursC, facts.HasHourly = hours, true
@@ -518,6 +518,7 @@ func FuzzBuildDay(f *testing.F) {
 	f.Add(ordinary, uint8(0), uint8(0), false)
 	f.Add(ordinary[:40], uint8(1), uint8(1), true)
 	f.Add([]byte{}, uint8(2), uint8(0), false)
+	f.Add([]byte{}, uint8(5), uint8(0), false) // a date that the clocks left out
 	f.Add([]byte{0, 200, 0, 5, 30, 7}, uint8(3), uint8(1), true)
 	f.Fuzz(func(t *testing.T, data []byte, length, firstSlot uint8, hasOwn bool) {
 		w := windowOf([]float64{24, 23, 25, 23.5, 24.5, 0}[length%6], int(firstSlot%2))

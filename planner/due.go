@@ -65,8 +65,10 @@ type DueFacts struct {
 	// Held is the first day that the least days between two passes allow, when
 	// it is later than the middle date; else unknown.
 	Held Passage
-	// last is the sum's last day, to see whether the work turned overdue on it.
-	last float64
+	// filled is the total through yesterday with missing days taken from the
+	// path, and last its last day: a work whose station is dead is overdue all
+	// the same.
+	filled, last float64
 }
 
 // Date is the date that is told: the middle one, or the later day to which the
@@ -175,7 +177,7 @@ func (p Plan) flagDate(state *WorkState) {
 		yesterday := p
 		yesterday.AsOf--
 		before := facts
-		before.Total.Total -= facts.last
+		before.filled -= facts.last
 		state.AskForgotten = !yesterday.overdue(*state, before)
 	}
 }
@@ -217,8 +219,9 @@ func (c counter) due(since Day, target float64) DueFacts {
 		Basis: c.basis, Since: since, Total: past.sum, Target: target,
 		Path: c.passage(outlook.Path, past, target), SpreadKnown: outlook.SpreadKnown(),
 	}
-	if n := len(past.units); n > 0 {
-		facts.last = past.units[n-1]
+	for day := since; day < c.plan.AsOf; day++ {
+		facts.last = c.along(outlook.Path, past, day)
+		facts.filled += facts.last
 	}
 	dates := make([]Passage, len(outlook.Members))
 	for i, member := range outlook.Members {
@@ -275,7 +278,7 @@ func (p Plan) status(state WorkState) Status {
 // is past the work's latest, and at least a day has gone by since the date.
 func (p Plan) overdue(state WorkState, facts DueFacts) bool {
 	date := facts.Date()
-	return date.Known && p.AsOf-date.Day > 1 && facts.Total.Total > state.latest(facts.Target)
+	return date.Known && p.AsOf-date.Day > 1 && facts.filled > state.latest(facts.Target)
 }
 
 // latestShare is how far past its target a work may run before it is overdue

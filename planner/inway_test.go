@@ -2,6 +2,7 @@ package planner_test
 
 import (
 	"fmt"
+	"math"
 	"testing"
 
 	"pgregory.net/rapid"
@@ -320,5 +321,85 @@ func TestWithParts(t *testing.T) {
 	surface.Parts[0].Share = 0.5
 	if surface.Check() == nil {
 		t.Error("shares that make 1.1 were taken")
+	}
+}
+
+// A work whose station has been dead for weeks is overdue all the same: the
+// missing days are taken from the path.
+func TestOverdueWithoutReadings(t *testing.T) {
+	settings := planner.WorkSettings{Counting: planner.Counting{Counts: planner.ByDegreeDays, Method: calc.MethodMean}, Target: 100}
+	plan := simple(settings, june(25), doneOn(june(10)))
+	plan.Record = plan.Record.Before(june(12)) // 20 °C a day until then
+	plan.Outlook = outlook.Simple{}.Outlook(plan.Record, nil, plan.AsOf)
+	state := stateOf(t, plan)
+	facts, _ := state.OwnFacts()
+	if state.Status != planner.Overdue || facts.Date().Day != june(15) || facts.Total.Total != 20 || facts.Total.Missing != 13 {
+		t.Errorf("%s, date %v, total %v with %d missing", state.Status, facts.Date(), facts.Total.Total, facts.Total.Missing)
+	}
+}
+
+func TestEntryAndSettingsRefuse(t *testing.T) {
+	entry := doneOn(june(1))
+	for name, change := range map[string]func(*planner.Entry){
+		"the same work twice":       func(e *planner.Entry) { e.Passes = append(e.Passes, e.Passes[0]) },
+		"no result":                 func(e *planner.Entry) { e.Result = "fine" },
+		"watered in before":         func(e *planner.Entry) { e.Watered = june(1) - 1 },
+		"watered in much later":     func(e *planner.Entry) { e.Watered = june(1) + 40 },
+		"slow without weeks":        func(e *planner.Entry) { e.Passes[0].SlowShare = 0.5 },
+		"slow share above 1":        func(e *planner.Entry) { e.Passes[0].SlowShare, e.Passes[0].SlowWeeks = 1.5, 4 },
+		"a rate of no kind":         func(e *planner.Entry) { e.Passes[0].Rate = planner.Rate{Kind: "bags", Value: 1} },
+		"nitrogen that is product":  func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = 14 },
+		"a work that is not named":  func(e *planner.Entry) { e.Passes[0].Work = 0 },
+		"a rate that is no number":  func(e *planner.Entry) { e.Passes[0].Rate = planner.Rate{Kind: planner.MassRate, Value: math.NaN()} },
+		"nitrogen that is infinite": func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = math.Inf(1) },
+	} {
+		bad := entry
+		bad.Passes = append([]planner.Pass(nil), entry.Passes...)
+		change(&bad)
+		if planner.KindOf(bad.Check()) != planner.Invalid || bad.Check() == nil {
+			t.Errorf("%s: %v", name, bad.Check())
+		}
+	}
+	if err := entry.Check(); err != nil {
+		t.Error(err)
+	}
+	for name, settings := range map[string]planner.WorkSettings{
+		"latest with nitrogen": {Counting: planner.Counting{Counts: planner.ByNitrogen}, Target: 0.2, Latest: 1},
+		"a negative gap":       {Counting: planner.Counting{Counts: planner.ByDays}, Target: 3, Limits: planner.Limits{LeastDays: -1}},
+		"endless rain-free":    {Counting: planner.Counting{Counts: planner.ByDays}, Target: 3, RainFreeHours: math.Inf(1)},
+	} {
+		work := planner.Work{Surface: 1, Name: "x", Settings: planner.Always(settings)}
+		if work.Check() == nil {
+			t.Errorf("%s was taken", name)
+		}
+	}
+}
+
+// What a what-if can change of limits and closed days.
+func TestLimitAndClosedEdits(t *testing.T) {
+	settings := byDays(7)
+	settings.Limits.LeastDays = 14
+	plan := simple(settings, june(10), doneOn(june(5)))
+	plan.Closed = []planner.Closed{{ID: 1, Site: 1, Name: "match", From: june(12), To: june(12)}}
+	changed, refusals := planner.Apply(plan, planner.SetLimits{Work: 1, Name: "greens regulator", Limits: planner.Limits{LeastDays: 3}})
+	state := stateOf(t, changed)
+	if facts, _ := state.OwnFacts(); len(refusals) > 0 || facts.Date().Day != june(12) || state.Closed == nil {
+		t.Errorf("%v: %v, closed %v", refusals, facts.Date(), state.Closed)
+	}
+	changed, _ = planner.Apply(changed, planner.OpenAll{})
+	if state := stateOf(t, changed); state.Closed != nil || len(plan.Closed) != 1 {
+		t.Error("still closed, or the plan given was changed")
+	}
+	for sentence, edit := range map[string]planner.Edit{
+		"greens regulator with at least 3 days between": planner.SetLimits{Name: "greens regulator", Limits: planner.Limits{LeastDays: 3}},
+		"no day closed":                planner.OpenAll{},
+		"tank mix logged on Thu 1 Jun": planner.LogEntry{Name: "tank mix", Entry: doneOn(june(1))},
+	} {
+		if got := edit.Sentence(planner.Celsius); got != sentence {
+			t.Errorf("%q, want %q", got, sentence)
+		}
+	}
+	if _, refusals := planner.Apply(plan, planner.SetLimits{Work: 9}); len(refusals) != 1 {
+		t.Error("limits of a work that is not there")
 	}
 }

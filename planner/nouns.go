@@ -1,10 +1,6 @@
 package planner
 
 import (
-	"errors"
-	"fmt"
-	"regexp"
-	"strings"
 	"time"
 
 	"swardbook/calc"
@@ -169,8 +165,9 @@ type WorkSettings struct {
 	// Basis is the work's own mean; empty until the first weather file says
 	// whether the site has hourly readings.
 	Basis Basis `json:"basis,omitempty"`
-	// Latest is the total past which the work is overdue; 0 asks for the
-	// default, a tenth over the target and at least a day.
+	// Latest is the total past which the work is overdue, once a day has gone by
+	// since it fell due; 0 asks for the default, a tenth over the target. A work
+	// that counts by nitrogen has the default.
 	Latest float64    `json:"latest,omitempty"`
 	Limits Limits     `json:"limits,omitzero"`
 	Season WorkSeason `json:"season,omitzero"`
@@ -302,24 +299,6 @@ func (t Total) Key() int64 { return int64(t.ID) }
 // Key returns the entry's id.
 func (e Entry) Key() int64 { return int64(e.ID) }
 
-var namePattern = regexp.MustCompile(`^[\p{L}\p{N}](?:[\p{L}\p{N} -]{0,30}[\p{L}\p{N}])?$`)
-
-// CheckName refuses a name that is not 1 to 32 letters, digits, spaces and
-// hyphens, beginning and ending with a letter or digit.
-func CheckName(name string) error {
-	if !namePattern.MatchString(name) || strings.Contains(name, "  ") {
-		return Problemf(Invalid, "the name %q cannot be used", name).
-			WithHint("A name is 1 to 32 letters, digits, single spaces and hyphens.")
-	}
-	return nil
-}
-
-// NameKey is the form in which names are compared and stand in figure keys:
-// lower case, spaces as hyphens.
-func NameKey(name string) string {
-	return strings.ReplaceAll(strings.ToLower(strings.TrimSpace(name)), " ", "-")
-}
-
 // Check refuses a site without a usable name, place, zone, units or day rule.
 func (s Site) Check() error {
 	if err := CheckName(s.Name); err != nil {
@@ -405,6 +384,9 @@ func (s WorkSettings) check() error {
 	} else if !(s.Target > 0 && s.Target <= maxTarget) {
 		return Problemf(Invalid, "a target of %g cannot be used", s.Target).WithHint("Give a number above 0, like target:200.")
 	}
+	if s.Latest != 0 && s.Counts == ByNitrogen {
+		return Problemf(Invalid, "latest does not go with nitrogen").WithHint("A feed is overdue a tenth past what was there.")
+	}
 	if s.Latest != 0 && !(s.Latest >= s.Target && s.Latest <= maxTarget) {
 		return Problemf(Invalid, "latest %g is before the target %g", s.Latest, s.Target).
 			WithHint("Latest is the total past which the work is overdue.")
@@ -481,78 +463,33 @@ func (e Entry) Check() error {
 	if e.Watered != 0 && (e.Watered < e.Day || e.Watered > e.Day+31) {
 		return Problemf(Invalid, "watered in on %s does not go with %s", e.Watered, e.Day).WithHint("Watering in comes on the day or in the month after.")
 	}
+	seen := map[WorkID]bool{}
 	for _, pass := range e.Passes {
-		if pass.Work == 0 {
-			return Problemf(Invalid, "the entry names no work")
+		if seen[pass.Work] {
+			return Problemf(Invalid, "the entry names the same work twice").WithHint("Log a second pass as an entry of its own.")
 		}
-		if err := pass.Rate.Check(); err != nil {
+		seen[pass.Work] = true
+		if err := pass.check(); err != nil {
 			return err
-		}
-		if !(pass.SlowShare >= 0 && pass.SlowShare <= 1 && pass.SlowWeeks >= 0 && pass.SlowWeeks <= 52) || pass.SlowShare > 0 && pass.SlowWeeks == 0 {
-			return Problemf(Invalid, "a slow share of %g over %g weeks cannot be used", pass.SlowShare, pass.SlowWeeks).
-				WithHint("Give its percent and its weeks, like slow:40 weeks:8.")
-		}
-		if !(pass.NitrogenGM2 >= 0 && pass.NitrogenGM2 <= maxPassGM2) {
-			return Problemf(Invalid, "%g g N/m² in one pass: nitrogen or product?", pass.NitrogenGM2).
-				WithHint("The rate is nitrogen, 0 to 5 g N/m²: amount of product times its N share (14 g/m² at 21 %% is 2.9).")
 		}
 	}
 	return nil
 }
 
-// Kind of a Problem: what went wrong, for machines.
-type Kind string
-
-// The kinds of problems.
-const (
-	Invalid   Kind = "invalid"   // what was typed or read cannot be used
-	Missing   Kind = "missing"   // something needed was not given
-	NotFound  Kind = "not-found" // no such site, surface, work …
-	Taken     Kind = "taken"     // the name is in use
-	Forbidden Kind = "forbidden" // the caller's role may not
-	Refused   Kind = "refused"   // a file or an edit was refused whole
-	Busy      Kind = "busy"      // somebody else holds the store; try again
-	Internal  Kind = "internal"  // our own mistake
-)
-
-// Problem is an error that a person can act on.
-type Problem struct {
-	Kind    Kind
-	Message string // what is wrong, and where
-	Hint    string // what to do, with an example that works
-	Cause   error  // for the log
-}
-
-// Problemf makes a problem of the kind.
-func Problemf(kind Kind, format string, args ...any) *Problem {
-	return &Problem{Kind: kind, Message: fmt.Sprintf(format, args...)}
-}
-
-// WithHint returns the problem with what to do about it.
-func (p *Problem) WithHint(format string, args ...any) *Problem {
-	out := *p
-	out.Hint = fmt.Sprintf(format, args...)
-	return &out
-}
-
-// WithCause returns the problem with the error beneath it.
-func (p *Problem) WithCause(cause error) *Problem {
-	out := *p
-	out.Cause = cause
-	return &out
-}
-
-// Error is the message; the hint is shown beside it, not in it.
-func (p *Problem) Error() string { return p.Message }
-
-// Unwrap returns the cause.
-func (p *Problem) Unwrap() error { return p.Cause }
-
-// KindOf returns the kind of the error: a Problem's own, else Internal.
-func KindOf(err error) Kind {
-	var problem *Problem
-	if errors.As(err, &problem) {
-		return problem.Kind
+func (p Pass) check() error {
+	if p.Work == 0 {
+		return Problemf(Invalid, "the entry names no work")
 	}
-	return Internal
+	if err := p.Rate.Check(); err != nil {
+		return err
+	}
+	if !(p.SlowShare >= 0 && p.SlowShare <= 1 && p.SlowWeeks >= 0 && p.SlowWeeks <= 52) || p.SlowShare > 0 && p.SlowWeeks == 0 {
+		return Problemf(Invalid, "a slow share of %g over %g weeks cannot be used", p.SlowShare, p.SlowWeeks).
+			WithHint("Give its percent and its weeks, like slow:40 weeks:8.")
+	}
+	if !(p.NitrogenGM2 >= 0 && p.NitrogenGM2 <= maxPassGM2) {
+		return Problemf(Invalid, "%g g N/m² in one pass: nitrogen or product?", p.NitrogenGM2).
+			WithHint("The rate is nitrogen, 0 to 5 g N/m²: amount of product times its N share (14 g/m² at 21 %% is 2.9).")
+	}
+	return nil
 }

@@ -74,18 +74,3 @@ func (p Plan) WorksOn(id SurfaceID) []Work {
 	}
 	return works
 }
-
-// LastDone returns the newest entry of the work.
-func (p Plan) LastDone(id WorkID) (Entry, bool) {
-	for i := len(p.Log) - 1; i >= 0; i-- {
-		if _, ok := p.Log[i].Of(id); ok {
-			return p.Log[i], true
-		}
-	}
-	return Entry{}, false
-}
-
-// turfOf returns what grows on the surface on each day. Settings that hold on
-// the plan's morning count: a plan of a past morning is computed with what was
-// set up then.
-func turfOf(surface Surface) func(Day) Turf { return surface.Turf.On }

@@ -40,12 +40,21 @@ func open(ctx context.Context, path, team string) (*house, error) {
 	if err != nil {
 		return nil, err
 	}
-	kept, err := db.Team(ctx, platform, team)
+	on := platform
+	if server, ok := strings.CutPrefix(team, "chat:"); ok {
+		on, team = chatPlatform, server
+	}
+	kept, err := db.Team(ctx, on, team)
 	if err != nil {
 		return nil, errors.Join(err, db.Close())
 	}
+	return &house{db, deskOf(kept)}, nil
+}
+
+// deskOf is the desk that answers commands from what is kept of a team.
+func deskOf(kept *sqlite.Team) command.Desk {
 	book := planner.NewBook(kept, kept, storage.NewImporter(kept), outlook.Simple{})
-	return &house{db, command.Desk{Book: book, Version: version()}}, nil
+	return command.Desk{Book: book, Data: kept, Posts: kept, Version: version()}
 }
 
 func (h *house) close() error { return h.db.Close() }
@@ -66,7 +75,7 @@ func (p *place) addTo(cmd *cobra.Command, env func(string) string) {
 		team = "home"
 	}
 	cmd.Flags().StringVar(&p.db, "db", env("SWARDBOOK_DB"), "database file, made when it is not there (SWARDBOOK_DB)")
-	cmd.Flags().StringVar(&p.team, "team", team, "team whose book it is (SWARDBOOK_TEAM)")
+	cmd.Flags().StringVar(&p.team, "team", team, "team whose book it is; chat:NUMBER for that of a chat server (SWARDBOOK_TEAM)")
 }
 
 // clock is the time a session goes by: the machine's, or a fixed one by the
