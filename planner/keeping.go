@@ -78,6 +78,17 @@ type Importer interface {
 	// be used (header not understood, nothing in it, more than 5 % of its rows
 	// refused) is a Refused problem and leaves the record as it was.
 	Import(ctx context.Context, request ImportRequest) (ImportReport, error)
+	// Imports returns the newest imports into the site's stations, newest first,
+	// at most limit, withdrawn ones too.
+	Imports(ctx context.Context, site SiteID, limit int) ([]Import, error)
+	// Withdraw takes an import back: its values leave the record, the values
+	// that they replaced come back, and values that a later import gave too
+	// stay. With dry nothing is changed and the report says what would be. An
+	// import that is not there, or is withdrawn, is a NotFound problem.
+	Withdraw(ctx context.Context, stamp Stamp, id ImportID, dry bool) (Withdrawal, error)
+	// Export writes all readings and daily readings of a station as a file that
+	// Import reads back to the same record.
+	Export(ctx context.Context, station StationID, to io.Writer) error
 }
 
 // HandDay is one day ahead typed by hand.
@@ -132,7 +143,11 @@ type ImportRequest struct {
 	Station  StationID
 	FileName string    // as the user named it; kept, never used as a path
 	Content  io.Reader // read once, to its end
-	Units    Units     // "" lets the header say, °C when it does not
+	Units    Units     // "" lets the header and the values say
+	// What may have to be said of a file; all may be empty. See /help on files.
+	Clock  string // of times without an offset: standard, wall, utc or an offset like -05:00
+	Dates  string // d/m/y, m/d/y or y/m/d; the month of the first report, 2021-07
+	Sensor string // which of several in the file counts
 	// Progress, when not nil, is called now and then with the rows read so far.
 	Progress func(rows int)
 }
@@ -152,6 +167,10 @@ type ImportReport struct {
 	// the rest, in line order.
 	Refusals []Refusal
 	From, To Day // first and last day of the readings taken; meaningless when none was
+	Import   ImportID
+	Notes    []string // in sentences: what else was found, left out or taken for granted
+	// Remembered is what is remembered for the station's next file: "sensor:roof".
+	Remembered []string
 }
 
 // Taken is the number of rows that are in the record after the import.

@@ -104,7 +104,12 @@ type Actions []Action
 
 // Action is a labelled command line: a button in a chat, a line to type in a
 // terminal.
-type Action struct{ Label, Line string }
+type Action struct {
+	Label, Line string
+	// Ask names options, with commas between, that are asked for before the
+	// line is run, where questions can be asked.
+	Ask string
+}
 
 func (Heading) block() {}
 func (Text) block()    {}

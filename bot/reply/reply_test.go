@@ -63,7 +63,7 @@ func TestCheck(t *testing.T) {
 	}
 	actions := func(n int) (out Actions) {
 		for range n {
-			out = append(out, Action{"a", "/b"})
+			out = append(out, Action{Label: "a", Line: "/b"})
 		}
 		return out
 	}
@@ -90,9 +90,9 @@ func TestCheck(t *testing.T) {
 		{"field value", Of(Fields{{"a", x(1024)}}), Of(Fields{{"a", x(1025)}}), "field value has 1025"},
 		{"empty field", Of(Fields{}), Of(Fields{{"a", ""}}), "has no name or no value"},
 		{"actions", Of(actions(25)), Of(actions(26)), "26 actions"},
-		{"label", Of(Actions{{x(80), "/a"}}), Of(Actions{{x(81), "/a"}}), "action label has 81"},
-		{"line", Of(Actions{{"a", x(4000)}}), Of(Actions{{"a", x(4001)}}), "action line has 4001"},
-		{"empty action", Of(Actions{}), Of(Actions{{"a", ""}}), "has no label or no line"},
+		{"label", Of(Actions{{Label: x(80), Line: "/a"}}), Of(Actions{{Label: x(81), Line: "/a"}}), "action label has 81"},
+		{"line", Of(Actions{{Label: "a", Line: x(4000)}}), Of(Actions{{Label: "a", Line: x(4001)}}), "action line has 4001"},
+		{"empty action", Of(Actions{}), Of(Actions{{Label: "a"}}), "has no label or no line"},
 		{"files", Of(blocks(10, file)...), Of(append(blocks(10, file), Picture{Name: "a.png"})...), "11 files, at most 10"},
 		{"file name", Of(File{Name: strings.Repeat("a", 100)}), Of(File{Name: strings.Repeat("a", 101)}), "file name"},
 		{"path as name", Of(file), Of(File{Name: "../week.xlsx"}), "file name"},

@@ -9,6 +9,7 @@ import (
 	"math"
 
 	"swardbook/bot/reply"
+	"swardbook/bot/reply/plain"
 	"swardbook/planner"
 )
 
@@ -47,7 +48,7 @@ func JSON(w io.Writer, result Result) error {
 	}{
 		Command: result.Line,
 		OK:      result.Err == nil,
-		Text:    render(result.Reply, result.Width),
+		Text:    plain.Text(result.Reply, result.Width),
 		Tables:  tablesOf(result.Reply),
 		Figures: figures(result.Reply.Figures),
 		Files:   append([]Saved{}, result.Files...),

@@ -4,8 +4,11 @@ import (
 	"bytes"
 	"encoding/json"
 	"errors"
+	"flag"
 	"fmt"
 	"math"
+	"os"
+	"path/filepath"
 	"slices"
 	"strings"
 	"testing"
@@ -14,9 +17,25 @@ import (
 	"swardbook/planner"
 )
 
+// question is a reply that asks before it acts.
+var question = reply.Reply{
+	Blocks:  []reply.Block{reply.Text("Greens regulator today, Thu 20 Jun."), reply.Actions{{Label: "Undo", Line: "/log undo entry:7"}}},
+	Confirm: &reply.Confirm{Question: "Log this?", Line: "/done surfaces:greens works:regulator when:2013-06-20", Code: "AB2C"},
+}
+
+func sampleTable() reply.Table {
+	return reply.Table{
+		Title:   "Degree days",
+		Columns: []reply.Column{reply.Left("day"), reply.Right("mean")},
+		Rows:    [][]string{{"Tue 18", "19.5 °C"}, {"Wed 19", "9 °C"}},
+	}
+}
+
+var update = flag.Bool("update", false, "write the golden file anew")
+
 func TestJSON(t *testing.T) {
 	day := planner.DayOf(2013, 6, 24)
-	good := reply.Of(reply.Text("Due <Mon 24 Jun> & \"sure\"."), samples()["table"].Blocks[0], reply.File{Name: "week.xlsx"})
+	good := reply.Of(reply.Text("Due <Mon 24 Jun> & \"sure\"."), sampleTable(), reply.File{Name: "week.xlsx"})
 	good.Figures = planner.Figures{
 		{Key: "due.greens.regulator.hourly.total", Value: 188.12345678901234, Unit: planner.DegreeDays},
 		{Key: "due.greens.regulator.date", Value: float64(day), Unit: planner.Date},
@@ -30,7 +49,7 @@ func TestJSON(t *testing.T) {
 	var out bytes.Buffer
 	for _, result := range []Result{
 		{Line: `/due surface:"front nine"`, Reply: good, Files: []Saved{{Name: "week.xlsx", Path: "out/week.xlsx"}}},
-		{Line: "/due", Reply: samples()["confirm"]},
+		{Line: "/due", Reply: question},
 		{Line: "/help"},
 		{Line: "/due x", Err: planner.Problemf(planner.NotFound, "no surface %q", "x").WithHint("there is greens")},
 		{Line: "/due", Err: fmt.Errorf("sql: %w", errors.New("0x7f"))},
@@ -39,7 +58,19 @@ func TestJSON(t *testing.T) {
 			t.Fatal(err)
 		}
 	}
-	golden(t, "results.jsonl", out.String())
+	path := filepath.Join("testdata", "results.jsonl")
+	if *update {
+		if err := os.WriteFile(path, out.Bytes(), 0o644); err != nil {
+			t.Fatal(err)
+		}
+	}
+	want, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !bytes.Equal(out.Bytes(), want) {
+		t.Errorf("%s: got\n%s\nwant\n%s", path, out.Bytes(), want)
+	}
 	for _, line := range strings.Split(strings.TrimSpace(out.String()), "\n") {
 		if got, want := keysInOrder(t, line), []string{"command", "ok", "text", "tables", "figures", "files", "error"}; !slices.Equal(got, want) {
 			t.Errorf("keys %v, want %v", got, want)
@@ -110,7 +141,8 @@ func TestWriteErrorsAreTold(t *testing.T) {
 	if err := JSON(brokenPipe{}, Result{}); err == nil {
 		t.Error("JSON to a broken pipe gives no error")
 	}
-	if err := Render(brokenPipe{}, reply.Of(reply.Text("a")), 0); err == nil {
+	session := Session{Out: brokenPipe{}}
+	if err := session.show(Result{Reply: reply.Of(reply.Text("a"))}); err == nil {
 		t.Error("text to a broken pipe gives no error")
 	}
 }

@@ -1,3 +1,9 @@
+// Package terminal shows the commands and replies of the chat in a terminal:
+// as text for a narrow screen, as JSON for programs, one line at a time or
+// from a script.
+//
+// It must not know what any command does, and computes no figure: it shows
+// what stands in a reply.
 package terminal
 
 import (
@@ -13,6 +19,7 @@ import (
 
 	"swardbook/bot/command"
 	"swardbook/bot/reply"
+	"swardbook/bot/reply/plain"
 	"swardbook/planner"
 )
 
@@ -26,7 +33,7 @@ type Session struct {
 	Err io.Writer // errors, as text
 	// Dir is where files of replies are saved; empty is the working folder.
 	Dir   string
-	Width int  // columns of text; 0 is DefaultWidth
+	Width int  // columns of text; 0 is plain.DefaultWidth
 	JSON  bool // one JSON object a command, errors too, on Out
 	// Confirm asks before a command acts: the reply then ends in the line that
 	// says yes. Without it commands act at once, as a script needs.
@@ -60,12 +67,12 @@ func (s *Session) show(result Result) error {
 	if s.JSON {
 		return JSON(s.Out, result)
 	}
-	if err := Render(s.Out, result.Reply, s.Width); err != nil || result.Err == nil {
+	if _, err := io.WriteString(s.Out, plain.Text(result.Reply, s.Width)); err != nil || result.Err == nil {
 		return err
 	}
 	message, hint := reply.Wrong(result.Err)
-	told := reply.Of(reply.Text(message + "\n" + hint))
-	return Render(s.Err, told, s.Width)
+	_, err := io.WriteString(s.Err, plain.Text(reply.Of(reply.Text(message+"\n"+hint)), s.Width))
+	return err
 }
 
 // openFile opens a file by its path, for File options.

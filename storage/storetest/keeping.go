@@ -109,7 +109,7 @@ func withEveryField(g ground) ground {
 		Curve: calc.GrowthCurve{OptimumC: 25.1, WidthC: 6.3, HeldAbove: true}, CeilingGM2: 4.7, BudgetGM2: 17.3})
 	g.work.Name = "feed"
 	g.work.Settings = g.work.Settings.With(lateJune, planner.WorkSettings{
-		Counting: planner.Counting{Counts: planner.ByNitrogen}, Target: 0.1, Basis: planner.Midrange, Latest: 0.3,
+		Counting: planner.Counting{Counts: planner.ByNitrogen}, Target: 0.1, Basis: planner.Midrange,
 		Limits:    planner.Limits{LeastDays: 14, MostTimes: 6, MostTotal: 18.5},
 		Season:    planner.WorkSeason{From: planner.MonthDay{Month: time.April, Day: 2}, To: planner.MonthDay{Month: time.October, Day: 31}, Resting: true, StartsEmpty: true},
 		Origin:    planner.Origin{Source: "own trials", Ingredient: "urea", Grass: "bent", HeightMM: 3.2},

@@ -57,7 +57,7 @@ func built(site planner.Site, readings []planner.Reading, daily []planner.DailyR
 		from, _ := slices.BinarySearchFunc(readings, int64(day-4)*86400, func(r planner.Reading, at int64) int { return int(r.At - at) })
 		to, _ := slices.BinarySearchFunc(readings, int64(day+5)*86400, func(r planner.Reading, at int64) int { return int(r.At - at) })
 		one := planner.BuildDay(site.Rules.On(day).Window(zone, day), readings[from:to], own[day])
-		if one.Empty() && one.SlotsReal == 0 {
+		if one.Empty() && one.SlotsReal == 0 && one.SlotsBridged == 0 && one.Doubt == "" {
 			one = planner.DayFacts{Day: day}
 		}
 		facts = append(facts, one)

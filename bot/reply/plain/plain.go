@@ -1,28 +1,20 @@
-// Package terminal shows the commands and replies of the chat in a terminal:
-// as text for a narrow screen, as JSON for programs, one line at a time or
-// from a script.
+// Package plain puts a reply into plain text for a narrow screen: what a
+// terminal prints, and what a chat server shows as a table.
 //
-// It must not know what any command does, and computes no figure: it shows
-// what stands in a reply.
-package terminal
+// It must not know where the text goes.
+package plain
 
 import (
-	"io"
 	"strings"
 
 	"swardbook/bot/reply"
 )
 
-// Render writes a reply as text, no line wider than width columns (0 takes
+// Text is a reply as text, no line wider than width columns (0 takes
 // DefaultWidth; fewer than 12 are taken as 12). Nothing is cut: what is too
 // wide is wrapped, and of a table that is too wide each row becomes its first
 // cell with "column: value" pairs under it.
-func Render(w io.Writer, r reply.Reply, width int) error {
-	_, err := io.WriteString(w, render(r, width))
-	return err
-}
-
-func render(r reply.Reply, width int) string {
+func Text(r reply.Reply, width int) string {
 	if width <= 0 {
 		width = DefaultWidth
 	}

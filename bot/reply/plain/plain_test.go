@@ -1,7 +1,6 @@
-package terminal
+package plain
 
 import (
-	"bytes"
 	"flag"
 	"os"
 	"path/filepath"
@@ -79,13 +78,9 @@ func TestRender(t *testing.T) {
 		if err := sample.Check(); err != nil {
 			t.Errorf("%s: %v", name, err)
 		}
-		var out bytes.Buffer
-		if err := Render(&out, sample, 0); err != nil {
-			t.Fatal(err)
-		}
-		golden(t, name+".txt", out.String())
+		golden(t, name+".txt", Text(sample, 0))
 		for width := leastWidth; width <= 120; width++ {
-			checkLines(t, name, render(sample, width), width)
+			checkLines(t, name, Text(sample, width), width)
 		}
 	}
 }
@@ -102,14 +97,14 @@ func checkLines(t interface{ Errorf(string, ...any) }, name, text string, width 
 }
 
 func TestRenderNothing(t *testing.T) {
-	if got := render(reply.Of(), 34); got != "" {
+	if got := Text(reply.Of(), 34); got != "" {
 		t.Errorf("nothing is rendered as %q", got)
 	}
 	question := reply.Reply{Confirm: &reply.Confirm{Question: "Log this?"}}
-	if got := render(question, 34); got != "Log this?\n" {
+	if got := Text(question, 34); got != "Log this?\n" {
 		t.Errorf("a question to be answered by y or n is rendered as %q", got)
 	}
-	if got, want := render(reply.Of(reply.Text("a b")), 1), render(reply.Of(reply.Text("a b")), leastWidth); got != want {
+	if got, want := Text(reply.Of(reply.Text("a b")), 1), Text(reply.Of(reply.Text("a b")), leastWidth); got != want {
 		t.Errorf("at 1 column %q, want %q", got, want)
 	}
 }
@@ -131,10 +126,10 @@ func TestWrapLosesNothing(t *testing.T) {
 
 func TestTableStandsInColumnsWhenItJustFits(t *testing.T) {
 	table := reply.Of(reply.Table{Columns: []reply.Column{reply.Left("day"), reply.Right("°C")}, Rows: [][]string{{"Monday", "−1.5"}, {"Tue", "12.25"}}})
-	if got, want := render(table, 13), "day        °C\nMonday   −1.5\nTue     12.25\n"; got != want {
+	if got, want := Text(table, 13), "day        °C\nMonday   −1.5\nTue     12.25\n"; got != want {
 		t.Errorf("at 13 columns:\n%swant\n%s", got, want)
 	}
-	if got, want := render(table, 12), "Monday\n  °C: −1.5\nTue\n  °C: 12.25\n"; got != want {
+	if got, want := Text(table, 12), "Monday\n  °C: −1.5\nTue\n  °C: 12.25\n"; got != want {
 		t.Errorf("at 12 columns:\n%swant\n%s", got, want)
 	}
 }
