@@ -43,7 +43,7 @@ func workBlocks(e planner.Evaluation) []reply.Block {
 		urgent = urgent || isUrgent(state.Status)
 	}
 	if urgent {
-		blocks = append(blocks, reply.Text(Caution))
+		blocks = append(blocks, reply.Text(Cautions(e.Works)))
 	}
 	if note := AheadNote(e.Outlook); note != "" {
 		blocks = append(blocks, reply.Text(note))
@@ -53,6 +53,20 @@ func workBlocks(e planner.Evaluation) []reply.Block {
 
 // Caution stands under work that is due: Swardbook plans dates, no more.
 const Caution = "Label, local rules and the state of the turf come first: /help cautions"
+
+// FeedCaution stands under a feed that is due.
+const FeedCaution = "No feed on frozen, saturated, dormant or drought-browned turf, nor before heavy rain."
+
+// Cautions are the cautions that go with the works that are due.
+func Cautions(states []planner.WorkState) string {
+	text := Caution
+	for _, state := range states {
+		if isUrgent(state.Status) && state.Settings.Counts == planner.ByNitrogen {
+			return text + "\n" + FeedCaution
+		}
+	}
+	return text
+}
 
 func isUrgent(status planner.Status) bool {
 	return status == planner.Overdue || status == planner.Due || status == planner.DueToday

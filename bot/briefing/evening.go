@@ -45,7 +45,7 @@ func Evening(t planner.Tomorrow, plan planner.Plan) reply.Reply {
 		r.Add(reply.Text(strings.Join(lines, "\n")))
 	}
 	if len(t.Works) > 0 {
-		r.Add(reply.Text(Caution))
+		r.Add(reply.Text(Cautions(t.Works)))
 	}
 	r.Add(reply.Text(AheadNote(plan.Outlook)))
 	return r

@@ -107,6 +107,12 @@ func DayNote(day planner.DayFacts) string {
 	if day.Doubt != "" {
 		add("Doubtful: %s.", day.Doubt)
 	}
+	switch {
+	case day.Other != "" && day.OtherDays > 0:
+		add("From %s, its mean difference over %d days taken off.", day.Other, day.OtherDays)
+	case day.Other != "":
+		add("From %s, as measured there.", day.Other)
+	}
 	return note
 }
 

@@ -55,12 +55,13 @@ func (t Table) Check() error {
 }
 
 // characters is what a command adds to the characters under its first word. A choice
-// counts twice, as its label and as its value; the words of the path count for
+// counts twice, as its label and as its value; an option's help counts as far
+// as a chat server with little room must show it; the words of the path count for
 // each command, which is more than they will be.
 func characters(command *Command) int {
 	sum := len(command.Path) + utf8.RuneCountInString(command.Short)
 	for _, option := range command.Options {
-		sum += len(option.Name) + utf8.RuneCountInString(option.Help)
+		sum += len(option.Name) + utf8.RuneCountInString(option.HelpWithin(LeastHelp))
 		for _, choice := range option.Choices {
 			sum += 2 * utf8.RuneCountInString(choice)
 		}

@@ -6,6 +6,7 @@ import (
 	"math"
 	"strconv"
 	"strings"
+	"unicode/utf8"
 )
 
 // Kind is what an option takes.
@@ -72,6 +73,33 @@ func (o *Option) example() string {
 		return plain(math.Ceil(max(o.Range.Min, -math.MaxInt32)))
 	}
 	return example
+}
+
+// LeastHelp is the least room, in characters, that whoever shows options gives
+// to the help of one.
+const LeastHelp = 30
+
+// HelpWithin is the option's help in at most so many characters, at least
+// LeastHelp: whole if it fits, else up to the end of a part of it, else up to
+// the end of a word with "…" behind. /help shows the whole.
+func (o *Option) HelpWithin(most int) string {
+	most = max(most, LeastHelp)
+	runes := []rune(o.Help)
+	if len(runes) <= most {
+		return o.Help
+	}
+	const leastPart = 8
+	for _, end := range []string{";", ":", ","} {
+		part, _, found := strings.Cut(o.Help, end)
+		if n := utf8.RuneCountInString(part); found && n >= leastPart && n <= most {
+			return part
+		}
+	}
+	text := string(runes[:most-1])
+	if space := strings.LastIndexByte(text, ' '); space >= leastPart {
+		text = text[:space]
+	}
+	return text + "…"
 }
 
 // Allowed says in words what the option takes.

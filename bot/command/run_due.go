@@ -62,7 +62,7 @@ func (d Desk) runDue(ctx context.Context, req Request) (reply.Reply, error) {
 			}
 		}
 	}
-	r.Add(reply.Text(briefing.AheadNote(evaluation.Outlook)), reply.Text(briefing.Caution))
+	r.Add(reply.Text(briefing.AheadNote(evaluation.Outlook)), reply.Text(briefing.Cautions(states)))
 	return r, nil
 }
 
