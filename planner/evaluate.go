@@ -253,6 +253,7 @@ func (s Sum) Notes() []string {
 	}{
 		{s.Missing, "missing"},
 		{s.StandIn, "on the other mean"},
+		{s.Other, "from another station"},
 		{s.Line, "on a straight line"},
 	} {
 		if part.days > 0 {

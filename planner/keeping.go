@@ -58,7 +58,8 @@ type Keeper interface {
 // Recorder keeps the weather of one team.
 type Recorder interface {
 	// Record returns the whole weather record of the site: that of its first
-	// station by rank. No station or no readings is an empty record.
+	// station by rank, days it lacks from the others (JoinStations). No station
+	// or no readings is an empty record.
 	Record(ctx context.Context, site SiteID) (Record, error)
 	// Revision returns the Revision the record has now, without loading it.
 	Revision(ctx context.Context, site SiteID) (int64, error)

@@ -9,6 +9,7 @@ type Sum struct {
 	StandIn int // days on the other mean, or on high and low instead of readings
 	Line    int // days on a straight line between their neighbours
 	Missing int // days left out: the total is "at least"
+	Other   int // days on which another station stood in
 }
 
 // AllStandIn reports whether no day of the sum stands on its own basis.
@@ -94,6 +95,9 @@ func (c counter) past(first, end Day) pastUnits {
 		past.units = append(past.units, units)
 		past.known = append(past.known, standing != Nothing)
 		past.sum.add(units, standing, line)
+		if facts.Other != "" {
+			past.sum.Other++
+		}
 	}
 	return past
 }

@@ -125,6 +125,11 @@ type DayFacts struct {
 	// HoursC are the day's hourly values, bridged ones included; nil unless
 	// the 24-hour mean stands on readings.
 	HoursC []float64
+	// Other is the station that stands in for the first by rank on this day, and
+	// OtherDays the number of shared days whose mean difference was taken off it;
+	// 0 when it comes as it was measured. "" when the day is the first station's.
+	Other     string
+	OtherDays int
 	// Doubt names, in words, a reading that looks wrong; "" when none does. A
 	// doubted value still counts until the lead strikes it.
 	Doubt string

@@ -44,8 +44,10 @@ func NewImporter(team *sqlite.Team) *Importer { return &Importer{team: team} }
 // for a time or day given before is refused, the first stands; one that gives
 // the same value counts as Same.
 //
-// Times without an offset are read in the standard time that the site's day
-// rule has on the day of the request. A station that is not there is a NotFound
+// Times without an offset are read as the file itself shows, as the request
+// says, or in the standard time that the site's day rule has on the day of the
+// request. A sensor and an order of dates that were said of a file are
+// remembered for the station's next. A station that is not there is a NotFound
 // problem. Progress is called every 10,000 rows. The context stops the reading
 // between two reads of the content and every 1,000 rows, with nothing kept. The
 // same file again changes nothing.
@@ -55,10 +57,16 @@ func (i *Importer) Import(ctx context.Context, request planner.ImportRequest) (p
 		return planner.ImportReport{}, err
 	}
 	sum := sha256.New()
-	file, err := intake.Open(hashed(ctx, request.Content, sum), site, request.Units)
+	how := intake.How{Units: request.Units, Clock: request.Clock, Dates: request.Dates, Sensor: request.Sensor}
+	if how.UsualSensor, how.UsualDates, err = i.team.Remembered(ctx, request.Station); err != nil {
+		return planner.ImportReport{}, err
+	}
+	file, err := intake.Open(hashed(ctx, request.Content, sum), site, how)
 	if err != nil {
 		return planner.ImportReport{}, err
 	}
+	// A temporary file that cannot be given back is no reason to refuse.
+	defer func() { _ = file.Close() }()
 	stage, err := i.team.Stage(ctx, request.Station)
 	if err != nil {
 		return planner.ImportReport{}, fmt.Errorf("open the stage: %w", err)
@@ -83,6 +91,8 @@ func (i *Importer) Import(ctx context.Context, request planner.ImportRequest) (p
 		Rows:     run.rows,
 		Empty:    run.empty,
 		Refused:  run.refusals.count,
+		Sensor:   file.Sensor,
+		Dates:    file.Dates,
 	})
 	if err != nil {
 		return planner.ImportReport{}, fmt.Errorf("merge the file: %w", err)
@@ -103,7 +113,8 @@ func (i *Importer) site(ctx context.Context, request planner.ImportRequest) (int
 		for _, site := range setup.Sites {
 			if site.ID == station.Site {
 				rule := site.Rules.On(planner.DayIn(request.At, time.UTC))
-				return intake.Site{OffsetSeconds: rule.OffsetSeconds}, nil
+				zone, err := site.Location()
+				return intake.Site{OffsetSeconds: rule.OffsetSeconds, Zone: zone}, err
 			}
 		}
 	}
@@ -240,5 +251,37 @@ func (r *run) report(merged sqlite.MergeReport) planner.ImportReport {
 		Refusals: r.refusals.list(),
 		From:     merged.From,
 		To:       merged.To,
+		Import:   planner.ImportID(merged.ImportID),
+		Notes:    r.file.Notes,
+
+		Remembered: remembered(r.file),
 	}
+}
+
+// remembered is what of the file is taken for granted with the next one, as it
+// would be typed.
+func remembered(file *intake.File) (words []string) {
+	if file.Sensor != "" {
+		words = append(words, fmt.Sprintf("sensor:%q", file.Sensor))
+	}
+	if file.Dates != "" {
+		words = append(words, "dates:"+file.Dates)
+	}
+	return words
+}
+
+// Imports returns the newest imports into the site's stations, newest first.
+func (i *Importer) Imports(ctx context.Context, site planner.SiteID, limit int) ([]planner.Import, error) {
+	return i.team.Imports(ctx, site, limit)
+}
+
+// Withdraw takes an import back, or says what that would do.
+func (i *Importer) Withdraw(ctx context.Context, stamp planner.Stamp, id planner.ImportID, dry bool) (planner.Withdrawal, error) {
+	return i.team.Withdraw(ctx, stamp, id, dry)
+}
+
+// Export writes the station's readings and daily readings in the form that
+// Import reads back to the same record.
+func (i *Importer) Export(ctx context.Context, station planner.StationID, to io.Writer) error {
+	return i.team.ExportStation(ctx, station, intake.ExportHeader, to)
 }

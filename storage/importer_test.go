@@ -26,6 +26,7 @@ type ground struct {
 	site     planner.Site
 	station  planner.StationID
 	importer *storage.Importer
+	facts    []planner.DayFacts // of a test that compares two
 }
 
 var stamp = planner.Stamp{At: time.Date(2024, 6, 4, 6, 0, 0, 0, time.UTC), By: "tester", Command: "/weather file"}
@@ -136,14 +137,15 @@ func TestImportThenAgainThenCorrected(t *testing.T) {
 	g := newGround(t, "UTC", 0)
 	report := g.take(t, "july.csv", hours(48, nil))
 	want := planner.ImportReport{Format: "readings", Units: "c", Clock: "offset in the file", Rows: 48, New: 48,
-		From: planner.DayOf(2013, 7, 1), To: planner.DayOf(2013, 7, 2)}
+		Import: 1,
+		From:   planner.DayOf(2013, 7, 1), To: planner.DayOf(2013, 7, 2)}
 	if diff := cmp.Diff(want, report); diff != "" {
 		t.Error(diff)
 	}
 	first := g.state(t)
 
 	again := g.take(t, "july again.csv", hours(48, nil))
-	want.New, want.Same = 0, 48
+	want.New, want.Same, want.Import = 0, 48, 2
 	if diff := cmp.Diff(want, again); diff != "" {
 		t.Error(diff)
 	}

@@ -108,6 +108,8 @@ type Request struct {
 	// OpenFile opens the file that a File option names; nil where there are no
 	// files.
 	OpenFile func(name string) (io.ReadCloser, error)
+	// Progress, when not nil, is told the rows of a long file as they are read.
+	Progress func(rows int)
 }
 
 // TodayAt is the calendar day of the request on a clock in the zone; nil means

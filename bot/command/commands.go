@@ -8,7 +8,7 @@ func (d Desk) Table(log *slog.Logger) Table {
 	commands := []Command{
 		d.briefing(), d.due(), d.done(), d.whatIf(), d.help(),
 		d.logList(), d.logAmend(), d.logUndo(),
-		d.weatherDay(), d.weatherFile(), d.weatherAhead(),
+		d.weatherDay(), d.weatherFile(), d.weatherAhead(), d.weatherUndo(),
 		d.season(), d.whyCompare(),
 	}
 	commands = append(commands, d.setupSite()...)

@@ -10,7 +10,7 @@ import (
 
 func (d Desk) setupStation() []Command {
 	which := nameOption("which station", "roof", d.stationOption().Complete)
-	rank := Option{Name: "rank", Kind: Whole, Range: Between(1, 99), Help: "the first by rank gives the record", Example: "1"}
+	rank := Option{Name: "rank", Kind: Whole, Range: Between(1, 99), Help: "the first gives the record, the next stand in for days it lacks", Example: "1"}
 	return []Command{
 		{Path: "setup station add", Short: "add a station to a site", Who: Lead,
 			Options:  []Option{nameOption("what the station is called", "roof", nil), rank, d.siteOption()},

@@ -116,15 +116,20 @@ func dayFigures(facts planner.DayFacts) planner.Figures {
 func (d Desk) weatherFile() Command {
 	return Command{
 		Path: "weather file", Short: "read a station file into the record", Who: Lead,
-		Long: "Reads a comma-separated file with a header: readings (time,temp_c) or days (date,high_c,low_c). " +
-			"The same file twice changes nothing. A site without a station gets one named after the file.",
+		Long: "Reads what loggers and archives write: CSV in most dialects, GHCN-Daily, ISD-Lite, METAR reports, a service's observations; " +
+			"plain, gzip or a zip of one file. What a file does not say it asks for: units, clock, dates, sensor. " +
+			"The same file twice changes nothing; /weather undo takes a file back. A site without a station gets one named after the file.",
 		Options: []Option{
 			{Name: "file", Kind: File, Required: true, Help: "the station's file", Example: "station.csv"},
 			{Name: "units", Kind: Choice, Choices: []string{"c", "f"}, Help: "the file's unit, where its header does not say"},
+			{Name: "clock", Kind: Text, Help: "its times: standard, wall (with summer time), utc, or an offset", Example: "wall"},
+			{Name: "dates", Kind: Text, Help: "d/m/y, m/d/y or y/m/d; for METAR the month of the first", Example: "d/m/y"},
+			{Name: "sensor", Kind: Text, Help: "which sensor counts, where the file has several", Example: "green 7"},
 			d.stationOption(), d.siteOption(),
 		},
-		Examples: []string{"/weather file file:station.csv", "/weather file file:station.csv units:f station:roof"},
-		Run:      d.runWeatherFile,
+		Examples: []string{"/weather file file:station.csv", "/weather file file:station.csv units:f station:roof",
+			"/weather file file:station.csv clock:wall dates:d/m/y"},
+		Run: d.runWeatherFile,
 	}
 }
 
@@ -141,6 +146,8 @@ func (d Desk) runWeatherFile(ctx context.Context, req Request) (reply.Reply, err
 	defer content.Close()
 	imported, err := v.book.Import(ctx, v.site, textOr(v.Values, "station", ""), planner.ImportRequest{
 		Stamp: v.stamp(), FileName: name, Content: content, Units: planner.Units(textOr(v.Values, "units", "")),
+		Clock: textOr(v.Values, "clock", ""), Dates: textOr(v.Values, "dates", ""), Sensor: textOr(v.Values, "sensor", ""),
+		Progress: req.Progress,
 	})
 	if err != nil {
 		return reply.Reply{}, err
@@ -167,7 +174,10 @@ func ImportReply(station planner.Station, report planner.ImportReport) reply.Rep
 	if report.Taken() > 0 {
 		fields = append(fields, reply.Field{Name: "from", Value: report.From.String()}, reply.Field{Name: "to", Value: report.To.String()})
 	}
-	r.Add(fields, reply.Text(readAs(report)))
+	r.Add(fields, reply.Text(strings.Join(append([]string{readAs(report)}, report.Notes...), "\n")))
+	if len(report.Remembered) > 0 {
+		r.Add(reply.Textf("Remembered for %s: %s.", station.Name, strings.Join(report.Remembered, ", ")))
+	}
 	if len(report.Refusals) == 0 {
 		return r
 	}

@@ -183,7 +183,7 @@ func (s *seen) first(id string, now time.Time) bool {
 	if _, known := s.ids[id]; known {
 		return false
 	}
-	const many = 4096
+	const many = 1024
 	if len(s.ids) >= many {
 		for old, at := range s.ids {
 			if now.Sub(at) > seenFor || len(s.ids) >= 2*many {

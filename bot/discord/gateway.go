@@ -171,7 +171,7 @@ func (l *line) dial(ctx context.Context, network, address string) (net.Conn, err
 	l.mu.Lock()
 	defer l.mu.Unlock()
 	l.conn = conn
-	return listening{conn, l.bot}, nil
+	return listening{conn, l.bot.Timing.Silence}, nil
 }
 
 func (l *line) close() {
@@ -182,17 +182,16 @@ func (l *line) close() {
 	}
 }
 
-// listening gives every read a fresh deadline.
+// listening ends the connection when it is silent for too long.
 type listening struct {
 	net.Conn
-	bot *Bot
+	silence time.Duration
 }
 
-// Read reads, but does not wait longer than Timing.Silence.
+// Read reads, but does not wait longer than the silence allowed.
 func (l listening) Read(p []byte) (int, error) {
-	if err := l.SetReadDeadline(l.bot.Now().Add(l.bot.Timing.Silence)); err != nil {
-		return 0, err
-	}
+	timer := time.AfterFunc(l.silence, func() { _ = l.Close() })
+	defer timer.Stop()
 	return l.Conn.Read(p)
 }
 

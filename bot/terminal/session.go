@@ -38,6 +38,8 @@ type Session struct {
 	// Confirm asks before a command acts: the reply then ends in the line that
 	// says yes. Without it commands act at once, as a script needs.
 	Confirm bool
+	// Progress, when not nil, is told the rows of a long file as they are read.
+	Progress func(rows int)
 }
 
 // RunLine runs one command and says whether it went well.
@@ -60,7 +62,7 @@ func (s *Session) run(ctx context.Context, line string, confirmed bool) Result {
 
 func (s *Session) request() command.Request {
 	now, localClock := s.Now()
-	return command.Request{Caller: s.Caller, Now: now, LocalClock: localClock, OpenFile: openFile}
+	return command.Request{Caller: s.Caller, Now: now, LocalClock: localClock, OpenFile: openFile, Progress: s.Progress}
 }
 
 func (s *Session) show(result Result) error {

@@ -2,59 +2,166 @@ package main
 
 import (
 	"bytes"
+	"context"
 	"errors"
 	"fmt"
+	"io"
+	"io/fs"
+	"os"
+	"path/filepath"
+	"strings"
+	"time"
 
+	"github.com/schollz/progressbar/v3"
 	"github.com/spf13/cobra"
 
 	"swardbook/bot/command"
 	"swardbook/bot/terminal"
+	"swardbook/planner"
 )
+
+// importing is the import command's flags.
+type importing struct {
+	where                                      place
+	site, station, units, clock, dates, sensor string
+	watch                                      string
+	every                                      time.Duration
+}
 
 // importCommand reads station files: the lead's /weather file, for scripts.
 func importCommand(env func(string) string) *cobra.Command {
-	var where place
-	var site, station, units string
+	var how importing
 	cmd := &cobra.Command{
-		Use:     "import FILE…",
-		Short:   "Read station files into the weather record",
-		Long:    "Reads each file, goes on after one that is refused, and then ends with status 1.",
-		Example: "  swardbook import --db course.db station.csv",
-		Args:    cobra.MinimumNArgs(1),
-		RunE: func(cmd *cobra.Command, args []string) (err error) {
-			house, err := open(cmd.Context(), where.db, where.team)
-			if err != nil {
-				return err
+		Use:   "import FILE|FOLDER…",
+		Short: "Read station files into the weather record",
+		Long: "Reads each file, and every file of a folder, goes on after one that is refused, and then ends with status 1.\n" +
+			"With --watch it waits for files in a folder instead: a file that is complete is read and moved to done/ there, or to\n" +
+			"refused/ with the reason beside it.",
+		Example: "  swardbook import --db course.db station.csv\n  swardbook import --db course.db archive/\n  swardbook import --db course.db --watch drop/",
+		RunE: func(cmd *cobra.Command, args []string) error {
+			switch {
+			case how.watch != "" && len(args) > 0:
+				return planner.Problemf(planner.Invalid, "Either files or --watch, not both.")
+			case how.watch == "" && len(args) == 0:
+				return planner.Problemf(planner.Missing, "Which file?").WithHint("swardbook import --db course.db station.csv")
 			}
-			defer func() { err = errors.Join(err, house.close()) }()
-			now, _ := clock("")
-			failed := false
-			for _, file := range args {
-				pairs := []command.Pair{{Name: "file", Value: file}}
-				for _, option := range []command.Pair{{Name: "units", Value: units}, {Name: "station", Value: station}, {Name: "site", Value: site}} {
-					if option.Value != "" {
-						pairs = append(pairs, option)
-					}
-				}
-				var wrong bytes.Buffer
-				session := terminal.Session{
-					Table: house.table(cmd.ErrOrStderr()), Caller: caller(command.Lead, env), Now: now,
-					Out: cmd.OutOrStdout(), Err: &wrong,
-				}
-				if !session.RunLine(cmd.Context(), command.Line("weather file", pairs...)) {
-					failed = true
-					fmt.Fprintf(cmd.ErrOrStderr(), "%s:\n%s", file, wrong.String())
-				}
-			}
-			if failed {
-				return errFailed
-			}
-			return nil
+			return how.run(cmd, env, args)
 		},
 	}
-	where.addTo(cmd, env)
-	cmd.Flags().StringVar(&site, "site", "", "site; not needed with one")
-	cmd.Flags().StringVar(&station, "station", "", "station; not needed with one")
-	cmd.Flags().StringVar(&units, "units", "", "the files' unit where their header does not say: c or f")
+	how.where.addTo(cmd, env)
+	flags := cmd.Flags()
+	flags.StringVar(&how.site, "site", "", "site; not needed with one")
+	flags.StringVar(&how.station, "station", "", "station; not needed with one")
+	flags.StringVar(&how.units, "units", "", "the files' unit where they do not say: c or f")
+	flags.StringVar(&how.clock, "clock", "", "the files' times: standard, wall (with summer time), utc, or an offset like -05:00")
+	flags.StringVar(&how.dates, "dates", "", "the files' dates: d/m/y, m/d/y or y/m/d; of METAR reports the month of the first, 2021-07")
+	flags.StringVar(&how.sensor, "sensor", "", "which sensor counts, where a file has several")
+	flags.StringVar(&how.watch, "watch", "", "a folder to wait for files in")
+	flags.DurationVar(&how.every, "every", 2*time.Second, "how often --watch looks")
 	return cmd
+}
+
+func (i importing) run(cmd *cobra.Command, env func(string) string, args []string) (err error) {
+	ctx := cmd.Context()
+	house, err := open(ctx, i.where.db, i.where.team)
+	if err != nil {
+		return err
+	}
+	defer func() { err = errors.Join(err, house.close()) }()
+	now, _ := clock("")
+	table := house.table(cmd.ErrOrStderr())
+	if i.watch != "" {
+		request := func(path string) command.Request {
+			at, local := now()
+			return command.Request{Caller: caller(command.Lead, env), Now: at, LocalClock: local, Line: i.line(path), OpenFile: openPlain}
+		}
+		return watch(ctx, i.watch, i.every, cmd.OutOrStdout(), func(ctx context.Context, path string) (string, error) {
+			answer, err := table.Run(ctx, request(path))
+			return countsOf(answer), err
+		})
+	}
+	files, err := filesOf(args)
+	if err != nil {
+		return err
+	}
+	failed := 0
+	for _, file := range files {
+		if ctx.Err() != nil {
+			return ctx.Err()
+		}
+		session := terminal.Session{Table: table, Caller: caller(command.Lead, env), Now: now, Out: cmd.OutOrStdout()}
+		if !i.one(ctx, session, file, cmd.ErrOrStderr()) {
+			failed++
+		}
+	}
+	if len(files) > 1 {
+		fmt.Fprintf(cmd.OutOrStdout(), "%d files: %d read, %d refused.\n", len(files), len(files)-failed, failed)
+	}
+	if failed > 0 {
+		return errFailed
+	}
+	return nil
+}
+
+// one reads one file, its progress shown where a person watches.
+func (i importing) one(ctx context.Context, session terminal.Session, file string, errOut io.Writer) bool {
+	var wrong bytes.Buffer
+	session.Err = &wrong
+	if isTerminal(errOut) {
+		bar := progressbar.NewOptions(-1, progressbar.OptionSetWriter(errOut), progressbar.OptionSetDescription(filepath.Base(file)+", rows"),
+			progressbar.OptionShowCount(), progressbar.OptionThrottle(200*time.Millisecond), progressbar.OptionClearOnFinish())
+		// A bar that cannot be drawn is no reason to stop.
+		session.Progress = func(rows int) { _ = bar.Set(rows) }
+		defer func() { _ = bar.Finish() }()
+	}
+	if session.RunLine(ctx, i.line(file)) {
+		return true
+	}
+	fmt.Fprintf(errOut, "%s:\n%s", file, wrong.String())
+	return false
+}
+
+// line is the command line for a file.
+func (i importing) line(file string) string {
+	pairs := []command.Pair{{Name: "file", Value: file}}
+	for _, option := range []command.Pair{
+		{Name: "units", Value: i.units}, {Name: "clock", Value: i.clock}, {Name: "dates", Value: i.dates},
+		{Name: "sensor", Value: i.sensor}, {Name: "station", Value: i.station}, {Name: "site", Value: i.site},
+	} {
+		if option.Value != "" {
+			pairs = append(pairs, option)
+		}
+	}
+	return command.Line("weather file", pairs...)
+}
+
+// filesOf lists the files named, and those of the folders named with theirs,
+// by name; hidden ones are left out. What is not there is left to be told when
+// it is read.
+func filesOf(args []string) (files []string, err error) {
+	for _, arg := range args {
+		if info, err := os.Stat(arg); err != nil || !info.IsDir() {
+			files = append(files, arg)
+			continue
+		}
+		err := filepath.WalkDir(arg, func(path string, entry fs.DirEntry, err error) error {
+			hidden := strings.HasPrefix(entry.Name(), ".") && path != arg
+			switch {
+			case err != nil:
+				return err
+			case entry.IsDir() && hidden:
+				return fs.SkipDir
+			case entry.Type().IsRegular() && !hidden:
+				files = append(files, path)
+			}
+			return nil
+		})
+		if err != nil {
+			return nil, planner.Problemf(planner.Refused, "the folder %s cannot be read", arg).WithCause(err).WithHint("See that you may read it.")
+		}
+	}
+	if len(files) == 0 {
+		return nil, planner.Problemf(planner.NotFound, "there is no file in %s", strings.Join(args, ", "))
+	}
+	return files, nil
 }

@@ -39,7 +39,7 @@ func run(ctx context.Context, args []string, env func(string) string, in io.Read
 	root.SetIn(in)
 	root.SetOut(out)
 	root.SetErr(errOut)
-	root.AddCommand(demoCommand(), chatCommand(env), importCommand(env), serveCommand(env), versionCommand())
+	root.AddCommand(demoCommand(), chatCommand(env), importCommand(env), exportCommand(env), serveCommand(env), versionCommand())
 	err := root.ExecuteContext(ctx)
 	if err == nil {
 		return 0

@@ -101,4 +101,3 @@ func (h *health) ServeHTTP(w http.ResponseWriter, _ *http.Request) {
 	}
 	fmt.Fprintln(w, "ok")
 }
-

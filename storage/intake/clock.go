@@ -160,14 +160,9 @@ func (m *moment) parseOffset(text []byte) (reason string) {
 	return ""
 }
 
-// instant returns the moment in UTC seconds; without an offset it is in the
-// site's standard time. The day, at the site and in UTC, must be in the years
-// 1700 to 2299.
-func (m moment) instant(site Site) (at int64, reason string) {
-	offset := m.offset
-	if !m.hasOffset {
-		offset = site.OffsetSeconds
-	}
+// instantAt returns the moment in UTC seconds, on a clock so many seconds east
+// of UTC. The day, at the site and in UTC, must be in the years 1700 to 2299.
+func (m moment) instantAt(offset int, site Site) (at int64, reason string) {
 	at = int64(m.day)*secondsPerDay + int64(m.second-offset)
 	local := at + int64(site.OffsetSeconds)
 	if min(at, local) < int64(planner.DayMin)*secondsPerDay || max(at, local) >= int64(planner.DayMax+1)*secondsPerDay {

@@ -20,41 +20,12 @@ const (
 	highRole
 	lowRole
 	meanRole
+	hourRole     // the hour of the day alone
+	sensorRole   // which of several sensors a row is of
+	humidityRole // known and not kept
+	rainRole
+	likelyRole // a temperature that is not called the air's
 )
-
-// columnNames is every column name that is understood, less its unit: lower
-// case, everything but letters and digits as one space. "Temp_Max (°F)" is
-// looked up as "temp max" in °F. All other columns are left alone.
-var columnNames = []struct {
-	role  role
-	word  string // what a person calls it
-	names []string
-}{
-	{timeRole, "time", []string{
-		"time", "date", "datetime", "date time", "timestamp", "time stamp", "valid",
-	}},
-	{temperatureRole, "temperature", []string{
-		"t", "temp", "temperature", "air temp", "air temperature", "airtemp", "temp air", "temperature air",
-		"dry bulb", "dry bulb temp", "dry bulb temperature",
-		"outdoor temp", "outdoor temperature", "outside temp", "outside temperature",
-	}},
-	{highRole, "high", []string{
-		"high", "max", "maximum", "tmax", "t max", "tempmax", "temp max", "max temp", "high temp", "temp high",
-		"temperature max", "max temperature", "maximum temperature", "high temperature", "temperature high",
-		"air temp max", "max air temp", "maximum air temperature",
-	}},
-	{lowRole, "low", []string{
-		"low", "min", "minimum", "tmin", "t min", "tempmin", "temp min", "min temp", "low temp", "temp low",
-		"temperature min", "min temperature", "minimum temperature", "low temperature", "temperature low",
-		"air temp min", "min air temp", "minimum air temperature",
-	}},
-	{meanRole, "mean", []string{
-		"mean", "avg", "average", "tmean", "t mean", "tmean24", "tavg", "t avg", "tempmean", "temp mean", "mean temp",
-		"temp avg", "avg temp", "average temp", "mean24", "mean 24",
-		"temperature mean", "mean temperature", "average temperature", "temperature avg",
-		"air temp mean", "mean air temp", "mean air temperature",
-	}},
-}
 
 // unitEndings is what may stand at the end of a column's name, written as
 // columnNames are: "(°C)" is "c", "[deg F]" is "deg f".
@@ -66,6 +37,7 @@ var unitEndings = []struct {
 	{planner.Celsius, " c"}, {planner.Celsius, " celsius"},
 	{planner.Fahrenheit, " deg f"}, {planner.Fahrenheit, " degrees f"}, {planner.Fahrenheit, " degf"},
 	{planner.Fahrenheit, " f"}, {planner.Fahrenheit, " fahrenheit"},
+	{planner.Celsius, " grad c"}, {planner.Celsius, " grad celsius"}, {planner.Celsius, " gr c"}, {planner.Celsius, " st c"},
 }
 
 // column is one column of a header.
@@ -74,11 +46,18 @@ type column struct {
 	name  string // as written
 	role  role
 	units planner.Units // "" when the name has none
+	// zone is what the name of a time says of its zone: "time (UTC)".
+	zone    int
+	hasZone bool
 }
 
 // readColumn looks a column's name up.
 func readColumn(index int, name []byte) column {
 	found := column{index: index, name: headerText(name)}
+	if name, offset, ok := zoneInName(found.name); ok && roleOf(plainName(name)) == timeRole {
+		found.role, found.zone, found.hasZone = timeRole, offset, true
+		return found
+	}
 	plain := plainName(found.name)
 	for _, unit := range unitEndings {
 		if base, ok := strings.CutSuffix(plain, unit.ending); ok {
@@ -86,34 +65,61 @@ func readColumn(index int, name []byte) column {
 			break
 		}
 	}
-	for _, known := range columnNames {
-		if slices.Contains(known.names, plain) {
-			found.role = known.role
+	if found.role = roleOf(plain); found.role == noRole && likelyTemperature(plain) {
+		found.role = likelyRole
+	}
+	if at := strings.LastIndexByte(plain, ' '); found.role == noRole && at > 0 {
+		if base := roleOf(plain[:at]); base == humidityRole || base == rainRole {
+			found.role = base // "rain mm"
 		}
 	}
-	if found.role == timeRole && found.units != "" {
+	if (found.role == timeRole || found.role == hourRole) && found.units != "" {
 		found.role = noRole // "time c" is something else
 	}
 	return found
 }
 
-// headerText reads a name that may be in Latin-1: "°" is then no UTF-8.
+// roleOf is the role of a plain name.
+func roleOf(plain string) role {
+	for _, known := range columnNames {
+		if slices.Contains(known.names, plain) {
+			return known.role
+		}
+	}
+	return noRole
+}
+
+// zoneInName cuts a zone off the end of a column's name: "Time (UTC)", "Date
+// Time, GMT-05:00", "time_utc".
+func zoneInName(name string) (rest string, offset int, ok bool) {
+	at := strings.LastIndexAny(strings.TrimRight(name, " )]"), " (_,[")
+	if at <= 0 || len(name) > 100 {
+		return "", 0, false
+	}
+	offset, ok = zoneNames(nil).offset(strings.Trim(name[at:], " (_,[]) "))
+	return name[:at], offset, ok
+}
+
+// headerText reads a name that may be in windows-1252: "°" is then no UTF-8.
 func headerText(name []byte) string {
 	if utf8.Valid(name) {
 		return strings.TrimSpace(string(name))
 	}
+	high := []rune(windows1252)
 	runes := make([]rune, len(name))
 	for i, c := range name {
-		runes[i] = rune(c)
+		if runes[i] = rune(c); c >= 0x80 && c < 0xA0 {
+			runes[i] = high[c-0x80]
+		}
 	}
 	return strings.TrimSpace(string(runes))
 }
 
-// plainName is the name in lower case with one space for everything that is
-// neither letter nor digit. The ordinals º and ª, which unicode calls letters,
-// are taken for the degree sign that they stand for.
+// plainName is the name in lower case without accents, with one space for
+// everything that is neither letter nor digit. The ordinals º and ª, which
+// unicode calls letters, are taken for the degree sign that they stand for.
 func plainName(name string) string {
-	return strings.Join(strings.FieldsFunc(strings.ToLower(name), func(r rune) bool {
+	return strings.Join(strings.FieldsFunc(accents.Replace(strings.ToLower(name)), func(r rune) bool {
 		return r == 'º' || r == 'ª' || !unicode.IsLetter(r) && !unicode.IsDigit(r)
 	}), " ")
 }
@@ -124,6 +130,9 @@ func (r role) word() string {
 		if known.role == r {
 			return known.word
 		}
+	}
+	if r == likelyRole {
+		return temperatureRole.word()
 	}
 	return "other"
 }
@@ -136,6 +145,26 @@ type header struct {
 // has reports whether any column has the role.
 func (h header) has(wanted role) bool {
 	return slices.ContainsFunc(h.columns, func(c column) bool { return c.role == wanted })
+}
+
+// named returns the column with the name, as written or in plain.
+func (h header) named(name string) (column, bool) {
+	for _, c := range h.columns {
+		if c.name == name || plainName(name) != "" && plainName(c.name) == plainName(name) {
+			return c, true
+		}
+	}
+	return column{}, false
+}
+
+// of returns the columns of the role.
+func (h header) of(wanted role) (columns []column) {
+	for _, c := range h.columns {
+		if c.role == wanted {
+			columns = append(columns, c)
+		}
+	}
+	return columns
 }
 
 // pick returns the column of the role. Of several (temp_c, temp_f) the one in
@@ -161,15 +190,22 @@ func (h header) pick(wanted role, units planner.Units) (picked column, ok bool, 
 		return fitting[0], true, nil
 	}
 	problem := planner.Problemf(planner.Refused, "the columns %s could each be the %s", quoteNames(all), wanted.word())
-	if wanted == timeRole {
-		return column{}, false, problem.WithHint("Keep one column, with the date and the time of day together: 2013-07-01T05:00.")
+	if wanted != temperatureRole && wanted != likelyRole {
+		return column{}, false, problem.WithHint("Rename all but one, for instance by a word in front: \"other %s\".", all[0].name)
 	}
-	return column{}, false, problem.
-		WithHint("Rename all but one, for instance by a word in front: \"other %s\".", all[0].name)
+	return column{}, false, askSensor(problem, namesOfColumns(all))
+}
+
+func namesOfColumns(columns []column) []string {
+	var names []string
+	for _, c := range columns {
+		names = append(names, cut([]byte(c.name)))
+	}
+	return names
 }
 
 // unitsOf returns the one unit of the columns: what their names say, else
-// units, else °C. Names that contradict each other or units are refused.
+// units, else "". Names that contradict each other or units are refused.
 func unitsOf(columns []column, units planner.Units) (planner.Units, error) {
 	var named column
 	for _, c := range columns {
@@ -183,8 +219,6 @@ func unitsOf(columns []column, units planner.Units) (planner.Units, error) {
 		named = c
 	}
 	switch {
-	case named.units == "" && units == "":
-		return planner.Celsius, nil
 	case named.units == "":
 		return units, nil
 	case units != "" && units != named.units:

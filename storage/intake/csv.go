@@ -2,9 +2,8 @@ package intake
 
 import (
 	"bytes"
-	"errors"
 	"fmt"
-	"io"
+	"strings"
 
 	"swardbook/calc"
 	"swardbook/planner"
@@ -19,28 +18,20 @@ const (
 	meanOutside  = "the mean is outside the low and the high"
 )
 
-// recogniseCSV takes a file whose first line has a column name that is known.
-// Quotes that do not close may do so on the next line: openCSV judges them.
-func recogniseCSV(head []byte) bool {
-	reader := csvReader{keep: mostColumns}
-	reader.split(firstLine(head))
-	for i, name := range reader.values {
-		if readColumn(i, name).role != noRole {
-			return true
-		}
-	}
-	return false
-}
-
 // csvFile is an open CSV file: its header understood, its rows to come.
 type csvFile struct {
-	csvReader
+	*csvReader
 	site         Site
 	daily        bool
-	time         int           // column of the time or date
+	time         timeColumns
 	temperatures []valueColumn // the temperature; or high, low and, where there is one, mean
-	offsets      bool          // a time had an offset
-	noOffsets    bool          // a time had none
+	order        dateOrder     // of dates in figures
+	zones        zoneNames
+	clocks       fileClock
+	sensor       *column // the column that says which sensor a row is of
+	wanted       string  // the sensor that counts
+	lastRow      int     // the last line with a time: what stands below is no row
+	below        int     // lines below it
 }
 
 // valueColumn is a column of temperatures with its reasons ready.
@@ -51,86 +42,121 @@ type valueColumn struct {
 	absurd string
 }
 
-// openCSV reads the header, and looks at the first data row to tell readings
-// from daily rows where the header leaves it open.
-func openCSV(lines *lineReader, site Site, units planner.Units) (*File, error) {
-	file := &csvFile{csvReader: csvReader{lines: lines, keep: mostColumns}, site: site}
-	head, err := file.readHeader()
+// openCSV finds the header and the columns, and goes through the whole file
+// once or twice to tell what only all of its rows can: the order of its dates,
+// its unit, its clock, its sensors.
+func openCSV(src *spool, site Site, how How) (*File, error) {
+	l, err := findLayout(src, how.Sensor)
 	if err != nil {
 		return nil, err
 	}
-	columns, err := file.choose(head, units)
+	file := &csvFile{site: site, zones: namesOf(site.Zone)}
+	columns, err := file.choose(src, l, how)
 	if err != nil {
 		return nil, err
 	}
-	if units, err = unitsOf(columns, units); err != nil {
+	said, err := unitsOf(columns, how.Units)
+	if err != nil {
 		return nil, err
+	}
+	found, err := file.survey(src, l, columns, how)
+	if err != nil {
+		return nil, err
+	}
+	units, guessed := said, false
+	if units == "" {
+		if units, err = found.values.guess(); err != nil {
+			return nil, err
+		}
+		guessed = found.values.named == [2]int{}
 	}
 	for _, c := range columns {
 		file.temperatures = append(file.temperatures, newValueColumn(c, units))
 	}
-	kind := Readings
-	if file.daily {
-		kind = Daily
+	if file.csvReader, err = openRows(src, l.sign, l.firstRow); err != nil {
+		return nil, err
 	}
-	return &File{Format: kind, Units: units, rows: file}, nil
+	file.keep = len(l.head.columns)
+	out := &File{Format: Readings, Units: units, rows: file, Sensor: file.sensorName(l, columns, how), Dates: found.saidOrder}
+	if file.daily {
+		out.Format = Daily
+	}
+	out.Notes = file.notes(l, guessed, units, found)
+	return out, nil
 }
 
-func (f *csvFile) readHeader() (header, error) {
-	_, broken, err := f.read()
-	switch {
-	case errors.Is(err, io.EOF):
-		return header{}, planner.Problemf(planner.Refused, "the file is empty").WithHint("%s", headerHint)
-	case err != nil:
-		return header{}, err
-	case broken:
-		return header{}, planner.Problemf(planner.Refused, "the header has broken quotes: %q", cut(f.values[0])).
-			WithHint("%s", headerHint)
-	case f.count > mostColumns:
-		return header{}, planner.Problemf(planner.Refused, "the header has %d columns", f.count).WithHint("%s", headerHint)
+// sensorName is the sensor that was chosen among several; "" with one.
+func (f *csvFile) sensorName(l layout, columns []column, how How) string {
+	if f.sensor != nil {
+		return f.wanted
 	}
-	var head header
-	for i, name := range f.values {
-		head.columns = append(head.columns, readColumn(i, name))
+	if how.Sensor != "" || how.UsualSensor != "" && columns[0].name == how.UsualSensor && len(temperatureColumns(l.head)) > 1 {
+		return columns[0].name
 	}
-	// A comma at the end of the header names no column.
-	for len(head.columns) > 1 && head.columns[len(head.columns)-1].name == "" {
-		head.columns = head.columns[:len(head.columns)-1]
+	return ""
+}
+
+// notes says what was found and not kept, and what was taken for granted.
+func (f *csvFile) notes(l layout, guessed bool, units planner.Units, found *survey) []string {
+	var notes []string
+	if guessed {
+		notes = append(notes, fmt.Sprintf("The file does not say its unit: taken as %s.", degrees(units)))
 	}
-	f.keep = len(head.columns)
-	return head, nil
+	if l.above > 0 {
+		notes = append(notes, fmt.Sprintf("Left out above the header: %s.", countOf(l.above, "line")))
+	}
+	var also []string
+	for _, role := range []role{humidityRole, rainRole} {
+		if l.head.has(role) {
+			also = append(also, role.word())
+		}
+	}
+	if len(also) > 0 {
+		notes = append(notes, fmt.Sprintf("In the file and not kept: %s.", strings.Join(also, ", ")))
+	}
+	if found.nonISO > 0 && !found.sameInAll {
+		notes = append(notes, fmt.Sprintf("Dates read as %s.", found.order))
+	}
+	if f.clocks.kind == wallClock && !f.clocks.said {
+		notes = append(notes, "The times skip and double an hour as the clock on the wall does. clock:standard reads them otherwise.")
+	}
+	return notes
+}
+
+func countOf(n int, word string) string {
+	if n == 1 {
+		return "1 " + word
+	}
+	return fmt.Sprintf("%d %ss", n, word)
 }
 
 // choose picks the columns to read and says whether the file is daily.
-func (f *csvFile) choose(head header, units planner.Units) ([]column, error) {
-	at, ok, err := head.pick(timeRole, "")
-	if err != nil {
+func (f *csvFile) choose(src *spool, l layout, how How) (columns []column, err error) {
+	if f.time, err = chooseTime(src, l); err != nil {
 		return nil, err
 	}
-	pair := head.has(highRole) && head.has(lowRole)
-	if !ok || !pair && !head.has(temperatureRole) {
-		return nil, notUnderstood(head, ok)
+	if clock, said, err := readClock(how.Clock, f.site); err != nil {
+		return nil, err
+	} else if f.clocks = clock; !said && f.time.date.hasZone {
+		f.clocks.kind, f.clocks.offset, f.clocks.said = fixedClock, f.time.date.zone, true
 	}
-	f.time = at.index
-	f.daily = pair
-	if head.has(temperatureRole) {
-		bare, err := f.firstTimeIsBare()
-		if err != nil {
-			return nil, err
-		}
-		if bare && !pair {
-			return nil, planner.Problemf(planner.Refused, "the file has one temperature a day and no time of day").
-				WithHint("A day needs its high and low (date,high_c,low_c); readings need a time of day (2013-07-01T05:00).")
-		}
-		f.daily = bare && pair
+	if sensors := l.head.of(sensorRole); len(sensors) == 1 {
+		f.sensor = &sensors[0]
 	}
-	wanted := []role{temperatureRole}
-	if f.daily {
-		wanted = []role{highRole, lowRole, meanRole}
+	f.daily = l.head.has(highRole) && l.head.has(lowRole)
+	if f.daily && !f.time.bare && len(temperatureColumns(l.head)) > 0 {
+		f.daily = false
 	}
-	var columns []column
-	for _, role := range wanted {
-		c, ok, err := head.pick(role, units)
+	if !f.daily && f.time.bare {
+		return nil, planner.Problemf(planner.Refused, "the file has one temperature a day and no time of day").
+			WithHint("A day needs its high and low (date,high_c,low_c); readings need a time of day (2013-07-01T05:00).")
+	}
+	if !f.daily {
+		picked, err := f.pickTemperature(l.head, how)
+		return []column{picked}, err
+	}
+	for _, role := range []role{highRole, lowRole, meanRole} {
+		c, ok, err := l.head.pick(role, how.Units)
 		if err != nil {
 			return nil, err
 		}
@@ -141,6 +167,54 @@ func (f *csvFile) choose(head header, units planner.Units) ([]column, error) {
 	return columns, nil
 }
 
+// temperatureColumns are the columns that could be the temperature.
+func temperatureColumns(h header) []column {
+	if exact := h.of(temperatureRole); len(exact) > 0 {
+		return exact
+	}
+	return h.of(likelyRole)
+}
+
+// pickTemperature picks the one column of temperatures: the sensor named, the
+// only one, the one the station took before; else it asks.
+func (f *csvFile) pickTemperature(head header, how How) (column, error) {
+	if how.Sensor != "" {
+		if c, ok := head.named(how.Sensor); ok {
+			c.role = temperatureRole
+			return c, nil
+		}
+		if f.sensor == nil {
+			return column{}, askSensor(planner.Problemf(planner.Refused, "the file has no column %q", cut([]byte(how.Sensor))),
+				namesOfColumns(temperatureColumns(head)))
+		}
+	}
+	for _, role := range []role{temperatureRole, likelyRole} {
+		picked, ok, err := head.pick(role, how.Units)
+		if usual, known := head.named(how.UsualSensor); err != nil && known && usual.role == role {
+			picked, ok, err = usual, true, nil
+		}
+		if ok || err != nil {
+			picked.role = temperatureRole
+			return picked, err
+		}
+	}
+	return column{}, notUnderstood(head, true)
+}
+
+// askSensor asks which of the sensors is meant.
+func askSensor(problem *planner.Problem, names []string) error {
+	const most = 6
+	var choices []string
+	for i, name := range names {
+		if i == most {
+			choices = append(choices, fmt.Sprintf("and %d more", len(names)-most))
+			break
+		}
+		choices = append(choices, fmt.Sprintf("sensor:%q", name))
+	}
+	return problem.WithHint("Say which one counts, and send the file again: %s. It is remembered for the station.", strings.Join(choices, ", "))
+}
+
 func notUnderstood(head header, hasTime bool) error {
 	missing := "a temperature, or a high and a low"
 	if !hasTime {
@@ -148,29 +222,6 @@ func notUnderstood(head header, hasTime bool) error {
 	}
 	return planner.Problemf(planner.Refused, "the header has no column for %s; its columns are %s", missing, quoteNames(head.columns)).
 		WithHint("%s", headerHint)
-}
-
-// firstTimeIsBare looks, without reading on, whether the first data row has a
-// date without a time of day.
-func (f *csvFile) firstTimeIsBare() (bool, error) {
-	for {
-		length, next, lines, broken, err := f.extent()
-		if errors.Is(err, io.EOF) {
-			return false, nil
-		}
-		if err != nil {
-			return false, f.lines.problem(err)
-		}
-		if broken || !f.split(f.lines.text(length)) || f.count <= f.time {
-			return false, nil
-		}
-		if f.blank() {
-			f.lines.consume(next, lines)
-			continue
-		}
-		m, reason := parseMoment(bytes.TrimSpace(f.values[f.time]))
-		return reason == "" && !m.hasClock, nil
-	}
 }
 
 func newValueColumn(c column, units planner.Units) valueColumn {
@@ -185,10 +236,10 @@ func newValueColumn(c column, units planner.Units) valueColumn {
 }
 
 // read returns the temperature of the row in °C; known is false when the file
-// says that it is missing.
+// says that it is missing. A unit behind the value counts before the column's.
 func (v valueColumn) read(values [][]byte) (valueC float64, known bool, reason string) {
 	text := bytes.TrimSpace(values[v.index])
-	value, ok := parseNumber(text)
+	value, units, ok := parseMeasured(text)
 	switch {
 	case !ok && missingWord(text):
 		return 0, false, ""
@@ -196,8 +247,10 @@ func (v valueColumn) read(values [][]byte) (valueC float64, known bool, reason s
 		return 0, false, v.notOne
 	case missingNumber(value):
 		return 0, false, ""
+	case units == "":
+		units = v.units
 	}
-	if v.units == planner.Fahrenheit {
+	if units == planner.Fahrenheit {
 		value = calc.CelsiusFromFahrenheit(value)
 	}
 	if planner.CheckTemperature(value) != nil {
@@ -207,34 +260,50 @@ func (v valueColumn) read(values [][]byte) (valueC float64, known bool, reason s
 }
 
 func (f *csvFile) clock() string {
-	switch {
-	case f.daily:
+	if f.daily {
 		return ClockDates
-	case f.offsets && f.noOffsets:
-		return ClockMixed
-	case f.offsets:
-		return ClockOffset
-	case f.noOffsets:
-		return ClockSite
 	}
-	return ""
+	return f.clocks.words()
 }
 
 func (f *csvFile) next() (Row, error) {
-	line, broken, err := f.read()
-	if err != nil {
-		return Row{}, err
+	for {
+		line, broken, err := f.read()
+		if err != nil {
+			return Row{}, err
+		}
+		if line > f.lastRow && belowRows(f.values) {
+			f.below++
+			continue
+		}
+		switch {
+		case broken:
+			return Row{}, refuse(line, f.values[0], brokenQuotes)
+		case f.count < f.keep:
+			return Row{}, refuse(line, bytes.Join(f.values, []byte{f.sign}), tooShort)
+		case f.surplus:
+			return Row{}, refuse(line, bytes.Join(f.values, []byte{f.sign}), tooLong)
+		}
+		if f.sensor != nil && f.wanted != "" && string(bytes.TrimSpace(f.values[f.sensor.index])) != f.wanted {
+			continue
+		}
+		return f.row(line)
 	}
-	switch {
-	case broken:
-		return Row{}, refuse(line, f.values[0], brokenQuotes)
-	case f.count < f.keep:
-		return Row{}, refuse(line, bytes.Join(f.values, []byte{comma}), tooShort)
-	case f.surplus:
-		return Row{}, refuse(line, bytes.Join(f.values, []byte{comma}), tooLong)
+}
+
+// belowRows reports whether a row after the last one with a time is no row at
+// all: "Average;17.8", "# end". It begins with no figure.
+func belowRows(values [][]byte) bool {
+	for _, value := range values {
+		if value = bytes.TrimSpace(value); len(value) > 0 {
+			return value[0] < '0' || value[0] > '9'
+		}
 	}
-	written := bytes.TrimSpace(f.values[f.time])
-	m, reason := parseMoment(written)
+	return false
+}
+
+func (f *csvFile) row(line int) (Row, error) {
+	m, written, reason := f.moment(f.values, f.order)
 	if reason != "" {
 		return Row{}, refuse(line, written, reason)
 	}
@@ -244,20 +313,46 @@ func (f *csvFile) next() (Row, error) {
 	return f.readingRow(line, written, m)
 }
 
+// moment reads the time of a row, from one column or two.
+func (f *csvFile) moment(values [][]byte, order dateOrder) (m moment, written []byte, reason string) {
+	written = bytes.TrimSpace(values[f.time.date.index])
+	if m, reason = parseAnyMoment(written, order, f.zones); reason != "" || f.time.clock < 0 {
+		return m, written, reason
+	}
+	clock := bytes.TrimSpace(values[f.time.clock])
+	both := func() []byte { return fmt.Appendf(nil, "%s %s", written, clock) }
+	if len(clock) == 0 {
+		return m, both(), noClock
+	}
+	if f.time.hourOnly {
+		hour, ok := parseNumber(clock)
+		if !ok || hour != float64(int(hour)) || hour < 0 || hour > 24 {
+			return m, both(), notAClock
+		}
+		m.hasClock, m.second = true, int(hour)*secondsPerHour
+		return m, nil, ""
+	}
+	if reason = m.anyClock(clock, f.zones); reason != "" {
+		return m, both(), reason
+	}
+	return m, nil, ""
+}
+
 func (f *csvFile) readingRow(line int, written []byte, m moment) (Row, error) {
 	if !m.hasClock {
 		return Row{}, refuse(line, written, noClock)
 	}
-	at, reason := m.instant(f.site)
+	at, reason := f.clocks.instant(m, f.site)
 	if reason != "" {
+		if f.time.clock >= 0 {
+			written = fmt.Appendf(nil, "%s %s", f.values[f.time.date.index], f.values[f.time.clock])
+		}
 		return Row{}, refuse(line, written, reason)
 	}
 	temperatureC, known, reason := f.temperatures[0].read(f.values)
 	if reason != "" {
 		return Row{}, refuse(line, f.values[f.temperatures[0].index], reason)
 	}
-	f.offsets = f.offsets || m.hasOffset
-	f.noOffsets = f.noOffsets || !m.hasOffset
 	return Row{Line: line, Empty: !known, Reading: planner.Reading{At: at, C: temperatureC}}, nil
 }
 
@@ -267,7 +362,7 @@ func (f *csvFile) dailyRow(line int, written []byte, m moment) (Row, error) {
 	if m.hasOffset || m.second != 0 {
 		return Row{}, refuse(line, written, clockInDay)
 	}
-	if m.day < planner.DayMin || m.day > planner.DayMax {
+	if !yearsOK(m.day) {
 		return Row{}, refuse(line, written, yearsOff)
 	}
 	var valuesC [3]float64

@@ -17,9 +17,13 @@ const (
 	mostQuotedLines = 100
 )
 
-// csvReader cuts comma-separated lines into values.
+// separators is what may stand between the values of a row.
+var separators = [...]byte{comma, ';', '\t', '|'}
+
+// csvReader cuts lines into the values between separators.
 type csvReader struct {
 	lines   *lineReader
+	sign    byte     // between two values
 	values  [][]byte // of the row read last, at most keep of them
 	keep    int      // how many values of a row are kept
 	count   int      // how many values the row has
@@ -66,7 +70,7 @@ func (r *csvReader) extent() (length, next, lines int, broken bool, err error) {
 		return 0, 0, 0, false, err
 	}
 	text := r.lines.text(length)
-	if bytes.IndexByte(text, quote) < 0 || !leavesOpen(text) {
+	if bytes.IndexByte(text, quote) < 0 || !r.leavesOpen(text) {
 		return length, next, 1, false, nil
 	}
 	for lines = 2; lines <= mostQuotedLines; lines++ {
@@ -87,10 +91,10 @@ func (r *csvReader) extent() (length, next, lines int, broken bool, err error) {
 }
 
 // leavesOpen reports whether the line ends inside a quoted value.
-func leavesOpen(text []byte) bool {
+func (r *csvReader) leavesOpen(text []byte) bool {
 	for {
 		if len(text) == 0 || text[0] != quote {
-			i := bytes.IndexByte(text, comma)
+			i := bytes.IndexByte(text, r.sign)
 			if i < 0 {
 				return false
 			}
@@ -101,7 +105,7 @@ func leavesOpen(text []byte) bool {
 		if !closed {
 			return true
 		}
-		if len(rest) == 0 || rest[0] != comma {
+		if len(rest) == 0 || rest[0] != r.sign {
 			return false
 		}
 		text = rest[1:]
@@ -134,7 +138,7 @@ func (r *csvReader) split(text []byte) (sound bool) {
 		more := false
 		if len(text) > 0 && text[0] == quote {
 			inside, rest, closed, doubled := quoted(text)
-			if !closed || len(rest) > 0 && rest[0] != comma {
+			if !closed || len(rest) > 0 && rest[0] != r.sign {
 				return false
 			}
 			if value = inside; doubled {
@@ -145,7 +149,7 @@ func (r *csvReader) split(text []byte) (sound bool) {
 			}
 		} else {
 			value = text
-			if i := bytes.IndexByte(text, comma); i >= 0 {
+			if i := bytes.IndexByte(text, r.sign); i >= 0 {
 				value, text, more = text[:i], text[i+1:], true
 			}
 			if bytes.IndexByte(value, quote) >= 0 {

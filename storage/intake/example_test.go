@@ -13,11 +13,12 @@ import (
 func ExampleOpen() {
 	content := "time,temp_f,rh\n2024-06-04T05:00,59.0,91\n2024-06-04T06:00,M,90\n2024-06-04T07:00,6l.2,88\n"
 	site := intake.Site{OffsetSeconds: -5 * 3600} // times without an offset are 5 h behind UTC
-	file, err := intake.Open(strings.NewReader(content), site, "")
+	file, err := intake.Open(strings.NewReader(content), site, intake.How{})
 	if err != nil {
 		fmt.Println(err)
 		return
 	}
+	defer file.Close()
 	for {
 		row, err := file.Next()
 		if errors.Is(err, io.EOF) {

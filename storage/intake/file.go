@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"strings"
+	"time"
 	"unicode"
 	"unicode/utf8"
 
@@ -22,6 +23,8 @@ const (
 const (
 	ClockOffset = "offset in the file"
 	ClockSite   = "site standard time"
+	ClockWall   = "the clock on the wall, with summer time"
+	ClockUTC    = "UTC" // or UTC+05:30
 	ClockMixed  = "offset in the file, site standard time where there is none"
 	ClockDates  = "dates only"
 )
@@ -31,6 +34,27 @@ type Site struct {
 	// OffsetSeconds is the site's standard time, east of UTC positive; times
 	// written without an offset are in it, all year.
 	OffsetSeconds int
+	// Zone is where the site's clocks on the wall change; nil when it is not
+	// known.
+	Zone *time.Location
+}
+
+// How is what the file does not say by itself, and somebody did. All of it may
+// be left empty.
+type How struct {
+	// Units is the unit of a file whose header names none.
+	Units planner.Units
+	// Clock is how times without an offset are read: standard, wall, utc, or an
+	// offset like -05:00.
+	Clock string
+	// Dates is the order of dates in figures: d/m/y, m/d/y or y/m/d; of reports
+	// that give the day of the month alone it is the month of the first, 2021-07.
+	Dates string
+	// Sensor names the one that counts of several in a file.
+	Sensor string
+	// UsualSensor and UsualDates are what was said of an earlier file of the
+	// station: they answer a question, and are ignored where there is none.
+	UsualSensor, UsualDates string
 }
 
 // Row is one data row of a file that can be used.
@@ -60,8 +84,18 @@ func (e *RowError) Error() string {
 type File struct {
 	Format string        // Readings or Daily
 	Units  planner.Units // of the file; rows are in °C all the same
-	rows   rowSource
+	// Sensor and Dates are what was said, or remembered, and was needed: to be
+	// remembered for the station. Empty when the file needed no telling.
+	Sensor, Dates string
+	// Notes says in sentences what else was found, left out or taken for granted.
+	Notes []string
+
+	rows  rowSource
+	spool *spool
 }
+
+// Close gives back what the open file holds. It may be called twice.
+func (f *File) Close() error { return f.spool.Close() }
 
 // rowSource is what a format gives back: the rows after the header.
 type rowSource interface {
@@ -74,31 +108,51 @@ type format struct {
 	name string
 	// recognise looks at the file's first bytes, at most headBytes of them.
 	recognise func(head []byte) bool
-	open      func(lines *lineReader, site Site, units planner.Units) (*File, error)
+	open      func(src *spool, site Site, how How) (*File, error)
 }
 
-// formats is the table of formats, asked in order.
+// formats is the table of formats, asked in order; the last takes what is left.
 var formats = []format{
-	{name: "CSV with a header, ISO dates", recognise: recogniseCSV, open: openCSV},
+	{name: "this program's own export", recognise: recogniseExport, open: openExport},
+	{name: "GHCN-Daily, a month a line", recognise: recogniseDly, open: openDly},
+	{name: "GHCN-Daily, a value a line", recognise: recogniseByStation, open: openByStation},
+	{name: "ISD-Lite", recognise: recogniseISDLite, open: openISDLite},
+	{name: "METAR reports", recognise: recogniseMETAR, open: openMETAR},
+	{name: "observations of a service, GeoJSON", recognise: recogniseObservations, open: openObservations},
+	{name: "CSV with a header", recognise: func([]byte) bool { return true }, open: openCSV},
 }
 
 const headerHint = "A first line that works, with commas: time,temp_c for readings, or date,high_c,low_c for daily highs and lows."
 
-// Open reads a station file up to its first data row. units is the unit of a
-// file whose header names none; "" stands for °C. A header that names the other
-// unit than units, one that is not understood, a file that is empty, binary or
-// has a line over 1 MiB is a planner.Problem of the kind Refused; a read error
-// comes back wrapped.
-func Open(content io.Reader, site Site, units planner.Units) (*File, error) {
-	if units != "" && units != planner.Celsius && units != planner.Fahrenheit {
-		return nil, planner.Problemf(planner.Invalid, "units %q are not known", units).
+// Open reads a station file up to its first data row: plain, gzip or a zip of
+// one file. It must be closed. The whole content is read, into a temporary file
+// when it is long, as what its dates, clock and unit are can only be told by
+// all of it. A file that is not understood, empty, binary, packed beyond
+// measure, has a line over 1 MiB, or needs a question answered (see How) is a
+// planner.Problem of the kind Refused, its hint naming the answers; a read
+// error comes back wrapped.
+func Open(content io.Reader, site Site, how How) (*File, error) {
+	if how.Units != "" && how.Units != planner.Celsius && how.Units != planner.Fahrenheit {
+		return nil, planner.Problemf(planner.Invalid, "units %q are not known", how.Units).
 			WithHint("Use units:c or units:f, or leave them out where the header names the unit.")
 	}
 	if site.OffsetSeconds < -maxOffsetSeconds || site.OffsetSeconds > maxOffsetSeconds {
 		return nil, planner.Problemf(planner.Invalid, "an offset of %d seconds from UTC is not on earth", site.OffsetSeconds)
 	}
-	lines := newLineReader(content)
-	head, err := lines.head()
+	src, err := unpack(content)
+	if err != nil {
+		return nil, err
+	}
+	file, err := openFormat(src, site, how)
+	if err != nil {
+		return nil, errors.Join(err, src.Close())
+	}
+	file.spool = src
+	return file, nil
+}
+
+func openFormat(src *spool, site Site, how How) (*File, error) {
+	lines, head, err := src.lines()
 	if err != nil {
 		return nil, err
 	}
@@ -111,11 +165,10 @@ func Open(content io.Reader, site Site, units planner.Units) (*File, error) {
 	}
 	for _, format := range formats {
 		if format.recognise(head) {
-			return format.open(lines, site, units)
+			return format.open(src, site, how)
 		}
 	}
-	return nil, planner.Problemf(planner.Refused, "the first line %q is not a header that can be read", cut(firstLine(head))).
-		WithHint("%s", headerHint)
+	return nil, planner.Problemf(planner.Internal, "no format takes the file")
 }
 
 // Next returns the next row. io.EOF ends the file; a *RowError is a row that

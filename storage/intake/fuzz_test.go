@@ -5,7 +5,6 @@ import (
 	"errors"
 	"io"
 	"os"
-	"path/filepath"
 	"testing"
 
 	"swardbook/planner"
@@ -13,10 +12,10 @@ import (
 )
 
 // FuzzFile holds that whatever comes, reading ends without a panic, rows are
-// valid by planner's own checks and in line order, and refused rows give a
+// valid by planner's own checks and have a line, and refused rows give a
 // reason and a value fit to be shown.
 func FuzzFile(f *testing.F) {
-	paths, err := filepath.Glob(filepath.Join(folder, "*.csv"))
+	paths, err := corpus()
 	if err != nil || len(paths) == 0 {
 		f.Fatalf("no seeds in %s: %v", folder, err)
 	}
@@ -31,12 +30,12 @@ func FuzzFile(f *testing.F) {
 	f.Add([]byte("time,temp_c\n\"\"\"\n\"\n,\"\"\"\"\n"), 0, "c")
 	f.Fuzz(func(t *testing.T, content []byte, hours int, units string) {
 		site := intake.Site{OffsetSeconds: hours % 15 * 3600}
-		file, err := intake.Open(bytes.NewReader(content), site, planner.Units(units))
+		file, err := intake.Open(bytes.NewReader(content), site, intake.How{Units: planner.Units(units)})
 		if err != nil {
 			checkProblem(t, err)
 			return
 		}
-		line, lines := 1, bytes.Count(content, []byte("\n"))+1
+		defer file.Close()
 		for {
 			row, err := file.Next()
 			if errors.Is(err, io.EOF) {
@@ -55,10 +54,9 @@ func FuzzFile(f *testing.F) {
 			default:
 				checkRow(t, row, site)
 			}
-			if row.Line <= line || row.Line > lines {
-				t.Fatalf("line %d after line %d of %d", row.Line, line, lines)
+			if row.Line < 1 {
+				t.Fatalf("line %d", row.Line)
 			}
-			line = row.Line
 		}
 	})
 }

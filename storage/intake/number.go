@@ -3,6 +3,8 @@ package intake
 import (
 	"bytes"
 	"strconv"
+
+	"swardbook/planner"
 )
 
 // tens holds the powers of ten that a float64 holds exactly as far as needed.
@@ -51,7 +53,12 @@ func parseLongNumber(text []byte) (value float64, ok bool) {
 	if len(text) > longestNumber {
 		return 0, false
 	}
-	for _, c := range text {
+	for i, c := range text {
+		if c == ',' && bytes.IndexByte(text, '.') < 0 && bytes.Count(text, []byte{','}) == 1 {
+			plain := bytes.Clone(text)
+			plain[i] = '.'
+			return parseNumber(plain)
+		}
 		if (c < '0' || c > '9') && c != '+' && c != '-' && c != '.' && c != 'e' && c != 'E' {
 			return 0, false
 		}
@@ -60,11 +67,39 @@ func parseLongNumber(text []byte) (value float64, ok bool) {
 	return value, err == nil
 }
 
+// parseMeasured reads a number with its unit behind it or none: 17.8, 17,8,
+// −2.1, 64.0 °F. units is "" without one.
+func parseMeasured(text []byte) (value float64, units planner.Units, ok bool) {
+	if value, ok = parseNumber(text); ok || len(text) == 0 || len(text) > longestNumber {
+		return value, "", ok
+	}
+	last := text[len(text)-1] | 0x20
+	if last == 'c' || last == 'f' {
+		units = planner.Celsius
+		if last == 'f' {
+			units = planner.Fahrenheit
+		}
+		text = bytes.TrimSpace(text[:len(text)-1])
+		for _, sign := range []string{"°", "º", "\xb0", "deg"} {
+			text = bytes.TrimSuffix(text, []byte(sign))
+		}
+		text = bytes.TrimSpace(text)
+	}
+	for _, minus := range []string{"\u2212", "\u2013", "\x96"} {
+		if rest, found := bytes.CutPrefix(text, []byte(minus)); found {
+			value, ok = parseNumber(rest)
+			return -value, units, ok && rest[0] != '-' && rest[0] != '+'
+		}
+	}
+	value, ok = parseNumber(text)
+	return value, units, ok
+}
+
 // missingNumber knows the numbers by which station files say "no value" (common
 // practice); none is a temperature on earth in either unit.
 func missingNumber(value float64) bool {
 	switch value {
-	case 9999, -9999, 999.9, -999.9, 999, -999:
+	case 9999, -9999, 999.9, -999.9, 999, -999, 9999.9, -9999.9, 999.99, -999.99, -99.99, -99.9, 32767, -32768, -7999, 6999:
 		return true
 	}
 	return false
@@ -72,11 +107,14 @@ func missingNumber(value float64) bool {
 
 // missingWord reports whether the text says "no value", in upper or lower case.
 func missingWord(text []byte) bool {
-	if len(text) > 4 {
+	if len(bytes.Trim(text, "-/*.?#")) == 0 {
+		return true // "---", "////", "***"
+	}
+	if len(text) > 7 {
 		return false
 	}
 	switch string(bytes.ToLower(text)) {
-	case "", "-", "na", "n/a", "nan", "null", "none", "m":
+	case "na", "n/a", "#n/a", "n.a.", "nan", "null", "none", "m", "nd", "n.d.", "err", "error", "fault", "missing", "ninan", "-nan", "\u2014", "\u2013":
 		return true
 	}
 	return false

@@ -117,7 +117,7 @@ func BenchmarkMillionReadings(b *testing.B) {
 	content := million(rows)
 	b.SetBytes(int64(len(content)))
 	for b.Loop() {
-		file, err := intake.Open(strings.NewReader(content), site, "")
+		file, err := intake.Open(strings.NewReader(content), site, intake.How{})
 		if err != nil {
 			b.Fatal(err)
 		}
@@ -131,6 +131,9 @@ func BenchmarkMillionReadings(b *testing.B) {
 				b.Fatal(err)
 			}
 			taken++
+		}
+		if err := file.Close(); err != nil {
+			b.Fatal(err)
 		}
 		if taken != rows {
 			b.Fatalf("%d rows", taken)

@@ -18,6 +18,8 @@ type ImportAbout struct {
 	Rows     int    // data rows of the file
 	Empty    int    // rows whose value the file says is missing
 	Refused  int    // rows that could not be used
+	Sensor   string // what was said of the file and is remembered; "" for nothing
+	Dates    string
 }
 
 // MergeReport says what a merge did.
@@ -119,6 +121,9 @@ func (m *merge) run(ctx context.Context) error {
 		return err
 	}
 	for i, table := range weatherTables {
+		if err := m.noteSame(ctx, table, rows[i]); err != nil {
+			return err
+		}
 		if err := m.move(ctx, table, rows[i]); err != nil {
 			return err
 		}
@@ -180,9 +185,9 @@ func (m *merge) addImport(ctx context.Context) (err error) {
 		return err
 	}
 	_, err = m.on.ExecContext(ctx, `INSERT INTO import (team, id, station, change, file_name, sha256, units, clock, format,
-		at, who, rows, new, changed, same, empty, refused) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
+		at, who, rows, new, changed, same, empty, refused, sensor, dates) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
 		m.team, r.ImportID, m.station, change, a.FileName, a.SHA256, a.Units, a.Clock, a.Format,
-		m.stamp.At.Unix(), m.stamp.By, a.Rows, r.New, r.Changed, r.Same, a.Empty, a.Refused)
+		m.stamp.At.Unix(), m.stamp.By, a.Rows, r.New, r.Changed, r.Same, a.Empty, a.Refused, a.Sensor, a.Dates)
 	return err
 }
 

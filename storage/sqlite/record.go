@@ -1,67 +1,84 @@
 package sqlite
 
 import (
+	"cmp"
 	"context"
 	"database/sql"
 	"errors"
 	"fmt"
+	"slices"
 
 	"swardbook/planner"
 )
 
-// firstStation picks the station that gives a site's record: the first by
-// rank, then the one added first.
-const firstStation = `SELECT id, revision FROM station WHERE team = ?1 AND site = ?2 AND archived = 0 ORDER BY rank, id LIMIT 1`
-
-// Record returns the whole weather record of the site: that of its first
-// station by rank, contiguous from the first to the last day of which anything
-// is known, the days between without a row as an empty DayFacts. A site
-// without a station has an empty record of revision 0, a station without
-// readings an empty record of its own revision.
+// Record returns the whole weather record of the site: that of its stations by
+// rank, then in the order added, joined by planner.JoinStations; contiguous from
+// the first to the last day of which anything is known, the days between without
+// a row as an empty DayFacts. A site without a station has an empty record of
+// revision 0, stations without readings an empty record of their revision.
 //
-// A revision is given to one state of one station's record: another station
-// coming first, readings merged and a day rule added each give another one.
+// A revision is given to one state of a site's record: a station added, dropped,
+// renamed or ranked anew, readings merged or withdrawn and a day rule added each
+// give another one.
 func (t *Team) Record(ctx context.Context, site planner.SiteID) (planner.Record, error) {
-	const step = "read the record"
-	rows, err := t.db.reader.QueryContext(ctx, `WITH first_station AS (`+firstStation+`)
-		SELECT first_station.revision, day, `+factColumns+` FROM first_station LEFT JOIN day_fact
-		ON day_fact.team = ?1 AND day_fact.station = first_station.id ORDER BY day`, t.id, site)
-	if err != nil {
-		return planner.Record{}, storeError(step, err)
-	}
-	defer rows.Close()
 	var record planner.Record
-	for rows.Next() {
-		if err := addFacts(&record, rows); err != nil {
-			return planner.Record{}, storeError(step, err)
+	err := t.db.read(ctx, "read the record", func(conn *sql.Conn) (err error) {
+		if record.Revision, err = siteRevision(ctx, conn, t.id, site); err != nil {
+			return err
 		}
-	}
-	if err := rows.Err(); err != nil {
-		return planner.Record{}, storeError(step, err)
+		open, err := stations{}.list(ctx, conn, t.id, `site = ? AND archived = 0`, site)
+		if err != nil {
+			return err
+		}
+		slices.SortStableFunc(open, func(a, b planner.Station) int { return cmp.Compare(a.Rank, b.Rank) })
+		var ranked []planner.StationFacts
+		for _, station := range open {
+			facts, err := stationFacts(ctx, conn, t.id, station.ID)
+			if err != nil {
+				return fmt.Errorf("station %s: %w", station.Name, err)
+			}
+			ranked = append(ranked, planner.StationFacts{Name: station.Name, Facts: facts})
+		}
+		record.Facts = planner.JoinStations(ranked)
+		return nil
+	})
+	if err != nil {
+		return planner.Record{}, err
 	}
 	return record, nil
 }
 
-// addFacts adds the row's day, and an empty one for each day left out before it.
-func addFacts(record *planner.Record, rows *sql.Rows) error {
-	var row factRow
-	if err := row.scan(rows, &record.Revision); err != nil {
-		return err
-	}
-	if !row.day.Valid {
-		return nil // a station without readings
-	}
-	facts, err := row.facts()
+// siteRevision is the newest revision of the site's stations, dropped ones
+// too: numbers are never given twice, so that it moves with every one of them.
+func siteRevision(ctx context.Context, on session, team int64, site planner.SiteID) (revision int64, err error) {
+	err = on.QueryRowContext(ctx, `SELECT coalesce(max(revision), 0) FROM station WHERE team = ? AND site = ?`, team, site).Scan(&revision)
+	return revision, err
+}
+
+// stationFacts reads the facts of one station, and an empty day for each that
+// is left out between two.
+func stationFacts(ctx context.Context, on session, team int64, station planner.StationID) ([]planner.DayFacts, error) {
+	rows, err := on.QueryContext(ctx, `SELECT day, `+factColumns+` FROM day_fact WHERE team = ? AND station = ? ORDER BY day`, team, station)
 	if err != nil {
-		return fmt.Errorf("day %d: %w", row.day.Int64, err)
+		return nil, err
 	}
-	if last, ok := record.Last(); ok {
-		for day := last + 1; day < facts.Day; day++ {
-			record.Facts = append(record.Facts, planner.DayFacts{Day: day})
+	defer rows.Close()
+	var all []planner.DayFacts
+	for rows.Next() {
+		var row factRow
+		if err := row.scan(rows); err != nil {
+			return nil, err
 		}
+		facts, err := row.facts()
+		if err != nil {
+			return nil, fmt.Errorf("day %d: %w", row.day.Int64, err)
+		}
+		for n := len(all); n > 0 && all[n-1].Day+1 < facts.Day; n++ {
+			all = append(all, planner.DayFacts{Day: all[n-1].Day + 1})
+		}
+		all = append(all, facts)
 	}
-	record.Facts = append(record.Facts, facts)
-	return nil
+	return all, rows.Err()
 }
 
 // factRow is a row of day_fact as it is stored.
@@ -76,8 +93,8 @@ type factRow struct {
 	doubt              sql.NullString
 }
 
-func (r *factRow) scan(rows *sql.Rows, revision *int64) error {
-	return rows.Scan(revision, &r.day, &r.highC, &r.lowC, &r.extremesFrom, &r.meanC, &r.published,
+func (r *factRow) scan(rows *sql.Rows) error {
+	return rows.Scan(&r.day, &r.highC, &r.lowC, &r.extremesFrom, &r.meanC, &r.published,
 		&r.real, &r.bridged, &r.wanted, &r.hoursC, &r.doubt)
 }
 
@@ -107,10 +124,6 @@ func (r *factRow) facts() (planner.DayFacts, error) {
 
 // Revision returns the Revision the record has now, without loading it.
 func (t *Team) Revision(ctx context.Context, site planner.SiteID) (int64, error) {
-	var station, revision int64
-	err := t.db.reader.QueryRowContext(ctx, firstStation, t.id, site).Scan(&station, &revision)
-	if errors.Is(err, sql.ErrNoRows) {
-		return 0, nil
-	}
+	revision, err := siteRevision(ctx, t.db.reader, t.id, site)
 	return revision, storeError("read the revision", err)
 }

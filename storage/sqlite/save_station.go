@@ -26,7 +26,7 @@ func (stations) withID(station planner.Station, id int64) planner.Station {
 func (stations) write(ctx context.Context, s saving, before, after planner.Station) error {
 	err := s.putNamed(ctx, named{noun: after, name: after.Name, archived: after.Archived,
 		parent: "site", was: int64(before.Site), is: int64(after.Site)}, column{"rank", after.Rank})
-	if err != nil || before.ID != 0 {
+	if err != nil || before == after {
 		return err
 	}
 	return bumpRevision(ctx, s.on, s.team, after.ID)

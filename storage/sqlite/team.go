@@ -22,6 +22,9 @@ var (
 	_ planner.Recorder = (*Team)(nil)
 )
 
+// ID is the team's own number, which is never given to another one.
+func (t *Team) ID() int64 { return t.id }
+
 // Team returns the team that the platform knows under the outside id, and adds
 // it when there is none. Case and surrounding spaces do not count; an empty
 // platform or id is a Missing problem.

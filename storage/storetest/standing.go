@@ -152,22 +152,26 @@ func testFirstStation(t *testing.T, newTeam func(string) Store) {
 		load(t, store, station.ID, File{Readings: readings})
 		facts[station.ID] = built(site, readings, nil)
 	}
-	check := func(station planner.StationID) {
+	check := func(ranked ...planner.Station) {
 		t.Helper()
 		got := record(t, store, site.ID)
-		want(t, "the record", got.Facts, facts[station])
+		var all []planner.StationFacts
+		for _, station := range ranked {
+			all = append(all, planner.StationFacts{Name: station.Name, Facts: facts[station.ID]})
+		}
+		want(t, "the record", got.Facts, planner.JoinStations(all))
 		if revisions[got.Revision] {
 			t.Errorf("two stations' records have revision %d", got.Revision)
 		}
 		revisions[got.Revision] = true
 	}
-	check(first.ID)
+	check(first, equal, second)
 	first.Rank = 3
 	save(t, store, first)
-	check(equal.ID)
+	check(equal, second, first)
 	equal.Archived = true
 	save(t, store, equal)
-	check(second.ID)
+	check(second, first)
 }
 
 func testRevision(t *testing.T, newTeam func(string) Store) {
@@ -212,14 +216,15 @@ func testRevision(t *testing.T, newTeam func(string) Store) {
 	check("a day rule", true)
 	g.site.Name = "Quillmere North"
 	save(t, store, g.site)
+	check("a new name of the site", false)
 	g.station.Name = "shed"
 	save(t, store, g.station)
-	check("new names", false)
+	check("a new name of the station", true)
 	g.site.Zone = "America/Chicago"
 	save(t, store, g.site)
 	check("another zone", true)
 	save(t, store, newStation(g.site.ID, "mast", 2))
-	check("a second station", false)
+	check("a second station", true)
 	g.station.Rank = 3
 	save(t, store, g.station)
 	check("the second station first", true)
@@ -258,7 +263,7 @@ func testDayRules(t *testing.T, newTeam func(string) Store) {
 			t.Errorf("%s moved nothing: the check checks nothing", step.name)
 		}
 	}
-	dropped.Archived, dropped.Rank, station.Rank = false, 1, 2
+	dropped.Archived, station.Archived = false, true
 	save(t, store, dropped)
 	save(t, store, station)
 	want(t, "the record of a station that came back", record(t, store, site.ID).Facts, built(site, readings[:100], nil))

@@ -72,9 +72,10 @@ type Repeat struct{ Line, First int }
 //     rows of one time the first stands, a different one is told with its line.
 //  13. The record is what planner.BuildDay makes of all readings, contiguous.
 //  14. Neither the order nor the split of imports moves the record.
-//  15. The record is that of the first station by rank, then id.
-//  16. The revision is another one after every change of the record and for
-//     another station, the same one otherwise, and Revision tells it alone.
+//  15. The record is that of the stations by rank, then id, joined by
+//     planner.JoinStations.
+//  16. The revision is another one after every change of the record or of a
+//     station, the same one otherwise, and Revision tells it alone.
 //  17. A day rule that is added cuts the days again from its day on; a first
 //     rule, or another zone, all days.
 //  18. Writers at the same time lose nothing.
