@@ -182,4 +182,7 @@ type Refusal struct {
 	Line   int    // counted from 1, the header included
 	Value  string // the offending value, cut to a sane length
 	Reason string // why, in words
+	// Alike is how many rows were refused for this reason, this one included; it
+	// stands with the first of them, and is 0 with the others.
+	Alike int
 }

@@ -251,11 +251,12 @@ func (e Entry) Of(work WorkID) (Pass, bool) {
 	return Pass{}, false
 }
 
-// Noun is one thing that is kept: Site, Station, Surface, Work, Total, Closed or
-// Entry, by value. A noun with id 0 is new; dropping one means keeping it archived
+// Noun is one thing that is kept: Site, Station, Surface, Work, Total, Closed,
+// Entry, Post, People or Channel, by value. A noun with id 0 is new; dropping one means keeping it archived
 // (an Entry: undone).
 type Noun interface {
-	// Kind is the noun's word: site, station, surface, work, total, closed, entry.
+	// Kind is the noun's word: site, station, surface, work, total, closed, entry,
+	// post, people, channel.
 	Kind() string
 	// Key is the noun's id, 0 when it is not kept yet.
 	Key() int64

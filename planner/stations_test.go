@@ -127,3 +127,12 @@ func ExampleJoinStations() {
 	// Tue 4 Jun 24/13 ""
 	// Wed 5 Jun 26/15 "workshop"
 }
+
+func TestASumSaysWhichDaysAreAnotherStations(t *testing.T) {
+	t.Parallel()
+	for other, want := range map[int]string{0: "[]", 1: "[1 day from another station]", 3: "[3 days from another station]"} {
+		if got := fmt.Sprint(planner.Sum{Days: 9, Other: other}.Notes()); got != want {
+			t.Errorf("%d days: %s, want %s", other, got, want)
+		}
+	}
+}

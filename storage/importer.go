@@ -57,7 +57,7 @@ func (i *Importer) Import(ctx context.Context, request planner.ImportRequest) (p
 		return planner.ImportReport{}, err
 	}
 	sum := sha256.New()
-	how := intake.How{Units: request.Units, Clock: request.Clock, Dates: request.Dates, Sensor: request.Sensor}
+	how := intake.How{Units: request.Units, Clock: request.Clock, Dates: request.Dates, Sensor: request.Sensor, Stopped: ctx.Err}
 	if how.UsualSensor, how.UsualDates, err = i.team.Remembered(ctx, request.Station); err != nil {
 		return planner.ImportReport{}, err
 	}

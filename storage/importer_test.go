@@ -22,6 +22,7 @@ import (
 
 // ground is a team with one invented site and its station in a file of its own.
 type ground struct {
+	path     string
 	team     *sqlite.Team
 	site     planner.Site
 	station  planner.StationID
@@ -36,7 +37,8 @@ var stamp = planner.Stamp{At: time.Date(2024, 6, 4, 6, 0, 0, 0, time.UTC), By: "
 func newGround(t testing.TB, zone string, offsetHours int) *ground {
 	t.Helper()
 	ctx := t.Context()
-	db, err := sqlite.Open(ctx, filepath.Join(t.TempDir(), "store.db"))
+	path := filepath.Join(t.TempDir(), "store.db")
+	db, err := sqlite.Open(ctx, path)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -52,7 +54,7 @@ func newGround(t testing.TB, zone string, offsetHours int) *ground {
 	rule := planner.DayRule{OffsetSeconds: offsetHours * 3600, Boundary: planner.StandardMidnight}
 	site := save(t, team, planner.Site{Name: "Fernhollow", Lat: 47.6, Lon: -122.3, Zone: zone, Units: planner.Celsius, Rules: planner.Always(rule)})
 	station := save(t, team, planner.Station{Site: site.ID, Name: "Shed", Rank: 1})
-	return &ground{team: team, site: site, station: station.ID, importer: storage.NewImporter(team)}
+	return &ground{path: path, team: team, site: site, station: station.ID, importer: storage.NewImporter(team)}
 }
 
 func save[N planner.Noun](t testing.TB, team *sqlite.Team, noun N) N {
@@ -172,7 +174,7 @@ func TestRepeatsInOneFile(t *testing.T) {
 		t.Fatal(err)
 	}
 	report := g.take(t, "repeats.csv", string(content))
-	want := []planner.Refusal{{Line: 27, Value: "2013-07-01 05:00:00 UTC, 13.5 °C", Reason: "line 7 gives another value for the same time, and stands"}}
+	want := []planner.Refusal{{Line: 27, Value: "2013-07-01 05:00:00 UTC, 13.5 °C", Reason: "line 7 gives another value for the same time, and stands", Alike: 1}}
 	if report.New != 24 || report.Same != 1 || !slices.Equal(report.Refusals, want) {
 		t.Errorf("%+v", report)
 	}
@@ -182,7 +184,7 @@ func TestRepeatsInOneFile(t *testing.T) {
 		days += fmt.Sprintf("%s,20,10\n", planner.DayOf(2013, 8, 1)+planner.Day(i))
 	}
 	report = g.take(t, "days.csv", days+"2013-08-03,20,10\n2013-08-04,21,10\n")
-	want = []planner.Refusal{{Line: 28, Value: "2013-08-04, high 21.0 °C, low 10.0 °C", Reason: "line 5 gives another value for the same time, and stands"}}
+	want = []planner.Refusal{{Line: 28, Value: "2013-08-04, high 21.0 °C, low 10.0 °C", Reason: "line 5 gives another value for the same time, and stands", Alike: 1}}
 	if report.New != 25 || report.Same != 1 || report.Clock != "dates only" || !slices.Equal(report.Refusals, want) {
 		t.Errorf("%+v", report)
 	}
@@ -284,7 +286,7 @@ func TestAFewRefusedRows(t *testing.T) {
 		if report.Refused != row.refused || report.Empty != row.empty || report.New != row.rows-row.refused-row.empty {
 			t.Errorf("%+v: %+v", row, report)
 		}
-		if got := report.Refusals[0]; got != (planner.Refusal{Line: 2, Value: "x", Reason: "the temperature is not a number like 12.5"}) {
+		if got := report.Refusals[0]; got != (planner.Refusal{Line: 2, Value: "x", Reason: "the temperature is not a number like 12.5", Alike: row.refused}) {
 			t.Errorf("first refusal %+v", got)
 		}
 	}

@@ -50,6 +50,7 @@ func (r *refusals) add(text string, row planner.Refusal) {
 func (r *refusals) list() []planner.Refusal {
 	var all []planner.Refusal
 	for _, known := range r.reasons {
+		known.first.Alike = known.count
 		all = append(all, known.first)
 	}
 	all = append(all, r.others[:max(0, min(len(r.others), mostRefusals-len(all)))]...)

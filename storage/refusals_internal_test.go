@@ -28,6 +28,14 @@ func TestRefusalsList(t *testing.T) {
 			r.add(text, row)
 		}
 		list := r.list()
+		counted := 0
+		for i := range list {
+			counted += list[i].Alike
+			list[i].Alike = 0
+		}
+		if counted != len(all) {
+			t.Fatalf("the first rows of all reasons count %d of %d", counted, len(all))
+		}
 		if r.count != len(all) || len(list) != min(len(all), mostRefusals) {
 			t.Fatalf("counted %d and listed %d of %d", r.count, len(list), len(all))
 		}

@@ -6,7 +6,7 @@ import "log/slog"
 // what a user is not shown; nil throws it away.
 func (d Desk) Table(log *slog.Logger) Table {
 	commands := []Command{
-		d.briefing(), d.due(), d.done(), d.whatIf(), d.help(),
+		d.briefing(), d.due(), d.done(), d.whatIf(), d.sheetGet(), d.help(),
 		d.logList(), d.logAmend(), d.logUndo(),
 		d.weatherDay(), d.weatherFile(), d.weatherAhead(), d.weatherUndo(),
 		d.season(), d.whyCompare(),

@@ -68,6 +68,17 @@ func (t Table) completePath(role Role, path []string, last word) []string {
 	return lines
 }
 
+// Begun gives the command that a line begins and the options given so far,
+// whether or not those that are required are among them; false for a line that
+// begins no command.
+func (t Table) Begun(line string) (*Command, Values, bool) {
+	command, words, err := t.locate(line)
+	if err != nil {
+		return nil, Values{}, false
+	}
+	return command, valuesSoFar(command, words), true
+}
+
 // valuesSoFar reads what can be read of the options so far.
 func valuesSoFar(command *Command, words []word) Values {
 	p := parser{command: command, given: make(map[string]value)}

@@ -47,6 +47,10 @@ func (d Desk) runPeopleSet(ctx context.Context, req Request) (reply.Reply, error
 	if crew, _ := setup.RoleOf(nil); people.Role == planner.CrewRole && crew == planner.CrewRole {
 		out.Add(reply.Text("From now on only groups that are crew or lead may use the bot, and who may manage the server."))
 	}
+	if people.Role == planner.LeadRole {
+		out.Add(reply.Text("The chat server shows a lead's commands only to who may manage it. To show them to this group, allow it " +
+			"in the server's settings, under Integrations."))
+	}
 	return d.kept(ctx, req.stamp(nil), people, out)
 }
 

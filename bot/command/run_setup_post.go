@@ -13,16 +13,21 @@ import (
 	"swardbook/planner"
 )
 
-// Kind of post: a command whose answer is posted by itself.
+// Posted is a kind of post: a command whose answer is posted by itself.
 type Posted struct {
 	What  string // its word
 	Path  string // the command
+	Pairs []Pair // the options it is given
 	Dated bool   // takes date: for the day it is posted
+	// Yesterday says that it tells yesterday's weather, and is followed up when
+	// that comes late.
+	Yesterday bool
 }
 
 // posted are the kinds of posts there are; another one is another row.
 var posted = []Posted{
-	{What: "morning", Path: "briefing", Dated: true},
+	{What: "morning", Path: "briefing", Dated: true, Yesterday: true},
+	{What: "evening", Path: "briefing", Pairs: []Pair{{"post", "tomorrow"}}, Dated: true},
 }
 
 // PostKind finds a kind of post by its word.
@@ -38,7 +43,7 @@ func PostKind(what string) (Posted, bool) {
 func (d Desk) setupPost() []Command {
 	number := Option{Name: "number", Kind: Whole, Required: true, Range: Between(1, 1e6), Help: "which post; /setup post list tells", Example: "1"}
 	at := Option{Name: "at", Kind: Text, Help: "when, on the site's clock", Example: "05:30"}
-	what := Option{Name: "what", Kind: Choice, Choices: namesOf(posted, func(p Posted) string { return p.What }), Help: "what is posted; the morning briefing when not given"}
+	what := Option{Name: "what", Kind: Choice, Choices: namesOf(posted, func(p Posted) string { return p.What }), Help: "the morning briefing when not given; evening is about tomorrow"}
 	options := []Option{
 		{Name: "channel", Kind: ChatChannel, Help: "where; the channel you are in when not given"},
 		{Name: "on", Kind: Text, Help: "days of the week with commas; every day when not given", Example: "mon,thu"},
@@ -46,9 +51,9 @@ func (d Desk) setupPost() []Command {
 		d.siteOption(),
 	}
 	return []Command{
-		{Path: "setup post add", Short: "have the briefing posted each morning", Who: Lead,
+		{Path: "setup post add", Short: "have the briefing posted each morning, or tomorrow's each evening", Who: Lead,
 			Options:  append([]Option{required(at), what}, options...),
-			Examples: []string{"/setup post add at:05:30 channel:1010101010101010101"}, Run: d.runPostAdd},
+			Examples: []string{"/setup post add at:05:30 channel:1010101010101010101", "/setup post add at:18:00 what:evening channel:1010101010101010101"}, Run: d.runPostAdd},
 		{Path: "setup post change", Short: "change a post, or take one up again after trouble", Who: Lead,
 			Options:  append([]Option{number, at}, options...),
 			Examples: []string{"/setup post change number:1 at:06:00"}, Run: d.runPostChange},
@@ -69,7 +74,7 @@ func (v visit) minute(fallback int) (int, error) {
 	}
 	match := clockPattern.FindStringSubmatch(strings.TrimSpace(text))
 	if match == nil {
-		return 0, v.Invalid("at", "%q is no time of the day", shorten(text))
+		return 0, planner.Problemf(planner.Invalid, "%q is no time of the day", shorten(text)).WithHint("Give hour and minute. Like: at:05:30")
 	}
 	hour, _ := strconv.Atoi(match[1]) // the pattern holds digits only
 	minute, _ := strconv.Atoi(match[2])
@@ -88,12 +93,12 @@ func (v visit) weekdays(fallback planner.Weekdays) (planner.Weekdays, error) {
 			return len(word) >= 3 && strings.HasPrefix(strings.ToLower(day.String()), word)
 		})
 		if found < 0 {
-			return 0, v.Invalid("on", "%q is no day of the week", shorten(word))
+			return 0, planner.Problemf(planner.Invalid, "%q is no day of the week", shorten(word)).WithHint("Name days with commas. Like: on:mon,thu")
 		}
 		days = append(days, everyWeekday[found])
 	}
 	if len(days) == 0 {
-		return 0, v.Invalid("on", "no day of the week is given")
+		return 0, planner.Problemf(planner.Invalid, "no day of the week is given").WithHint("Name days with commas. Like: on:mon,thu")
 	}
 	return planner.WeekdaysOf(days...), nil
 }

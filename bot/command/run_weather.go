@@ -182,12 +182,20 @@ func ImportReply(station planner.Station, report planner.ImportReport) reply.Rep
 		return r
 	}
 	const most = 5
-	for i, refusal := range report.Refusals {
-		if i == most {
-			r.Add(refusedFile(report))
-			break
+	told := 0
+	for _, refusal := range report.Refusals {
+		if refusal.Alike == 0 || told == most {
+			continue
 		}
-		r.Add(reply.Textf("Line %d: %s (%s)", refusal.Line, refusal.Reason, refusal.Value))
+		line := fmt.Sprintf("Line %d: %s (%s)", refusal.Line, refusal.Reason, refusal.Value)
+		if refusal.Alike > 1 {
+			line += fmt.Sprintf(", and %s like it", counted(refusal.Alike-1, "row", "rows"))
+		}
+		r.Add(reply.Text(line))
+		told++
+	}
+	if told < report.Refused {
+		r.Add(refusedFile(report))
 	}
 	return r
 }

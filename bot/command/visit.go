@@ -14,6 +14,8 @@ type Desk struct {
 	Data planner.DataKeeper
 	// Posts tells what became of posts; nil where nothing is posted.
 	Posts planner.PostLedger
+	// Sheets keeps the sheets that are issued; nil where none are.
+	Sheets planner.SheetKeeper
 	// Version is what /help says the program is.
 	Version string
 }

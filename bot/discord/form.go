@@ -84,8 +84,8 @@ func (b *Bot) missing(line string) *command.MissingOptions {
 // ask asks for options with a form, and for those that are most often given
 // with them. Only text can be asked for: a file is attached to the command.
 func (b *Bot) ask(ctx context.Context, in *discordgo.Interaction, line string, names []string) error {
-	found, given := b.read(line)
-	if found == nil {
+	found, given, ok := b.Table.Begun(line)
+	if !ok {
 		return b.answerProblem(ctx, in, planner.Problemf(planner.NotFound, "this button is too old").WithHint("Type the command instead."))
 	}
 	var inputs []command.Option
@@ -105,7 +105,7 @@ func (b *Bot) ask(ctx context.Context, in *discordgo.Interaction, line string, n
 			WithHint("Type /%s and attach the file.", found.Path))
 	}
 	for _, option := range found.Options {
-		if !option.Required && !slices.Contains(names, option.Name) && !given[option.Name] && option.Name != "site" && len(inputs) < usualInputs {
+		if !option.Required && !slices.Contains(names, option.Name) && !given.Has(option.Name) && option.Name != "site" && len(inputs) < usualInputs {
 			take(option)
 		}
 	}
@@ -121,31 +121,18 @@ func (b *Bot) ask(ctx context.Context, in *discordgo.Interaction, line string, n
 		"custom_id": id, "title": shortened("/"+found.Path, maxFormTitle), "components": inputRows(inputs)}})
 }
 
-// read is the command of a line that may lack options, and which are given.
-func (b *Bot) read(line string) (*command.Command, map[string]bool) {
-	call, err := b.Table.ParseLine(line)
-	found, whole := call.Command, line
-	var missing *command.MissingOptions
-	if errors.As(err, &missing) {
-		found, whole = missing.Command, missing.Line
-	}
-	given := map[string]bool{}
-	if found != nil {
-		for _, option := range found.Options {
-			given[option.Name] = strings.Contains(whole, " "+option.Name+":")
-		}
-	}
-	return found, given
-}
-
 func inputRows(options []command.Option) []discordgo.MessageComponent {
 	var all []discordgo.MessageComponent
 	for _, option := range options {
+		help := option.HelpWithin(maxInputLabel - unitsOf(option.Name) - 2)
 		placeholder := option.Help
-		if option.Example != "" {
-			placeholder += ", like " + option.Example
+		if help == option.Help {
+			placeholder = ""
 		}
-		input := discordgo.TextInput{CustomID: option.Name, Label: shortened(option.Name+": "+option.Help, maxInputLabel), Style: discordgo.TextInputShort,
+		if option.Example != "" {
+			placeholder = strings.TrimPrefix(placeholder+", like "+option.Example, ", ")
+		}
+		input := discordgo.TextInput{CustomID: option.Name, Label: shortened(option.Name+": "+help, maxInputLabel), Style: discordgo.TextInputShort,
 			Placeholder: shortened(placeholder, maxPlaceholder), Required: option.Required, MaxLength: 1000}
 		if option.Kind == command.Text && !option.Required {
 			input.Style = discordgo.TextInputParagraph

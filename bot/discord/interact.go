@@ -209,7 +209,46 @@ func (b *Bot) execute(ctx context.Context, in *discordgo.Interaction, job job) (
 		return reply.Reply{}, team, err
 	}
 	r, err := team.Table.Run(ctx, req)
+	if lacks := b.lacking(in, req.Line); err == nil && lacks != "" {
+		r.Add(reply.Text(lacks))
+	}
 	return r, team, err
+}
+
+// posting are the permissions that posts take, in the order and the words of
+// the service's own settings.
+var posting = []struct {
+	bit  int64
+	name string
+}{
+	{discordgo.PermissionViewChannel, "View Channel"}, {discordgo.PermissionSendMessages, "Send Messages"},
+	{discordgo.PermissionEmbedLinks, "Embed Links"}, {discordgo.PermissionAttachFiles, "Attach Files"},
+	{discordgo.PermissionReadMessageHistory, "Read Message History"},
+}
+
+// lacking says which permissions the bot lacks where it was asked to do
+// something in the channel the command came from: better told now than at the
+// first post.
+func (b *Bot) lacking(in *discordgo.Interaction, line string) string {
+	call, err := b.Table.ParseLine(line)
+	if err != nil || in.AppPermissions&discordgo.PermissionAdministrator != 0 {
+		return ""
+	}
+	for _, option := range call.Command.Options {
+		if channel, given := call.Values.Text(option.Name); option.Kind != command.ChatChannel || given && channel != in.ChannelID {
+			continue
+		}
+		var lacks []string
+		for _, one := range posting {
+			if in.AppPermissions&one.bit == 0 {
+				lacks = append(lacks, one.name)
+			}
+		}
+		if len(lacks) > 0 {
+			return "In this channel I still lack: " + strings.Join(lacks, ", ") + ". Without these a post is not sent."
+		}
+	}
+	return ""
 }
 
 // request is the command line with its caller, its time and its site.
@@ -244,7 +283,7 @@ func callerOf(member *discordgo.Member, setup planner.Setup) (command.Caller, er
 		name = member.User.Username
 	}
 	caller := command.Caller{ID: member.User.ID, Name: plainLine(name)}
-	if member.Permissions&(discordgo.PermissionManageServer|discordgo.PermissionAdministrator) != 0 {
+	if member.Permissions&(discordgo.PermissionManageGuild|discordgo.PermissionAdministrator) != 0 {
 		caller.Role = command.Lead
 		return caller, nil
 	}
@@ -266,18 +305,11 @@ func (b *Bot) inChannel(line string, setup planner.Setup, channel string) string
 	if !bound {
 		return line
 	}
-	call, err := b.Table.ParseLine(line)
-	var missing *command.MissingOptions
-	found := call.Command
-	if err != nil {
-		if !errors.As(err, &missing) {
-			return line
-		}
-		found = missing.Command
-	} else if call.Values.Has("site") {
+	found, given, ok := b.Table.Begun(line)
+	if !ok || given.Has("site") {
 		return line
 	}
-	if option, ok := found.Option("site"); !ok || option.Kind != command.Name || strings.Contains(line, " site:") {
+	if option, takes := found.Option("site"); !takes || option.Kind != command.Name {
 		return line
 	}
 	return line + " " + strings.TrimPrefix(command.Line("", command.Pair{Name: "site", Value: site.Name}), "/ ")

@@ -260,7 +260,7 @@ func TestFileHosts(t *testing.T) {
 		"file:///etc/passwd":                                    false,
 		"//cdn.discordapp.com/a":                                false,
 		"https://cdn.discordapp.com%2eexample.org/a":            false,
-		"":                                                      false,
+		"": false,
 	} {
 		if err := fromFileHost(address); (err == nil) != fine {
 			t.Errorf("%q: %v", address, err)

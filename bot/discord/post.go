@@ -23,8 +23,14 @@ type Channels struct {
 
 var _ schedule.Channels = Channels{}
 
-// needs are the permissions that a post takes, in the service's words.
-const needs = "View Channel, Send Messages, Embed Links, Attach Files and Read Message History"
+// needs names the permissions that a post takes.
+func needs() string {
+	names := make([]string, len(posting))
+	for i, one := range posting {
+		names[i] = one.name
+	}
+	return strings.Join(names, ", ")
+}
 
 // refusal turns an answer that another try would not change into a
 // *schedule.Refused; any other error is returned as it is: the outcome is
@@ -35,7 +41,7 @@ func refusal(err error) error {
 	case code == codeUnknownChannel:
 		return &schedule.Refused{Reason: "the channel is gone", Cause: err, Lasting: true}
 	case code == codeNoAccess, code == codeNoPermission, status == http.StatusForbidden:
-		return &schedule.Refused{Reason: "the bot lacks a permission in the channel: it needs " + needs, Cause: err, Lasting: true}
+		return &schedule.Refused{Reason: "the bot lacks a permission in the channel: it needs " + needs(), Cause: err, Lasting: true}
 	case code != 0 && status == http.StatusBadRequest, status == http.StatusRequestEntityTooLarge:
 		return &schedule.Refused{Reason: "the chat service refused the message", Cause: err}
 	}

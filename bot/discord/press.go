@@ -20,6 +20,9 @@ const (
 	formLine    = 'f' // a form: run it with what was filled in
 )
 
+// kinds are all of these.
+const kinds = "rynaf"
+
 // press is what a button or a form stands for. It holds no right: that is
 // looked up when somebody presses it.
 type press struct {
@@ -51,7 +54,7 @@ func decode(ctx context.Context, lines func(context.Context) (planner.LineKeeper
 	old := planner.Problemf(planner.NotFound, "this button is too old").WithHint("Type the command instead.")
 	head, rest, found := strings.Cut(id, ":")
 	extra, line, both := strings.Cut(rest, ":")
-	if !found || !both || len(head) != 2 || head[1:] != pressVersion {
+	if !found || !both || len(head) != 2 || head[1:] != pressVersion || !strings.Contains(kinds, head[:1]) {
 		return press{}, old
 	}
 	p := press{kind: rune(head[0]), extra: extra, line: line}

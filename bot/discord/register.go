@@ -98,7 +98,7 @@ func rooted(table command.Table, name string, help int) *discordgo.ApplicationCo
 		}
 	}
 	if hidden {
-		manage := int64(discordgo.PermissionManageServer)
+		manage := int64(discordgo.PermissionManageGuild)
 		root.DefaultMemberPermissions = &manage
 	}
 	return root

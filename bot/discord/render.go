@@ -113,8 +113,9 @@ type page struct {
 	messages []message
 	text     strings.Builder // of the embed under way
 	title    string
-	units    int // of the message so far, without the text under way
-	bytes    int // of the message's files
+	headed   bool // the last paragraph names the next
+	units    int  // of the message so far, without the text under way
+	bytes    int  // of the message's files
 	tables   int
 	buttons  []labelled
 }
@@ -128,7 +129,7 @@ func (p *page) blocks(r reply.Reply) {
 				p.title = plainLine(string(b))
 				continue
 			}
-			p.add("**" + escape(plainLine(string(b))) + "**")
+			p.heading(string(b))
 		case reply.Text:
 			p.add(escape(string(b)))
 		case reply.Fields:
@@ -196,10 +197,21 @@ func (p *page) add(text string) {
 			p.endEmbed()
 		}
 		if p.text.Len() > 0 {
-			p.text.WriteString("\n\n")
+			gap := "\n\n"
+			if p.headed {
+				gap = "\n"
+			}
+			p.text.WriteString(gap)
 		}
+		p.headed = false
 		p.text.WriteString(part)
 	}
+}
+
+// heading names what follows, close above it.
+func (p *page) heading(text string) {
+	p.add("**" + escape(plainLine(text)) + "**")
+	p.headed = true
 }
 
 // endEmbed closes the embed under way, in a new message if this one is full.
@@ -246,7 +258,7 @@ func (p *page) table(t reply.Table) {
 	t.Title = ""
 	block := "```\n" + code(plain.Text(reply.Of(t), tableWidth)) + "```"
 	if title != "" {
-		p.add("**" + escape(plainLine(title)) + "**")
+		p.heading(title)
 	}
 	if unitsOf(block) <= mostTable {
 		p.add(block)

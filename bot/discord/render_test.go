@@ -42,9 +42,9 @@ func TestRenderShowsEveryBlock(t *testing.T) {
 	}
 	want := "Quillmere, Tue 4 Jun\n" +
 		"greens feed: due\n2 days late\\_r: see <#1010101010101010101>\n\n" +
-		"**Yesterday**\n\n" +
+		"**Yesterday**\n" +
 		"**high** 21.4 °C\n**note**\ndry\nwindy\n\n" +
-		"**Growth**\n\n" +
+		"**Growth**\n" +
 		"```\nsurface  potential\ngreens        88 %\nteˋes         91 %\n```\n" +
 		"\n\nattachment://plan.png\n" +
 		"\n**Log this?**\n"
@@ -174,7 +174,7 @@ func TestPress(t *testing.T) {
 }
 
 func FuzzDecode(f *testing.F) {
-	for _, seed := range []string{"r1::/due", "r1:1.2.0:/due", "a1:x,y:#7", "::", "", "r1", "é1::/due"} {
+	for _, seed := range []string{"r1::/due", "r1:1.2.0:/due", "a1:x,y:#7", "::", "", "r1", "é1::/due", "\xb51::"} {
 		f.Add(seed)
 	}
 	bot := &Bot{Config: Config{House: &building{teams: map[string]*Team{home: {Lines: &lines{}}}}}}

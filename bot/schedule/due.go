@@ -91,52 +91,59 @@ func rowsOf(ledger []planner.Posting, post planner.PostID) []planner.Posting {
 }
 
 func dueOf(post Timed, rows []planner.Posting, now time.Time) []Task {
-	var tasks []Task
-	window := time.Duration(post.WindowMinutes) * time.Minute
-	today := planner.DayIn(now, post.Zone)
+	tasks, missed := begun(post, rows, now)
 	first := post.From
-	var missed []planner.Day
-	for i, row := range rows {
+	for _, row := range rows {
 		first = max(first, row.Day+1)
-		switch row.State {
-		case planner.Claimed:
-			due, _ := DueAt(row.Day, post.Minute, post.Zone)
+	}
+	return append(tasks, fresh(post, first, missed, now)...)
+}
+
+// begun are the tasks of days that have a row, and the days without a post
+// since the last one that went out.
+func begun(post Timed, rows []planner.Posting, now time.Time) (tasks []Task, missed []planner.Day) {
+	today := planner.DayIn(now, post.Zone)
+	for i, row := range rows {
+		due, _ := DueAt(row.Day, post.Minute, post.Zone)
+		followed := i+1 < len(rows) && rows[i+1].Day == row.Day
+		task := Task{Post: post.Post, Day: row.Day, Part: row.Part, Due: due, Row: row}
+		switch {
+		case row.State == planner.Claimed:
+			task.Do, task.Missed = Settle, slices.Clone(missed)
+			task.Late = row.Part == 0 && now.Sub(due) > lateAfter
 			// A follow-up may come until the day is over.
-			expired := row.Part == 0 && now.Sub(due) > window || row.Part == 1 && row.Day < today
-			tasks = append(tasks, Task{Post: post.Post, Day: row.Day, Part: row.Part, Do: Settle, Due: due,
-				Late: row.Part == 0 && now.Sub(due) > lateAfter, Expired: expired, Missed: slices.Clone(missed), Row: row})
-		case planner.GivenUp:
-			if row.Part == 0 {
-				missed = append(missed, row.Day)
-			}
-		case planner.Sent:
-			if row.Part == 0 {
-				missed = nil
-			}
-			followed := i+1 < len(rows) && rows[i+1].Day == row.Day
-			if row.Part == 0 && row.Partial && row.Day == today && !followed {
-				due, _ := DueAt(row.Day, post.Minute, post.Zone)
-				tasks = append(tasks, Task{Post: post.Post, Day: row.Day, Part: 1, Do: FollowUp, Due: due, Row: row})
+			task.Expired = row.Part == 0 && now.Sub(due) > post.window() || row.Part == 1 && row.Day < today
+			tasks = append(tasks, task)
+		case row.Part != 0:
+		case row.State == planner.GivenUp:
+			missed = append(missed, row.Day)
+		case row.State == planner.Sent:
+			missed = nil
+			if row.Partial && row.Day == today && !followed {
+				task.Do, task.Part = FollowUp, 1
+				tasks = append(tasks, task)
 			}
 		}
 	}
-	for day, n := first, 0; day <= today && n < mostDays; day++ {
-		if !post.On.Has(day.Weekday()) {
-			continue
-		}
+	return tasks, missed
+}
+
+// fresh are the tasks of days from the first on, which have no row yet.
+func fresh(post Timed, first planner.Day, missed []planner.Day, now time.Time) (tasks []Task) {
+	today := planner.DayIn(now, post.Zone)
+	for day := first; day <= today && len(tasks) < mostDays; day++ {
 		due, exists := DueAt(day, post.Minute, post.Zone)
-		if !exists {
+		if !exists || !post.On.Has(day.Weekday()) {
 			continue
 		}
 		if due.After(now) {
 			break
 		}
-		n++
 		task := Task{Post: post.Post, Day: day, Do: Send, Due: due, Late: now.Sub(due) > lateAfter, Missed: slices.Clone(missed)}
 		switch {
 		case post.Trouble != "":
 			task.Do, task.Reason = Miss, post.Trouble
-		case now.Sub(due) > window:
+		case now.Sub(due) > post.window():
 			task.Do, task.Reason = Miss, "not running at "+post.Clock()+", nor within "+hours(post.WindowMinutes)+" after"
 		}
 		if task.Do == Miss {
@@ -146,6 +153,8 @@ func dueOf(post Timed, rows []planner.Posting, now time.Time) []Task {
 	}
 	return tasks
 }
+
+func (t Timed) window() time.Duration { return time.Duration(t.WindowMinutes) * time.Minute }
 
 func hours(minutes int) string {
 	if minutes%60 == 0 {

@@ -157,6 +157,12 @@ func (r *Runner) do(ctx context.Context, task Task, now time.Time) error {
 		return nil
 	case Settle:
 		return r.settle(ctx, task, now)
+	case Send:
+		whole, err := r.Writer.Whole(ctx, task.Post, task.Day)
+		if err != nil {
+			return err
+		}
+		row.Partial = !whole // so that a crash does not lose the follow-up
 	case FollowUp:
 		whole, err := r.Writer.Whole(ctx, task.Post, task.Day)
 		if err != nil || !whole {
@@ -182,16 +188,9 @@ func (r *Runner) settle(ctx context.Context, task Task, now time.Time) error {
 		return r.giveUp(ctx, task, now, refused)
 	case err != nil:
 		return fmt.Errorf("look into the channel: %w", err) // the next tick looks again
-	case found && false:
+	case found:
 		row := task.Row
-		row.State, row.At, row.Message = planner.Sent, now, message
-		if row.Part == 0 && !row.Partial {
-			// Whether it lacked weather was lost with the crash; if it did not,
-			// the follow-up finds nothing to add and is not sent.
-			if whole, err := r.Writer.Whole(ctx, task.Post, task.Day); err == nil {
-				row.Partial = !whole
-			}
-		}
+		row.State, row.At, row.Message, row.Reason = planner.Sent, now, message, ""
 		return r.record(ctx, row)
 	case task.Expired:
 		reason := "could not be sent by " + task.Due.Add(time.Duration(task.Post.WindowMinutes)*time.Minute).UTC().Format("15:04") + " UTC"

@@ -3,6 +3,7 @@ package schedule
 import (
 	"context"
 	"fmt"
+	"slices"
 	"strings"
 	"time"
 
@@ -31,10 +32,11 @@ func (d Desk) Compose(ctx context.Context, task Task, now time.Time) (Content, e
 		return Content{}, planner.Problemf(planner.Invalid, "%q is nothing that can be posted", task.Post.What)
 	}
 	one := len(setup.Sites) == 1
-	line := siteLine(kind.Path, site, one)
+	pairs := slices.Clone(kind.Pairs)
 	if kind.Dated {
-		line += " date:" + task.Day.String()
+		pairs = append(pairs, command.Pair{Name: "date", Value: task.Day.String()})
 	}
+	line := siteLine(kind.Path, site, one, pairs...)
 	r, err := d.Table.Run(ctx, command.Request{
 		Caller: command.Caller{ID: "post", Name: By, Role: command.Lead}, Now: now, Line: line, Confirmed: true})
 	if err != nil {
@@ -46,7 +48,7 @@ func (d Desk) Compose(ctx context.Context, task Task, now time.Time) (Content, e
 	}
 	partial := !whole
 	if notes := notes(task, partial, site); len(notes) > 0 {
-		r.Blocks = append([]reply.Block{reply.Text(strings.Join(notes, "\n"))}, r.Blocks...)
+		r.Blocks = slices.Insert(r.Blocks, underHeading(r.Blocks), reply.Block(reply.Text(strings.Join(notes, "\n"))))
 	}
 	r.Private, r.Confirm = false, nil
 	r.Blocks = append(withoutActions(r.Blocks), d.actions(site, one))
@@ -67,8 +69,12 @@ func (d Desk) site(ctx context.Context, post planner.Post) (planner.Setup, plann
 }
 
 // Whole reports whether the day before has what the site's record has of its
-// days: hourly readings if there are any, a high and a low in any case.
+// days: hourly readings if there are any, a high and a low in any case. A post
+// that does not tell of yesterday lacks nothing.
 func (d Desk) Whole(ctx context.Context, post planner.Post, day planner.Day) (bool, error) {
+	if kind, ok := command.PostKind(post.What); ok && !kind.Yesterday {
+		return true, nil
+	}
 	record, err := d.Book.Record(ctx, post.Site)
 	if err != nil {
 		return false, err
@@ -82,11 +88,11 @@ func (d Desk) Whole(ctx context.Context, post planner.Post, day planner.Day) (bo
 }
 
 // siteLine is a command about the site; of a team's only site it need not say so.
-func siteLine(path string, site planner.Site, only bool) string {
-	if only {
-		return command.Line(path)
+func siteLine(path string, site planner.Site, only bool, pairs ...command.Pair) string {
+	if !only {
+		pairs = append(pairs, command.Pair{Name: "site", Value: site.Name})
 	}
-	return command.Line(path, command.Pair{Name: "site", Value: site.Name})
+	return command.Line(path, pairs...)
 }
 
 // notes are the lines above a post.
@@ -107,6 +113,16 @@ func notes(task Task, partial bool, site planner.Site) []string {
 		lines = append(lines, "Yesterday's weather is not whole yet. Once it is, this post is followed up.")
 	}
 	return lines
+}
+
+// underHeading is the place of the first block that is not the post's heading.
+func underHeading(blocks []reply.Block) int {
+	if len(blocks) > 0 {
+		if _, ok := blocks[0].(reply.Heading); ok {
+			return 1
+		}
+	}
+	return 0
 }
 
 func withoutActions(blocks []reply.Block) []reply.Block {

@@ -54,7 +54,7 @@ func open(ctx context.Context, path, team string) (*house, error) {
 // deskOf is the desk that answers commands from what is kept of a team.
 func deskOf(kept *sqlite.Team) command.Desk {
 	book := planner.NewBook(kept, kept, storage.NewImporter(kept), outlook.Simple{})
-	return command.Desk{Book: book, Data: kept, Posts: kept, Version: version()}
+	return command.Desk{Book: book, Data: kept, Posts: kept, Sheets: kept, Version: version()}
 }
 
 func (h *house) close() error { return h.db.Close() }

@@ -43,7 +43,7 @@ func importCommand(env func(string) string) *cobra.Command {
 			case how.watch != "" && len(args) > 0:
 				return planner.Problemf(planner.Invalid, "Either files or --watch, not both.")
 			case how.watch == "" && len(args) == 0:
-				return planner.Problemf(planner.Missing, "Which file?").WithHint("swardbook import --db course.db station.csv")
+				return planner.Problemf(planner.Missing, "Which file?").WithHint("Name one, like: swardbook import --db course.db station.csv")
 			}
 			return how.run(cmd, env, args)
 		},

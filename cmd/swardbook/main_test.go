@@ -138,7 +138,7 @@ func TestWrongFlags(t *testing.T) {
 		{[]string{"chat", "--db", database, "--as", "boss", "/due"}, "--as crew or --as lead"},
 		{[]string{"chat", "--db", database, "--now", "noon", "/due"}, "2013-07-01T05:30"},
 		{[]string{"chat", "--db", filepath.Join(t.TempDir(), "no", "such", "course.db"), "/due"}, "folder"},
-		{[]string{"import", "--db", database}, "at least 1"},
+		{[]string{"import", "--db", database}, "Which file?"},
 		{[]string{"fly"}, "unknown command"},
 	} {
 		out, errOut, status := program(t, "", row.args...)

@@ -73,6 +73,7 @@ var outside = map[string][]string{
 	"gonum.org/v1/plot":                   {"bot/chart"},
 	"gonum.org/v1/gonum":                  {"planner", "planner/outlook", "planner/reconcile"},
 	"github.com/robfig/cron/v3":           {"bot/schedule", "cmd/swardbook"},
+	"github.com/schollz/progressbar/v3":   {"cmd/swardbook"},
 	"github.com/spf13/cobra":              {"cmd/swardbook"},
 	"github.com/peterh/liner":             {"bot/terminal"},
 	"github.com/mattn/go-runewidth":       {"bot/reply/plain"},

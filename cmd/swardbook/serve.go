@@ -11,6 +11,7 @@ import (
 	"os"
 	"path/filepath"
 	"strings"
+	"sync"
 	"time"
 
 	"github.com/prometheus/client_golang/prometheus"
@@ -30,16 +31,19 @@ type serving struct {
 	db        string
 	token     string // never printed
 	tokenFile string
-	chatURL   string
-	listen    string
-	unit      bool
-	timing    discord.Timing
-	now       func() time.Time
+	// credentials is the folder in which systemd hands credentials over; it is
+	// closed to others, and its files may show a group.
+	credentials string
+	chatURL     string
+	listen      string
+	unit        bool
+	timing      discord.Timing
+	now         func() time.Time
 }
 
 // serveCommand is the bot in a chat server.
 func serveCommand(env func(string) string) *cobra.Command {
-	s := serving{token: env("SWARDBOOK_TOKEN"), chatURL: env("SWARDBOOK_CHAT_URL"), timing: discord.DefaultTiming(), now: time.Now}
+	s := serving{token: env("SWARDBOOK_TOKEN"), chatURL: env("SWARDBOOK_CHAT_URL"), credentials: env("CREDENTIALS_DIRECTORY"), timing: discord.DefaultTiming(), now: time.Now}
 	cmd := &cobra.Command{
 		Use:   "serve",
 		Short: "Be the bot in the team's chat server",
@@ -137,7 +141,11 @@ func (s serving) secret() (string, error) {
 	if err != nil {
 		return "", planner.Problemf(planner.NotFound, "the token file cannot be read: %v", err).WithHint("Name another one with --token-file.")
 	}
-	if info.Mode().Perm()&0o077 != 0 {
+	others := os.FileMode(0o077)
+	if s.credentials != "" && filepath.Dir(s.tokenFile) == filepath.Clean(s.credentials) {
+		others = 0o007
+	}
+	if info.Mode().Perm()&others != 0 {
 		return "", planner.Problemf(planner.Refused, "the token file %s can be read by others.", s.tokenFile).
 			WithHint("Close it: chmod 600 %s. Then make a new token, if anybody else was on the machine.", s.tokenFile)
 	}
@@ -160,11 +168,18 @@ func tick(ctx context.Context, teams *teams, bot *discord.Bot, metrics *discord.
 		log.Error("list servers", "error", err)
 		return
 	}
+	var all sync.WaitGroup
+	places := make(chan struct{}, atOnce)
 	for _, server := range servers {
-		if err := tickTeam(ctx, teams, server, bot, metrics, log, now); err != nil && ctx.Err() == nil {
-			log.Error("posts", "server", server, "error", err)
-		}
+		places <- struct{}{}
+		all.Go(func() {
+			defer func() { <-places }()
+			if err := tickTeam(ctx, teams, server, bot, metrics, log, now); err != nil && ctx.Err() == nil {
+				log.Error("posts", "server", server, "error", err)
+			}
+		})
 	}
+	all.Wait()
 	if now.Minute() == 0 {
 		switch n, err := teams.db.EraseLeft(ctx, now.Add(-grace)); {
 		case err != nil && ctx.Err() == nil:
@@ -174,6 +189,10 @@ func tick(ctx context.Context, teams *teams, bot *discord.Bot, metrics *discord.
 		}
 	}
 }
+
+// atOnce is how many teams' posts are seen to at a time, so that one server's
+// trouble does not keep the others waiting.
+const atOnce = 8
 
 // mostTick bounds the posts of one team in one tick; what is left is settled
 // by the next.
@@ -222,7 +241,7 @@ Wants=network-online.target
 After=network-online.target
 
 [Service]
-ExecStart=%[1]s serve --db %[2]s --token-file ${CREDENTIALS_DIRECTORY}/token --listen 127.0.0.1:9464
+ExecStart=%[1]s serve --db %[2]s --token-file %%d/token --listen 127.0.0.1:9464
 # The token file: owned by root, mode 0600.
 LoadCredential=token:/etc/swardbook/token
 DynamicUser=yes

@@ -1,7 +1,6 @@
 package main
 
 import (
-	"fmt"
 	"os"
 	"path/filepath"
 	"runtime"
@@ -55,7 +54,7 @@ func TestHeapStaysLevel(t *testing.T) {
 				all = append(all, s.fake.Complete(server, channel, worker, "due", fakechat.Option{Name: "surface", Type: 3, Value: "g", Focused: true}))
 				continue
 			}
-			all = append(all, s.fake.Command(server, channel, worker, "help", fakechat.Option{Name: "topic", Type: 3, Value: fmt.Sprint("due")}))
+			all = append(all, s.fake.Command(server, channel, worker, "help", fakechat.Option{Name: "topic", Type: 3, Value: "due"}))
 		}
 		for _, in := range all {
 			if !s.fake.Wait(in, time.Minute) {

@@ -151,6 +151,19 @@ func TestPostMorning(t *testing.T) {
 	}
 }
 
+func TestPostEvening(t *testing.T) {
+	m := newMorning(t)
+	m.weather("2024-06-02")
+	m.type_("/setup post add what:evening at:18:00 channel:" + channel)
+	m.expect(m.tickAt("2024-06-03 05:30"), 1)
+	posts := m.tickAt("2024-06-03 18:00")
+	m.expect(posts, 2, "Tue 4 Jun")
+	if strings.Contains(posts[1], "not whole") {
+		t.Errorf("it speaks of yesterday:\n%s", posts[1])
+	}
+	m.expect(m.tickAt("2024-06-03 18:01"), 2)
+}
+
 func TestPostLateAndMissed(t *testing.T) {
 	m := newMorning(t)
 	m.weather("2024-06-02")

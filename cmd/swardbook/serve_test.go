@@ -358,9 +358,78 @@ func TestServeRefusals(t *testing.T) {
 	}
 }
 
+// What is asked in a channel that is about a site is asked about that site, by
+// command, completion, button and form alike; a site that is named wins.
+func TestChannelIsAboutASite(t *testing.T) {
+	const second = "110000000000000002"
+	s := serveFake(t, filepath.Join(t.TempDir(), "course.db"), fixed(tuesday), nil)
+	s.fake.AddGuild(server, channel, second)
+	s.setUpSite(server, channel, "Quillmere")
+	for _, line := range [][]string{
+		{"setup site add", "name:Elsewhere", "lat:40.69", "lon:-74.17", "zone:America/New_York", "units:c"},
+		{"setup surface add", "name:pitch", "grass:cool", "ceiling:3", "site:Elsewhere"},
+		{"setup work add", "surface:pitch", "name:cut", "counts:days", "target:3", "site:Elsewhere"},
+	} {
+		s.say(server, channel, leader, line[0], line[1:]...)
+	}
+	if got := s.say(server, second, worker, "due"); !strings.Contains(got, "site:") {
+		t.Errorf("it does not ask which: %s", got)
+	}
+	s.say(server, second, leader, "setup channel add", "site:Elsewhere")
+	if got := s.say(server, second, worker, "due"); !strings.Contains(got, "pitch cut") {
+		t.Errorf("command: %s", got)
+	}
+	if got := s.say(server, second, worker, "due", "site:Quillmere"); !strings.Contains(got, "greens regulator") {
+		t.Errorf("named: %s", got)
+	}
+	in := s.fake.Complete(server, second, worker, "due", fakechat.Option{Name: "surface", Type: 3, Value: "", Focused: true})
+	if !s.fake.Wait(in, 10*time.Second) || fmt.Sprint(in.Choices()) != "[pitch]" {
+		t.Errorf("completion: %v", in.Choices())
+	}
+	m := &fakechat.Message{ID: "1", Channel: second, Body: map[string]any{}}
+	if got := s.wait(s.fake.Click(server, second, worker, m, "r1::/due")).Say(); !strings.Contains(got, "pitch cut") {
+		t.Errorf("button: %s", got)
+	}
+	if got := s.wait(s.fake.Submit(server, second, worker, "f1::/done", map[string]string{"surfaces": "pitch", "works": "cut", "note": `a site:Quillmere "note"`})).Say(); !strings.Contains(got, "pitch cut") {
+		t.Errorf("form: %s", got)
+	}
+}
+
+// What the bot lacks in a channel is told when a post is set up, not at the
+// first post.
+func TestLackingPermissions(t *testing.T) {
+	s := serveFake(t, filepath.Join(t.TempDir(), "course.db"), fixed(tuesday), nil)
+	s.setUpSite(server, channel, "Quillmere")
+	if got := s.say(server, channel, leader, "setup post add", "at:05:30"); strings.Contains(got, "lack") {
+		t.Errorf("nothing is lacking: %s", got)
+	}
+	s.fake.SetPermissions(1<<10 | 1<<11)
+	got := s.say(server, channel, leader, "setup post add", "at:05:45")
+	if !strings.Contains(got, "still lack: Embed Links, Attach Files, Read Message History.") {
+		t.Errorf("got %s", got)
+	}
+	if got := s.say(server, channel, worker, "due"); strings.Contains(got, "lack") {
+		t.Errorf("told where it does not matter: %s", got)
+	}
+}
+
+func TestTokenFromSystemd(t *testing.T) {
+	folder := t.TempDir()
+	token := filepath.Join(folder, "token")
+	if err := os.WriteFile(token, []byte("Bot abc.def\n"), 0o440); err != nil {
+		t.Fatal(err)
+	}
+	if got, err := (serving{tokenFile: token, credentials: folder}).secret(); err != nil || got != "abc.def" {
+		t.Errorf("%q, %v", got, err)
+	}
+	if _, err := (serving{tokenFile: token, credentials: "/somewhere"}).secret(); err == nil {
+		t.Error("a group's file was taken")
+	}
+}
+
 func TestServeUnit(t *testing.T) {
 	out, _, status := programWith(t, nil, "serve", "--unit", "--db", "/srv/turf/course.db")
-	for _, want := range []string{"[Service]", "serve --db /srv/turf/course.db", "LoadCredential=token:", "ReadWritePaths=-/srv/turf", "NoNewPrivileges=yes"} {
+	for _, want := range []string{"[Service]", "serve --db /srv/turf/course.db", "LoadCredential=token:", "--token-file %d/token", "ReadWritePaths=-/srv/turf", "NoNewPrivileges=yes"} {
 		if status != 0 || !strings.Contains(out, want) {
 			t.Errorf("status %d, no %q in\n%s", status, want, out)
 		}
@@ -460,6 +529,13 @@ func TestExportAndErase(t *testing.T) {
 	}
 	if got := s.say(otherServer, otherChannel, worker, "due"); !strings.Contains(got, "greens regulator") {
 		t.Errorf("the other server's is gone: %s", got)
+	}
+	// Everything of a server, at once.
+	all := s.wait(s.fake.Command(otherServer, otherChannel, leader, "setup data erase", fakechat.Option{Name: "everything", Type: 5, Value: true}))
+	all = s.wait(s.fake.Click(otherServer, otherChannel, leader, all, all.Button("Erase…")))
+	all = s.wait(s.fake.Click(otherServer, otherChannel, leader, all, all.Button("Yes")))
+	if got := s.say(otherServer, otherChannel, leader, "setup site list"); !strings.Contains(all.Say(), "Erased everything") || strings.Contains(got, "Elsewhere") {
+		t.Errorf("got %s, then %s", all.Say(), got)
 	}
 }
 

@@ -96,7 +96,7 @@ func zoneInName(name string) (rest string, offset int, ok bool) {
 	if at <= 0 || len(name) > 100 {
 		return "", 0, false
 	}
-	offset, ok = zoneNames(nil).offset(strings.Trim(name[at:], " (_,[]) "))
+	offset, ok = zoneNames(nil).offset(strings.Trim(name[at:], " (_,[])"))
 	return name[:at], offset, ok
 }
 

@@ -55,6 +55,9 @@ type How struct {
 	// UsualSensor and UsualDates are what was said of an earlier file of the
 	// station: they answer a question, and are ignored where there is none.
 	UsualSensor, UsualDates string
+	// Stopped, when not nil, ends the reading with its error, which comes back
+	// wrapped.
+	Stopped func() error
 }
 
 // Row is one data row of a file that can be used.
@@ -143,6 +146,7 @@ func Open(content io.Reader, site Site, how How) (*File, error) {
 	if err != nil {
 		return nil, err
 	}
+	src.stopped = how.Stopped
 	file, err := openFormat(src, site, how)
 	if err != nil {
 		return nil, errors.Join(err, src.Close())

@@ -27,6 +27,9 @@ const gibibyte = 1 << 30
 
 // A line of 1 GB, plain or packed, is refused after a few MB, in JSON too.
 func TestALineOfAGigabyte(t *testing.T) {
+	if raceOn {
+		t.Skip("one goroutine, and slow under the race detector")
+	}
 	long := func(before string) io.Reader {
 		return io.MultiReader(strings.NewReader(before), io.LimitReader(&endless{text: "1234567890"}, gibibyte))
 	}
@@ -61,6 +64,9 @@ func TestALongObservation(t *testing.T) {
 // A bomb of 256 MiB in rows that could be a station's is refused when it unpacks
 // to more than 200 times its size.
 func TestBombs(t *testing.T) {
+	if raceOn {
+		t.Skip("one goroutine, and a minute under the race detector")
+	}
 	row := strings.Repeat("2013-07-01T05:00Z,17.8\n", 1<<10)
 	rows := func(to io.Writer) error {
 		if _, err := io.WriteString(to, "time,temp_c\n"); err != nil {

@@ -20,6 +20,8 @@ type spool struct {
 	memory []byte
 	file   *os.File
 	size   int64
+	// stopped, when not nil, ends the reading with its error.
+	stopped func() error
 }
 
 // Write appends.
@@ -50,6 +52,11 @@ func (s *spool) Write(p []byte) (int, error) {
 
 // ReadAt reads from any place.
 func (s *spool) ReadAt(p []byte, from int64) (int, error) {
+	if s.stopped != nil {
+		if err := s.stopped(); err != nil {
+			return 0, err
+		}
+	}
 	if s.file != nil {
 		return s.file.ReadAt(p, from)
 	}

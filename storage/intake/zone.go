@@ -233,10 +233,61 @@ type change struct {
 	// twice, as if they were UTC; to is not among them.
 	from, to int64
 	forward  bool
-	// What the file has: rows within two hours before and after, rows in the
-	// times themselves, and those of them that came before.
-	before, inside, after, again bool
-	seen                         map[int64]bool
+	// What the file has: the last two rows before those times and the first one
+	// after them, 0 for none, and rows in them.
+	last, earlier, next int64
+	inside              bool
+	// Rows in those times, and in the hours before, that came twice.
+	again, againBefore bool
+	seen               map[int64]bool
+}
+
+// add takes the local time of a row near the change.
+func (c *change) add(local int64, mostSeen int) {
+	switch {
+	case local >= c.to:
+		if c.next == 0 || local < c.next {
+			c.next = local
+		}
+		return
+	case local >= c.from:
+		c.inside = true
+		c.again = c.again || c.seen[local]
+	case local >= c.from-nearChange:
+		c.againBefore = c.againBefore || c.seen[local]
+		if c.last == 0 || local > c.last {
+			c.last, c.earlier = local, c.last
+		} else if local < c.last && (c.earlier == 0 || local > c.earlier) {
+			c.earlier = local
+		}
+	default:
+		return
+	}
+	if len(c.seen) < mostSeen {
+		c.seen[local] = true
+	}
+}
+
+// spacing is the time between rows just before the change; 0 when it is not
+// known.
+func (c *change) spacing() int64 {
+	if c.earlier == 0 {
+		return 0
+	}
+	return c.last - c.earlier
+}
+
+// skips reports whether the row that was due in the times that the clock leaves
+// out stands as much later as the clock goes forward.
+func (c *change) skips() bool {
+	due := c.last + c.spacing()
+	return c.spacing() > 0 && !c.inside && due >= c.from && due < c.to && c.next == due+c.to-c.from
+}
+
+// single reports whether the times that the clock shows twice, which hold two
+// rows of this spacing, came once.
+func (c *change) single() bool {
+	return c.inside && !c.again && c.spacing() > 0 && c.spacing() <= c.to-c.from
 }
 
 // wallEvidence looks whether a file's times skip and double an hour as the
@@ -250,7 +301,9 @@ type wallEvidence struct {
 }
 
 const (
-	nearChange = 2 * secondsPerHour
+	nearChange = 3 * secondsPerHour
+	// mostSeen bounds how many times are kept for one change.
+	mostSeen = 20_000
 	// mostChanges bounds how many changes are looked at; 100 years have 200.
 	mostChanges = 400
 )
@@ -264,19 +317,8 @@ func (w *wallEvidence) add(local int64) {
 	if local < w.quietFrom || local >= w.quietTo {
 		w.look(local)
 	}
-	c := w.near
-	if c == nil {
-		return
-	}
-	switch {
-	case local < c.from && local >= c.from-nearChange:
-		c.before = true
-	case local >= c.from && local < c.to:
-		c.inside = true
-		c.again = c.again || c.seen[local]
-		c.seen[local] = true
-	case local >= c.to && local < c.to+nearChange:
-		c.after = true
+	if w.near != nil {
+		w.near.add(local, mostSeen)
 	}
 }
 
@@ -333,17 +375,15 @@ func (w *wallEvidence) changeAt(turn time.Time) *change {
 func (w *wallEvidence) judge() (wall, unsure bool) {
 	skips, doubles, against, singles := 0, 0, 0, 0
 	for _, c := range w.changes {
-		if c == nil || !c.before || !c.after {
-			continue
-		}
 		switch {
+		case c == nil || c.last == 0 || c.next == 0:
 		case c.forward && c.inside:
 			against++
-		case c.forward:
+		case c.forward && c.skips():
 			skips++
-		case c.again:
+		case !c.forward && c.again && !c.againBefore:
 			doubles++
-		case c.inside:
+		case !c.forward && c.single():
 			singles++
 		}
 	}

@@ -187,5 +187,15 @@ func (s *Stage) Close() error {
 	}
 	conn := s.conn
 	s.conn = nil
-	return conn.Close()
+	// A connection with a statement left open keeps its memory after it is closed.
+	var wrong []error
+	if s.readings != nil && s.readings.full != nil {
+		wrong = append(wrong, s.readings.close())
+	}
+	for _, statement := range []*sql.Stmt{s.reading, s.daily} {
+		if statement != nil {
+			wrong = append(wrong, statement.Close())
+		}
+	}
+	return errors.Join(append(wrong, conn.Close())...)
 }

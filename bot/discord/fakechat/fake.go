@@ -32,6 +32,7 @@ type Fake struct {
 	mu           sync.Mutex
 	cond         *sync.Cond // signalled when anything changes
 	clock        func() time.Time
+	permissions  string // the bot's own, in every channel
 	lastID       int64
 	guilds       map[string]*guild
 	channels     map[string]string // channel → guild
@@ -87,7 +88,7 @@ type Message struct {
 // Start starts the service. Close it when done.
 func Start() *Fake {
 	f := &Fake{
-		clock: time.Now, guilds: map[string]*guild{}, channels: map[string]string{}, messages: map[string][]*Message{},
+		clock: time.Now, permissions: "117760", guilds: map[string]*guild{}, channels: map[string]string{}, messages: map[string][]*Message{},
 		interactions: map[string]*Interaction{}, files: map[string][]byte{}, nonces: map[string]*Message{},
 	}
 	f.cond = sync.NewCond(&f.mu)
@@ -111,6 +112,14 @@ func (f *Fake) SetClock(clock func() time.Time) {
 	f.mu.Lock()
 	defer f.mu.Unlock()
 	f.clock = clock
+}
+
+// SetPermissions sets the bot's own permissions, in the service's bits; at
+// first it may view, send, embed, attach and read the history.
+func (f *Fake) SetPermissions(bits int64) {
+	f.mu.Lock()
+	defer f.mu.Unlock()
+	f.permissions = strconv.FormatInt(bits, 10)
 }
 
 // AddGuild adds a server with channels; the bot is in it.

@@ -56,7 +56,7 @@ func (f *Fake) do(kind int, guild, channel string, user User, data map[string]an
 	}
 	event := map[string]any{
 		"id": in.ID, "application_id": AppID, "type": kind, "token": in.Token, "version": 1, "data": data,
-		"guild_id": guild, "channel_id": channel, "app_permissions": "0", "locale": "en-US",
+		"guild_id": guild, "channel_id": channel, "app_permissions": f.permissions, "locale": "en-US",
 		"member": map[string]any{"user": map[string]any{"id": user.ID, "username": user.Name, "discriminator": "0"},
 			"roles": groups, "permissions": fmt.Sprint(user.Permissions), "nick": user.Name},
 	}

@@ -1,0 +1,252 @@
+package workbook
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"github.com/xuri/excelize/v2"
+
+	"swardbook/calc"
+	"swardbook/planner"
+)
+
+// Form is the number of the sheet's form, kept with what is issued; a change
+// of what the cells mean gives a new number.
+const Form = 1
+
+// Input is what a workbook is written from.
+type Input struct {
+	ID         planner.SheetID
+	Plan       planner.Plan
+	Evaluation planner.Evaluation
+	Data       planner.SheetData
+	Weeks      int    // of the first sheet, 1 to 8
+	Letter     bool   // paper of North America instead of A4
+	Ahead      string // where the days ahead come from, in words
+	Caution    string
+}
+
+// Build writes the workbook: the week, the days' arithmetic, works and log, the
+// issued curves, notes. Text that users typed is written as text and never as a
+// formula. Weeks outside 1 to 8 are brought inside.
+func Build(in Input) (content []byte, err error) {
+	in.Weeks = min(max(in.Weeks, 1), 8)
+	b := &book{Input: in, file: excelize.NewFile(), units: in.Plan.Site.Units, refs: map[string]string{}}
+	defer func() {
+		if closed := b.file.Close(); err == nil {
+			err = closed
+		}
+	}()
+	if err := b.makeStyles(); err != nil {
+		return nil, fmt.Errorf("make the styles: %w", err)
+	}
+	b.place()
+	if err := b.file.SetSheetName("Sheet1", weekSheet); err != nil {
+		return nil, err
+	}
+	for _, part := range []struct {
+		name  string
+		write func(*page) error
+	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {curvesSheet, b.curves}, {notesSheet, b.notes}} {
+		if err := b.write(part.name, part.write); err != nil {
+			return nil, fmt.Errorf("write the sheet %s: %w", part.name, err)
+		}
+	}
+	if err := b.identify(); err != nil {
+		return nil, fmt.Errorf("name the cells: %w", err)
+	}
+	buffer, err := b.file.WriteToBuffer()
+	if err != nil {
+		return nil, fmt.Errorf("write the workbook: %w", err)
+	}
+	return buffer.Bytes(), nil
+}
+
+// The sheets, in order.
+const (
+	weekSheet   = "week"
+	daysSheet   = "days"
+	worksSheet  = "works and log"
+	curvesSheet = "curves"
+	notesSheet  = "notes"
+)
+
+// book is a workbook being written.
+type book struct {
+	Input
+	file  *excelize.File
+	units planner.Units
+	look  map[style]int
+	// refs are the defined names: name → cells. Names come from ids, never from
+	// what a user typed.
+	refs map[string]string
+	at   places
+}
+
+// serial is the spreadsheet's number of a day: 1 January 1970 is 25569.
+func serial(day planner.Day) float64 { return float64(day) + 25569 }
+
+// tidy keeps twelve decimals: what a cell holds is cut after 15 digits, and a
+// cut 2.9999999999999996 would show as less than 3.
+func tidy(value float64) float64 {
+	if math.Abs(value) > 1e6 {
+		return value
+	}
+	return math.Round(value*1e12) / 1e12
+}
+
+// show is a value in the unit as the site shows it.
+func (b *book) show(value float64, unit planner.Unit) float64 {
+	if unit == planner.Share {
+		return value // shown as percent by its format
+	}
+	shown, _ := b.units.Show(value, unit)
+	return tidy(shown)
+}
+
+// page is one sheet being streamed.
+type page struct {
+	*excelize.StreamWriter
+	name  string
+	row   int
+	rules []*excelize.DataValidation
+}
+
+// add writes a row and returns its number.
+func (p *page) add(cells ...any) (int, error) {
+	p.row++
+	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells)
+}
+
+// tall writes a row with room to write by hand.
+func (p *page) tall(cells ...any) (int, error) {
+	const points = 30
+	p.row++
+	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells, excelize.RowOpts{Height: points})
+}
+
+func (b *book) write(name string, fill func(*page) error) error {
+	if name != weekSheet {
+		if _, err := b.file.NewSheet(name); err != nil {
+			return err
+		}
+	}
+	fit := true
+	if err := b.file.SetSheetProps(name, &excelize.SheetPropsOptions{FitToPage: &fit}); err != nil {
+		return err
+	}
+	if err := b.file.SetSheetDimension(name, b.dimension(name)); err != nil {
+		return err
+	}
+	stream, err := b.file.NewStreamWriter(name)
+	if err != nil {
+		return err
+	}
+	p := &page{StreamWriter: stream, name: name}
+	if err := fill(p); err != nil {
+		return err
+	}
+	if err := b.manners(p); err != nil {
+		return err
+	}
+	return p.Flush()
+}
+
+// dimension is the range of a sheet's cells, which some readers trust.
+func (b *book) dimension(name string) string {
+	last := map[string][2]int{
+		weekSheet:   {b.weekColumns(), weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
+		daysSheet:   {b.at.columns, daysHead + len(b.Data.Days)},
+		worksSheet:  {len(workColumns()), b.at.worksEnd},
+		curvesSheet: {1 + 3*b.at.counts, 1 + b.ahead()},
+		notesSheet:  {4, len(calc.Catalogue()) + 20},
+	}[name]
+	cell, _ := excelize.CoordinatesToCellName(max(last[0], 1), max(last[1], 1))
+	return "A1:" + cell
+}
+
+// ahead is the number of the sheet's days from the morning on.
+func (b *book) ahead() int {
+	if n := len(b.Data.Days); n > 0 {
+		return int(b.Data.Days[n-1].Facts.Day-b.Plan.AsOf) + 1
+	}
+	return 0
+}
+
+// manners sets print, protection and validation of a sheet.
+func (b *book) manners(p *page) error {
+	size, high := 9, 0
+	if b.Letter {
+		size = 1
+	}
+	orientation, wide := "landscape", 1
+	if p.name == weekSheet {
+		high = 1
+	}
+	if err := b.file.SetPageLayout(p.name, &excelize.PageLayoutOptions{Size: &size, Orientation: &orientation, FitToWidth: &wide, FitToHeight: &high}); err != nil {
+		return err
+	}
+	site := strings.ReplaceAll(b.Plan.Site.Name, "&", "&&")
+	err := b.file.SetHeaderFooter(p.name, &excelize.HeaderFooterOptions{
+		OddHeader: fmt.Sprintf("&L%s&C%s&R%s", site, p.name, b.Plan.AsOf),
+		OddFooter: fmt.Sprintf("&LSheet %d, days ahead issued %s&RPage &P of &N", b.ID, b.Outlook()),
+	})
+	if err != nil {
+		return err
+	}
+	for _, rule := range p.rules {
+		if err := b.file.AddDataValidation(p.name, rule); err != nil {
+			return err
+		}
+	}
+	return b.file.ProtectSheet(p.name, &excelize.SheetProtectionOptions{
+		SelectLockedCells: true, SelectUnlockedCells: true, FormatColumns: true, FormatRows: true, AutoFilter: true,
+	})
+}
+
+// Outlook is the day on which the days ahead were issued.
+func (in Input) Outlook() planner.Day { return in.Evaluation.Outlook.AsOf }
+
+// number lets an input take numbers between the two.
+func (p *page) number(cells string, lowest, highest float64, prompt string) error {
+	rule := excelize.NewDataValidation(true)
+	rule.SetSqref(cells)
+	plain := func(value float64) string { return fmt.Sprintf("%.6g", value) }
+	if err := rule.SetRange(plain(lowest), plain(highest), excelize.DataValidationTypeDecimal, excelize.DataValidationOperatorBetween); err != nil {
+		return err
+	}
+	rule.SetInput("Input", prompt)
+	rule.SetError(excelize.DataValidationErrorStyleStop, "This cannot be", fmt.Sprintf("Give a number from %g to %g.", lowest, highest))
+	p.rules = append(p.rules, rule)
+	return nil
+}
+
+// identify sets the names and the ids that travel with the file.
+func (b *book) identify() error {
+	b.refs["wb_id"] = fmt.Sprintf("'%s'!$B$2", notesSheet)
+	for name, cells := range b.refs {
+		if err := b.file.SetDefinedName(&excelize.DefinedName{Name: name, RefersTo: cells}); err != nil {
+			return fmt.Errorf("%s: %w", name, err)
+		}
+	}
+	for sheet, rows := range map[string]string{daysSheet: fmt.Sprintf("$%d:$%d", daysHead, daysHead), curvesSheet: "$1:$1"} {
+		err := b.file.SetDefinedName(&excelize.DefinedName{Name: "_xlnm.Print_Titles", RefersTo: fmt.Sprintf("'%s'!%s", sheet, rows), Scope: sheet})
+		if err != nil {
+			return err
+		}
+	}
+	id := fmt.Sprintf("swardbook-sheet-%d-form-%d", b.ID, Form)
+	if err := b.file.SetCustomProps(excelize.CustomProperty{Name: "WorkbookId", Value: id}); err != nil {
+		return err
+	}
+	recalculate := true
+	if err := b.file.SetCalcProps(&excelize.CalcPropsOptions{FullCalcOnLoad: &recalculate}); err != nil {
+		return err
+	}
+	if err := b.file.SetSheetVisible(curvesSheet, false); err != nil {
+		return err
+	}
+	b.file.SetActiveSheet(0)
+	return b.file.SetDocProps(&excelize.DocProperties{Identifier: id, Title: "Sheet of " + b.Plan.Site.Name, Creator: "Swardbook"})
+}
