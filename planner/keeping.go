@@ -145,7 +145,7 @@ type ImportRequest struct {
 	FileName string    // as the user named it; kept, never used as a path
 	Content  io.Reader // read once, to its end
 	Units    Units     // "" lets the header and the values say
-	// What may have to be said of a file; all may be empty. See /help on files.
+	// What may have to be said of a file; all may be empty.
 	Clock  string // of times without an offset: standard, wall, utc or an offset like -05:00
 	Dates  string // d/m/y, m/d/y or y/m/d; the month of the first report, 2021-07
 	Sensor string // which of several in the file counts

@@ -266,3 +266,32 @@ func minutes(from, rows int) io.Reader {
 type readerFunc func(p []byte) (int, error)
 
 func (f readerFunc) Read(p []byte) (int, error) { return f(p) }
+
+// A file that does not show its clock says so where another of the station ran
+// on the clock on the wall.
+func TestAFileBesideOneOnTheWallClock(t *testing.T) {
+	t.Parallel()
+	g := newGround(t, "America/New_York", -5)
+	const plain = "time,temp_c\n2013-07-01 05:00,17.8\n"
+	note := func(content string) bool {
+		return strings.Contains(strings.Join(g.take(t, "a.csv", content).Notes, " "), "An earlier file of this station ran on the clock on the wall")
+	}
+	if note(plain) {
+		t.Error("said of the station's first file")
+	}
+	wall, err := os.ReadFile("../testdata/intake/readings_wall_clock.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	if note(string(wall)) {
+		t.Error("said of the file on the clock on the wall")
+	}
+	if !note(plain) {
+		t.Error("not said of the next")
+	}
+	for _, shows := range []string{"time,temp_c\n2013-03-10 02:00,17.8\n", "time,temp_c\n2013-07-01 05:00Z,17.8\n", "date,high_c,low_c\n2013-07-01,17,8\n"} {
+		if note(shows) {
+			t.Errorf("said of %q", shows)
+		}
+	}
+}

@@ -61,6 +61,9 @@ func (i *Importer) Import(ctx context.Context, request planner.ImportRequest) (p
 	if how.UsualSensor, how.UsualDates, err = i.team.Remembered(ctx, request.Station); err != nil {
 		return planner.ImportReport{}, err
 	}
+	if how.OnWallBefore, err = i.team.ReadOn(ctx, request.Station, intake.ClockWall); err != nil {
+		return planner.ImportReport{}, err
+	}
 	file, err := intake.Open(hashed(ctx, request.Content, sum), site, how)
 	if err != nil {
 		return planner.ImportReport{}, err

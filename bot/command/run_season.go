@@ -5,6 +5,7 @@ import (
 	"strconv"
 
 	"swardbook/bot/briefing"
+	"swardbook/bot/chart"
 	"swardbook/bot/reply"
 	"swardbook/planner"
 )
@@ -46,6 +47,13 @@ func (d Desk) runSeason(ctx context.Context, req Request) (reply.Reply, error) {
 			return reply.Reply{}, err
 		}
 		r.Add(seasonTable(season, v.site.Units), reply.Text(briefing.TotalNote(season.State, v.site.Units)))
+		picture, ok, err := chart.Season(plan, season)
+		if err != nil {
+			return reply.Reply{}, err
+		}
+		if ok && len(totals) == 1 {
+			r.Add(picture)
+		}
 		r.Figures = append(r.Figures, season.Figures()...)
 	}
 	return r, nil

@@ -22,12 +22,15 @@ type Posted struct {
 	// Yesterday says that it tells yesterday's weather, and is followed up when
 	// that comes late.
 	Yesterday bool
+	// Weekly says that it comes on Mondays unless the lead names other days.
+	Weekly bool
 }
 
 // posted are the kinds of posts there are; another one is another row.
 var posted = []Posted{
 	{What: "morning", Path: "briefing", Dated: true, Yesterday: true},
 	{What: "evening", Path: "briefing", Pairs: []Pair{{"post", "tomorrow"}}, Dated: true},
+	{What: "weekly", Path: "sheet get", Weekly: true},
 }
 
 // PostKind finds a kind of post by its word.
@@ -43,10 +46,10 @@ func PostKind(what string) (Posted, bool) {
 func (d Desk) setupPost() []Command {
 	number := Option{Name: "number", Kind: Whole, Required: true, Range: Between(1, 1e6), Help: "which post; /setup post list tells", Example: "1"}
 	at := Option{Name: "at", Kind: Text, Help: "when, on the site's clock", Example: "05:30"}
-	what := Option{Name: "what", Kind: Choice, Choices: namesOf(posted, func(p Posted) string { return p.What }), Help: "the morning briefing when not given; evening is about tomorrow"}
+	what := Option{Name: "what", Kind: Choice, Choices: namesOf(posted, func(p Posted) string { return p.What }), Help: "the morning briefing when not given; evening is about tomorrow, weekly is the sheet"}
 	options := []Option{
 		{Name: "channel", Kind: ChatChannel, Help: "where; the channel you are in when not given"},
-		{Name: "on", Kind: Text, Help: "days of the week with commas; every day when not given", Example: "mon,thu"},
+		{Name: "on", Kind: Text, Help: "days of the week with commas; every day when not given, Mondays for weekly", Example: "mon,thu"},
 		{Name: "window", Kind: Number, Range: Between(0.25, 23), Help: "hours it may go out late; 4 when not given", Example: "4"},
 		d.siteOption(),
 	}
@@ -151,7 +154,11 @@ func (d Desk) runPostAdd(ctx context.Context, req Request) (reply.Reply, error) 
 		return reply.Reply{}, err
 	}
 	what := textOr(v.Values, "what", posted[0].What)
-	post, err := v.postFrom(planner.Post{Site: v.site.ID, What: what, WindowMinutes: planner.DefaultWindowMinutes})
+	fresh := planner.Post{Site: v.site.ID, What: what, WindowMinutes: planner.DefaultWindowMinutes}
+	if kind, _ := PostKind(what); kind.Weekly {
+		fresh.On = planner.WeekdaysOf(time.Monday)
+	}
+	post, err := v.postFrom(fresh)
 	if err != nil {
 		return reply.Reply{}, err
 	}

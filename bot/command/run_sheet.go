@@ -70,7 +70,7 @@ func (d Desk) runSheetGet(ctx context.Context, req Request) (reply.Reply, error)
 		return reply.Reply{}, err
 	}
 	r := reply.Of(reply.Heading(fmt.Sprintf("Sheet %d", kept.ID)),
-		reply.Textf("%s, %s to %s", v.site.Name, v.today.Short(), (v.today + planner.Day(7*weeks-1)).Short()),
+		reply.Textf("%s, %s to %s", v.site.Name, v.today.Short(), (v.today+planner.Day(7*weeks-1)).Short()),
 		reply.File{Name: fmt.Sprintf("week-%s-%d.xlsx", v.today, kept.ID), Content: content})
 	r.Figures = evaluation.Figures()
 	r.Private = true

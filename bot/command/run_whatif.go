@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"swardbook/bot/briefing"
+	"swardbook/bot/chart"
 	"swardbook/bot/reply"
 	"swardbook/planner"
 )
@@ -61,12 +62,34 @@ func (d Desk) runWhatIf(ctx context.Context, req Request) (reply.Reply, error) {
 		return reply.Reply{}, err
 	}
 	r := v.sideBySide(chosen, base, whatIf, edits)
+	if len(chosen) == 1 {
+		if err := addRunning(&r, chosen[0], plan, base, changed, whatIf); err != nil {
+			return reply.Reply{}, err
+		}
+	}
 	if day, given, _ := v.Values.Day("work-on", v.today); given {
 		r.Add(passNotes(chosen[0], day, plan)...)
 	}
 	r.Private = true
 	r.Figures = append(base.Figures().Under("base."), whatIf.Figures().Under("whatif.")...)
 	return r, nil
+}
+
+// addRunning adds the picture of one work's running total, before and after.
+func addRunning(r *reply.Reply, state planner.WorkState, plan planner.Plan, base planner.Evaluation, changed planner.Plan, whatIf planner.Evaluation) error {
+	stands, err := planner.SheetOf(plan, base, 0)
+	if err != nil {
+		return err
+	}
+	after, err := planner.SheetOf(changed, whatIf, 0)
+	if err != nil {
+		return err
+	}
+	picture, ok, err := chart.Running(state, plan.AsOf, plan.Site.Units, stands, after)
+	if ok {
+		r.Add(picture)
+	}
+	return err
 }
 
 // sideBySide tells the dates as it stands and with the edits made.

@@ -5,6 +5,7 @@ import (
 	"fmt"
 
 	"swardbook/bot/briefing"
+	"swardbook/bot/chart"
 	"swardbook/bot/reply"
 	"swardbook/planner"
 )
@@ -53,6 +54,13 @@ func (d Desk) runWhyCompare(ctx context.Context, req Request) (reply.Reply, erro
 	r := reply.Of(reply.Heading("The two means"), reply.Textf("%s to %s", from, to))
 	r.Private = true
 	r.Add(meansBlocks(means, v.site.Units)...)
+	picture, ok, err := chart.Means(record, means, v.site.Units)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	if ok {
+		r.Add(picture)
+	}
 	r.Add(decisionBlocks(evaluation)...)
 	r.Figures = append(means.Figures(), evaluation.Figures()...)
 	return r, nil

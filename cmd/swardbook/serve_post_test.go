@@ -164,6 +164,19 @@ func TestPostEvening(t *testing.T) {
 	m.expect(m.tickAt("2024-06-03 18:01"), 2)
 }
 
+func TestPostWeekly(t *testing.T) {
+	m := newMorning(t)
+	m.weather("2024-06-02")
+	m.type_("/setup post drop number:1", "/setup post add what:weekly at:06:00 channel:"+channel)
+	posts := m.tickAt("2024-06-03 06:00") // a Monday
+	m.expect(posts, 1)
+	if message := m.fake.Messages(channel)[0]; len(message.Names) == 0 || !strings.HasSuffix(message.Names[0], ".xlsx") {
+		t.Errorf("files %v of %s", message.Names, message.Say())
+	}
+	m.expect(m.tickAt("2024-06-04 06:00"), 1)
+	m.expect(m.tickAt("2024-06-10 06:00"), 2)
+}
+
 func TestPostLateAndMissed(t *testing.T) {
 	m := newMorning(t)
 	m.weather("2024-06-02")

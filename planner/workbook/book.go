@@ -28,7 +28,7 @@ type Input struct {
 }
 
 // Build writes the workbook: the week, the days' arithmetic, works and log, the
-// issued curves, notes. Text that users typed is written as text and never as a
+// two means compared, nitrogen, the issued curves, notes. Text that users typed is written as text and never as a
 // formula. Weeks outside 1 to 8 are brought inside.
 func Build(in Input) (content []byte, err error) {
 	in.Weeks = min(max(in.Weeks, 1), 8)
@@ -48,7 +48,7 @@ func Build(in Input) (content []byte, err error) {
 	for _, part := range []struct {
 		name  string
 		write func(*page) error
-	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {curvesSheet, b.curves}, {notesSheet, b.notes}} {
+	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {meansSheet, b.means}, {nitrogenSheet, b.nitrogen}, {curvesSheet, b.curves}, {notesSheet, b.notes}} {
 		if err := b.write(part.name, part.write); err != nil {
 			return nil, fmt.Errorf("write the sheet %s: %w", part.name, err)
 		}
@@ -65,11 +65,13 @@ func Build(in Input) (content []byte, err error) {
 
 // The sheets, in order.
 const (
-	weekSheet   = "week"
-	daysSheet   = "days"
-	worksSheet  = "works and log"
-	curvesSheet = "curves"
-	notesSheet  = "notes"
+	weekSheet     = "week"
+	daysSheet     = "days"
+	worksSheet    = "works and log"
+	meansSheet    = "means compared"
+	nitrogenSheet = "nitrogen"
+	curvesSheet   = "curves"
+	notesSheet    = "notes"
 )
 
 // book is a workbook being written.
@@ -121,7 +123,7 @@ func (p *page) add(cells ...any) (int, error) {
 
 // tall writes a row with room to write by hand.
 func (p *page) tall(cells ...any) (int, error) {
-	const points = 30
+	const points = 34
 	p.row++
 	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells, excelize.RowOpts{Height: points})
 }
@@ -156,11 +158,13 @@ func (b *book) write(name string, fill func(*page) error) error {
 // dimension is the range of a sheet's cells, which some readers trust.
 func (b *book) dimension(name string) string {
 	last := map[string][2]int{
-		weekSheet:   {b.weekColumns(), weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
-		daysSheet:   {b.at.columns, daysHead + len(b.Data.Days)},
-		worksSheet:  {len(workColumns()), b.at.worksEnd},
-		curvesSheet: {1 + 3*b.at.counts, 1 + b.ahead()},
-		notesSheet:  {4, len(calc.Catalogue()) + 20},
+		weekSheet:     {b.weekColumns(), weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
+		daysSheet:     {b.at.columns, daysHead + len(b.Data.Days)},
+		worksSheet:    {len(workColumns()), b.at.worksEnd},
+		meansSheet:    {6, meansHead + len(b.bothMeans())},
+		nitrogenSheet: {9, 4 + 2*len(b.Evaluation.Nitrogen)},
+		curvesSheet:   {1 + 3*b.at.counts, 1 + b.ahead()},
+		notesSheet:    {4, len(calc.Catalogue()) + 20},
 	}[name]
 	cell, _ := excelize.CoordinatesToCellName(max(last[0], 1), max(last[1], 1))
 	return "A1:" + cell
@@ -181,8 +185,12 @@ func (b *book) manners(p *page) error {
 		size = 1
 	}
 	orientation, wide := "landscape", 1
-	if p.name == weekSheet {
+	const perPage = 14 // columns that can still be read
+	switch p.name {
+	case weekSheet:
 		high = 1
+	case daysSheet:
+		wide = (b.at.columns + perPage - 1) / perPage
 	}
 	if err := b.file.SetPageLayout(p.name, &excelize.PageLayoutOptions{Size: &size, Orientation: &orientation, FitToWidth: &wide, FitToHeight: &high}); err != nil {
 		return err
@@ -230,7 +238,7 @@ func (b *book) identify() error {
 			return fmt.Errorf("%s: %w", name, err)
 		}
 	}
-	for sheet, rows := range map[string]string{daysSheet: fmt.Sprintf("$%d:$%d", daysHead, daysHead), curvesSheet: "$1:$1"} {
+	for sheet, rows := range map[string]string{daysSheet: fmt.Sprintf("$A:$A,'%s'!$%d:$%d", daysSheet, daysHead, daysHead), curvesSheet: "$1:$1"} {
 		err := b.file.SetDefinedName(&excelize.DefinedName{Name: "_xlnm.Print_Titles", RefersTo: fmt.Sprintf("'%s'!%s", sheet, rows), Scope: sheet})
 		if err != nil {
 			return err

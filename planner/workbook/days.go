@@ -19,7 +19,7 @@ func (b *book) days(p *page) error {
 	if _, err := p.add(b.value(title, "The days and their arithmetic, in "+b.units.Degree())); err != nil {
 		return err
 	}
-	if _, err := p.add(b.heads(b.dayHeads()...)...); err != nil {
+	if _, err := p.tall(b.heads(b.dayHeads()...)...); err != nil {
 		return err
 	}
 	for i := range b.Data.Days {

@@ -37,7 +37,7 @@ func (b *book) makeStyles() error {
 		return &excelize.Font{Family: "Arial", Size: size, Bold: bold, Color: "202020"}
 	}
 	number := func(format string) *excelize.Style {
-		return &excelize.Style{Font: font(10, false), Border: line, CustomNumFmt: &format, Alignment: &excelize.Alignment{Horizontal: "right"}}
+		return &excelize.Style{Font: font(10, false), Border: line, CustomNumFmt: &format, Alignment: &excelize.Alignment{Horizontal: "right", Vertical: "center"}}
 	}
 	input := func(format string) *excelize.Style {
 		s := number(format)
@@ -48,18 +48,18 @@ func (b *book) makeStyles() error {
 		return s
 	}
 	day := number(dayFormat)
-	day.Alignment.Horizontal = "left"
+	day.Alignment.Horizontal, day.Alignment.Indent = "left", 1
 	key := number(dayFormat)
-	key.Font = font(10, true)
+	key.Font, key.Alignment = font(10, true), day.Alignment
 	looks := map[style]*excelize.Style{
-		plainText: {Font: font(10, false), Border: line, Alignment: &excelize.Alignment{Vertical: "top", WrapText: true}},
+		plainText: {Font: font(10, false), Border: line, Alignment: &excelize.Alignment{Vertical: "center", WrapText: true, Indent: 1, Horizontal: "left"}},
 		title:     {Font: font(14, true)},
 		head: {Font: font(9, true), Border: line, Fill: excelize.Fill{Type: "pattern", Pattern: 1, Color: []string{"E2E6E2"}},
 			Alignment: &excelize.Alignment{Horizontal: "center", Vertical: "center", WrapText: true}},
 		small:      {Font: font(9, false)},
 		wrapped:    {Font: font(9, false), Alignment: &excelize.Alignment{Vertical: "top", WrapText: true}},
 		oneDecimal: number("0.0"), twoDecimals: number("0.00"), percent: number("0%"), whole: number("0"), date: day, strong: key,
-		room:     {Font: font(10, false), Border: line, Alignment: &excelize.Alignment{Vertical: "top", WrapText: true}, Protection: &excelize.Protection{Locked: false}},
+		room:     {Font: font(10, false), Border: line, Alignment: &excelize.Alignment{Vertical: "center", WrapText: true, Indent: 1, Horizontal: "left"}, Protection: &excelize.Protection{Locked: false}},
 		inNumber: input("0.0"), inTwo: input("0.0##"), inDate: input(dateFormat),
 	}
 	b.look = make(map[style]int, everything)

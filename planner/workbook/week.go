@@ -28,11 +28,10 @@ func ownCount(work planner.SheetWork) int {
 
 // week writes the sheet that is pinned up: key numbers, then a row a day.
 func (b *book) week(p *page) error {
-	wides := append([]float64{22, 9, 9, 11, 10}, make([]float64, b.weekColumns()-9)...)
-	for i, wide := range append(wides, 24, 16, 7, 20) {
-		wide = max(wide, 11)
-		if i == 1 || i == 2 || i == b.weekColumns()-2 {
-			wide = 8
+	wides := append([]float64{20, 8, 8, 12, 9}, make([]float64, b.weekColumns()-9)...)
+	for i, wide := range append(wides, 22, 13, 7, 18) {
+		if wide == 0 {
+			wide = 12
 		}
 		if err := p.SetColWidth(i+1, i+1, wide); err != nil {
 			return err

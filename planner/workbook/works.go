@@ -42,7 +42,7 @@ func (b *book) works(p *page) error {
 	if _, err := p.add(b.value(small, "Framed yellow cells are inputs. Early, middle and late ask the bot once a day, a base or a curve is changed.")); err != nil {
 		return err
 	}
-	if _, err := p.add(b.heads(workColumns()...)...); err != nil {
+	if _, err := p.tall(b.heads(workColumns()...)...); err != nil {
 		return err
 	}
 	for w := range b.Data.Works {

@@ -82,6 +82,9 @@ func openCSV(src *spool, site Site, how How) (*File, error) {
 		out.Format = Daily
 	}
 	out.Notes = file.notes(l, guessed, units, found)
+	if how.OnWallBefore && found.bare && !file.daily && file.clocks.kind == standardClock && !file.clocks.said && !found.notWall {
+		out.Notes = append(out.Notes, "An earlier file of this station ran on the clock on the wall; this one does not show it. clock:wall reads it so.")
+	}
 	return out, nil
 }
 

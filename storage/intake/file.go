@@ -55,6 +55,9 @@ type How struct {
 	// UsualSensor and UsualDates are what was said of an earlier file of the
 	// station: they answer a question, and are ignored where there is none.
 	UsualSensor, UsualDates string
+	// OnWallBefore says that an earlier file of the station was read on the clock
+	// on the wall: one that does not show which clock it runs on then says so.
+	OnWallBefore bool
 	// Stopped, when not nil, ends the reading with its error, which comes back
 	// wrapped.
 	Stopped func() error

@@ -24,6 +24,7 @@ type survey struct {
 	saidOrder string // the order, when it was stated or remembered
 	example   string // a date that the orders read differently
 	bare      bool   // a row without an offset
+	notWall   bool   // a row at a time that the clock on the wall leaves out
 	lastRow   int
 	values    valueCount
 	sensors   map[string]bool
@@ -73,7 +74,7 @@ func (f *csvFile) survey(src *spool, l layout, columns []column, how How) (*surv
 	if f.daily || !s.bare {
 		return s, nil
 	}
-	return s, f.settleClock(src, l)
+	return s, f.settleClock(src, l, s)
 }
 
 // eachRow calls do with every row that is long enough.
@@ -261,7 +262,7 @@ func (s *survey) sensorNames() (names []string) {
 
 // settleClock looks whether times without an offset are those of the clock on
 // the wall.
-func (f *csvFile) settleClock(src *spool, l layout) error {
+func (f *csvFile) settleClock(src *spool, l layout, s *survey) error {
 	c := &f.clocks
 	var evidence *wallEvidence
 	if !c.said && c.zone != nil {
@@ -292,6 +293,7 @@ func (f *csvFile) settleClock(src *spool, l layout) error {
 	if err != nil || evidence == nil {
 		return err
 	}
+	s.notWall = evidence.against()
 	wall, unsure := evidence.judge()
 	if unsure {
 		return planner.Problemf(planner.Refused, "the times skip an hour in spring as the clock on the wall does, and do not double one in autumn").

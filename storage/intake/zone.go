@@ -369,6 +369,17 @@ func (w *wallEvidence) changeAt(turn time.Time) *change {
 	return c
 }
 
+// against reports whether a row stands at a time that the clock on the wall
+// leaves out.
+func (w *wallEvidence) against() bool {
+	for _, c := range w.changes {
+		if c != nil && c.forward && c.inside {
+			return true
+		}
+	}
+	return false
+}
+
 // judge says whether the file runs on the clock on the wall. unsure is true
 // when it skips an hour as that clock does and does not double one where it
 // should: then only a person knows.

@@ -59,6 +59,14 @@ func (t *Team) Remembered(ctx context.Context, station planner.StationID) (senso
 	return sensor, dates, storeError("read what is remembered of the station", err)
 }
 
+// ReadOn reports whether a file of the station that is not withdrawn was read on
+// the clock, as its import says it.
+func (t *Team) ReadOn(ctx context.Context, station planner.StationID, clock string) (found bool, err error) {
+	err = t.db.reader.QueryRowContext(ctx, `SELECT EXISTS (SELECT 1 FROM import
+		WHERE team = ? AND station = ? AND clock = ? AND withdrawn IS NULL)`, t.id, station, clock).Scan(&found)
+	return found, storeError("read how the station's files were read", err)
+}
+
 // ExportStation writes all readings and daily readings of the station, after the
 // header, in the form of the program's own export: times in UTC, values in °C in
 // full. A station that is not there is a NotFound problem.
