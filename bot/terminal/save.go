@@ -16,7 +16,8 @@ import (
 const mostCopies = 1000
 
 // saveFiles writes the reply's files and pictures into the folder and gives
-// the reply with the names they got. After an error the reply holds those that
+// the reply with the names they got. Without a folder files go to the working
+// folder and pictures nowhere: their words are shown. After an error the reply holds those that
 // were saved, and of pictures their words.
 func saveFiles(dir string, r reply.Reply) (reply.Reply, []Saved, error) {
 	var (
@@ -44,7 +45,9 @@ func saveFiles(dir string, r reply.Reply) (reply.Reply, []Saved, error) {
 				blocks = append(blocks, b)
 			}
 		case reply.Picture:
-			if one, ok := save(b.Name, b.PNG); ok {
+			if dir == "" {
+				blocks = append(blocks, reply.Text(b.Alt))
+			} else if one, ok := save(b.Name, b.PNG); ok {
 				b.Name = one.Name
 				blocks = append(blocks, b)
 			} else {

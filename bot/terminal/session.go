@@ -31,7 +31,8 @@ type Session struct {
 	Now func() (now time.Time, localClock bool)
 	Out io.Writer // replies
 	Err io.Writer // errors, as text
-	// Dir is where files of replies are saved; empty is the working folder.
+	// Dir is where files and pictures of replies are saved; when it is empty
+	// files are saved in the working folder and pictures are not.
 	Dir   string
 	Width int  // columns of text; 0 is plain.DefaultWidth
 	JSON  bool // one JSON object a command, errors too, on Out

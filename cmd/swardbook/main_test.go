@@ -75,7 +75,7 @@ func (a answer) number(t *testing.T, key string) float64 {
 // each; any failure ends the test.
 func session(t *testing.T, database, now string, lines ...string) []answer {
 	t.Helper()
-	out, errOut, status := program(t, strings.Join(lines, "\n"), "chat", "--db", database, "--as", "lead", "--now", now, "--json")
+	out, errOut, status := program(t, strings.Join(lines, "\n"), "chat", "--db", database, "--as", "lead", "--now", now, "--json", "--out", t.TempDir())
 	if status != 0 {
 		t.Fatalf("status %d\n%s\n%s", status, out, errOut)
 	}

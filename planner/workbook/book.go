@@ -45,10 +45,21 @@ func Build(in Input) (content []byte, err error) {
 	if err := b.file.SetSheetName("Sheet1", weekSheet); err != nil {
 		return nil, err
 	}
-	for _, part := range []struct {
+	parts := []struct {
 		name  string
 		write func(*page) error
-	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {meansSheet, b.means}, {nitrogenSheet, b.nitrogen}, {curvesSheet, b.curves}, {notesSheet, b.notes}} {
+	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {meansSheet, b.means}, {nitrogenSheet, b.nitrogen}, {curvesSheet, b.curves}, {notesSheet, b.notes}}
+	for _, part := range parts[1:] {
+		if _, err := b.file.NewSheet(part.name); err != nil {
+			return nil, fmt.Errorf("add the sheet %s: %w", part.name, err)
+		}
+	}
+	// Now, while the sheets are empty: later these would read all of them back.
+	if err := b.file.SetSheetVisible(curvesSheet, false); err != nil {
+		return nil, fmt.Errorf("hide the curves: %w", err)
+	}
+	b.file.SetActiveSheet(0)
+	for _, part := range parts {
 		if err := b.write(part.name, part.write); err != nil {
 			return nil, fmt.Errorf("write the sheet %s: %w", part.name, err)
 		}
@@ -129,11 +140,6 @@ func (p *page) tall(cells ...any) (int, error) {
 }
 
 func (b *book) write(name string, fill func(*page) error) error {
-	if name != weekSheet {
-		if _, err := b.file.NewSheet(name); err != nil {
-			return err
-		}
-	}
 	fit := true
 	if err := b.file.SetSheetProps(name, &excelize.SheetPropsOptions{FitToPage: &fit}); err != nil {
 		return err
@@ -252,9 +258,5 @@ func (b *book) identify() error {
 	if err := b.file.SetCalcProps(&excelize.CalcPropsOptions{FullCalcOnLoad: &recalculate}); err != nil {
 		return err
 	}
-	if err := b.file.SetSheetVisible(curvesSheet, false); err != nil {
-		return err
-	}
-	b.file.SetActiveSheet(0)
 	return b.file.SetDocProps(&excelize.DocProperties{Identifier: id, Title: "Sheet of " + b.Plan.Site.Name, Creator: "Swardbook"})
 }

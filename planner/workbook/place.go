@@ -11,8 +11,7 @@ import (
 
 // places are where things stand in the book, fixed before a cell is written.
 type places struct {
-	columns  int // of the sheet days
-	next     string
+	columns  int                                            // of the sheet days
 	growth   map[planner.SurfaceID]map[planner.Basis]string // column of growth potential
 	works    []workPlace
 	counts   int // all counts of all works

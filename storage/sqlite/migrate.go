@@ -8,6 +8,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"time"
 
 	"github.com/pressly/goose/v3"
 
@@ -23,8 +24,10 @@ const (
 	applicationID = 0x53575244
 
 	// migrationTries bounds how often a migration is tried again that another
-	// program, opening the same file, was first with.
-	migrationTries = 3
+	// program, opening the same file, was first with: once for each migration
+	// and each of a few other programs, with a pause before the next.
+	migrationTries = 40
+	migrationPause = 50 * time.Millisecond
 )
 
 // checkPath returns the absolute path, or says what to do about it.
@@ -85,6 +88,11 @@ func migrateUp(ctx context.Context, writer *sql.DB, provider *goose.Provider) er
 	for range migrationTries {
 		if _, err = provider.Up(ctx); err == nil {
 			return nil
+		}
+		select {
+		case <-ctx.Done():
+			return err
+		case <-time.After(migrationPause):
 		}
 	}
 	return err
