@@ -29,7 +29,8 @@ func correctedBy(unit Unit) float64 {
 // Corrections compares the figures that were posted on a morning with those
 // that the same morning gives now, and returns what late readings have moved:
 // running totals of works and seasons, and the two means of the day before. A
-// figure that is new or gone is no correction.
+// figure that is new or gone is no correction, nor is a count that an entry
+// logged since has started elsewhere.
 func Corrections(posted, now Figures) []Correction {
 	var out []Correction
 	for _, was := range posted {
@@ -37,6 +38,9 @@ func Corrections(posted, now Figures) []Correction {
 			continue
 		}
 		is, ok := now.Get(was.Key)
+		if since := strings.TrimSuffix(was.Key, "total") + "since"; ok && posted.value(since) != now.value(since) {
+			continue
+		}
 		if ok && is.Unit == was.Unit && math.Abs(is.Value-was.Value) >= correctedBy(was.Unit) {
 			out = append(out, Correction{was.Key, was.Value, is.Value, was.Unit})
 		}

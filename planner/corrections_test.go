@@ -18,6 +18,8 @@ func TestCorrections(t *testing.T) {
 		figure("due.greens.feed.hourly.total", 1.2, planner.NitrogenGM2),
 		figure("total.gdd10.hourly", 300.2, planner.DegreeDays),
 		figure("total.gone.hourly", 5, planner.DegreeDays),
+		figure("due.tees.feed.hourly.total", 3, planner.GrowthDays),
+		figure("due.tees.feed.hourly.since", 100, planner.Date),
 		figure("yesterday.hourly_mean_c", 18.7, planner.DegreesC),
 		figure("yesterday.readings", 20, planner.Count),
 	}
@@ -30,6 +32,8 @@ func TestCorrections(t *testing.T) {
 		figure("yesterday.hourly_mean_c", 19.1, planner.DegreesC),
 		figure("yesterday.readings", 24, planner.Count),
 		figure("total.new.hourly", 7, planner.DegreeDays),
+		figure("due.tees.feed.hourly.total", 1, planner.GrowthDays), // logged since
+		figure("due.tees.feed.hourly.since", 105, planner.Date),
 	}
 	want := []planner.Correction{
 		{Key: "due.greens.regulator.hourly.total", Was: 188, Is: 196, Unit: planner.DegreeDays},

@@ -210,7 +210,8 @@ func (w WorkState) Figures(asOf Day) Figures {
 		notes := facts.Total.Notes()
 		f = append(f,
 			Figure{Key: key + "total", Value: facts.Total.Total, Unit: w.Unit, Basis: facts.Basis, Notes: notes},
-			Figure{Key: key + "target", Value: facts.Target, Unit: w.Unit, Basis: facts.Basis})
+			Figure{Key: key + "target", Value: facts.Target, Unit: w.Unit, Basis: facts.Basis},
+			Figure{Key: key + "since", Value: float64(facts.Since), Unit: Date, Basis: facts.Basis})
 		f = append(f, facts.dates(key, asOf)...)
 	}
 	return f

@@ -45,6 +45,12 @@ func (f Figures) Get(key string) (Figure, bool) {
 	return Figure{}, false
 }
 
+// value is the figure's value; 0 for one that is not there.
+func (f Figures) value(key string) float64 {
+	figure, _ := f.Get(key)
+	return figure.Value
+}
+
 // Under returns the figures with the prefix put before each key, as a what-if
 // does with "base." and "whatif.".
 func (f Figures) Under(prefix string) Figures {

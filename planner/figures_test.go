@@ -71,9 +71,9 @@ func TestFiguresOfAMorning(t *testing.T) {
 		"yesterday.date", "yesterday.high_c", "yesterday.low_c", "yesterday.readings", "yesterday.hourly_mean_c", "yesterday.midrange_mean_c",
 		"yesterday.growth_potential.front-greens.hourly", "yesterday.growth_potential.front-greens.midrange", "yesterday.growth_potential.front-greens.hours",
 		"total.gdd.hourly", "total.gdd.midrange",
-		count + "hourly.total", count + "hourly.target", count + "hourly.days_until", count + "hourly.date",
+		count + "hourly.total", count + "hourly.target", count + "hourly.since", count + "hourly.days_until", count + "hourly.date",
 		count + "hourly.early", count + "hourly.middle", count + "hourly.late", count + "hourly.path",
-		count + "midrange.total", count + "midrange.target", count + "midrange.days_until", count + "midrange.date",
+		count + "midrange.total", count + "midrange.target", count + "midrange.since", count + "midrange.days_until", count + "midrange.date",
 		count + "midrange.early", count + "midrange.middle", count + "midrange.late", count + "midrange.path",
 	}
 	if !reflect.DeepEqual(keys, want) {

@@ -140,6 +140,7 @@ type Posting struct {
 	Message string    // once sent: the message, as the chat server names it
 	Reason  string    // why it was given up, or what went wrong last
 	Partial bool      // sent while yesterday's weather was not whole
+	Figures Figures   // once sent: what it said, to tell later what was corrected
 }
 
 // PostLedger keeps what became of each post on each day, for one team.

@@ -44,6 +44,9 @@ type Task struct {
 	Missed []planner.Day
 	// Row is the ledger's row, when there is one.
 	Row planner.Posting
+	// Posted is the newest row before the day of what was sent with its
+	// figures, for telling what late readings have corrected since.
+	Posted planner.Posting
 }
 
 // Timed is a post with the zone of its site.

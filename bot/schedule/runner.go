@@ -119,11 +119,23 @@ func (r *Runner) Tick(ctx context.Context, now time.Time) error {
 		if ctx.Err() != nil {
 			return ctx.Err()
 		}
+		task.Posted = lastPosted(ledger, task)
 		if err := r.do(ctx, task, now); err != nil {
 			wrong = append(wrong, fmt.Errorf("post %d of %s: %w", task.Post.ID, task.Day, err))
 		}
 	}
 	return errors.Join(wrong...)
+}
+
+// lastPosted is the newest row of the task's post, before its day, that was
+// sent with its figures.
+func lastPosted(ledger []planner.Posting, task Task) (last planner.Posting) {
+	for _, row := range ledger {
+		if row.Post == task.Post.ID && row.State == planner.Sent && row.Day < task.Day && row.Day >= last.Day && len(row.Figures) > 0 {
+			last = row
+		}
+	}
+	return last
 }
 
 func timed(setup planner.Setup) ([]Timed, error) {
@@ -220,6 +232,7 @@ func (r *Runner) send(ctx context.Context, task Task, now time.Time) error {
 	}
 	row := task.Row
 	row.State, row.At, row.Message, row.Reason, row.Partial = planner.Sent, now, message, "", content.Partial && row.Part == 0
+	row.Figures = content.Reply.Figures
 	return r.record(ctx, row)
 }
 

@@ -7,6 +7,7 @@ import (
 	"strings"
 	"time"
 
+	"swardbook/bot/briefing"
 	"swardbook/bot/command"
 	"swardbook/bot/reply"
 	"swardbook/planner"
@@ -47,12 +48,37 @@ func (d Desk) Compose(ctx context.Context, task Task, now time.Time) (Content, e
 		return Content{}, err
 	}
 	partial := !whole
-	if notes := notes(task, partial, site); len(notes) > 0 {
+	corrected, err := d.corrected(ctx, task, site)
+	if err != nil {
+		return Content{}, err
+	}
+	if notes := append(notes(task, partial, site), corrected...); len(notes) > 0 {
 		r.Blocks = slices.Insert(r.Blocks, underHeading(r.Blocks), reply.Block(reply.Text(strings.Join(notes, "\n"))))
 	}
 	r.Private, r.Confirm = false, nil
 	r.Blocks = append(withoutActions(r.Blocks), d.actions(site, one))
 	return Content{Reply: r, Partial: partial}, nil
+}
+
+// corrected tells what late readings have moved since the last post, in a line.
+func (d Desk) corrected(ctx context.Context, task Task, site planner.Site) ([]string, error) {
+	posted := task.Posted
+	if kind, _ := command.PostKind(task.Post.What); !kind.Yesterday || len(posted.Figures) == 0 {
+		return nil, nil
+	}
+	plan, err := d.Book.Plan(ctx, site, posted.Day, task.Day)
+	if err != nil {
+		return nil, err
+	}
+	now, err := planner.Evaluate(plan)
+	if err != nil {
+		return nil, err
+	}
+	line := briefing.CorrectionLine(posted.Day, planner.Corrections(posted.Figures, now.Figures()), site.Units)
+	if line == "" {
+		return nil, nil
+	}
+	return []string{line}, nil
 }
 
 func (d Desk) site(ctx context.Context, post planner.Post) (planner.Setup, planner.Site, error) {

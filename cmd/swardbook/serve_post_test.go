@@ -194,6 +194,24 @@ func TestPostLateAndMissed(t *testing.T) {
 	}
 }
 
+// A reading that comes late and moves a figure that was posted is told in the
+// next post, once.
+func TestPostTellsCorrections(t *testing.T) {
+	m := newMorning(t)
+	m.weather("2024-06-02")
+	m.weather("2024-06-03")
+	m.now = time.Date(2024, 6, 4, 8, 0, 0, 0, time.UTC)
+	m.type_("/done greens regulator when:2024-06-01")
+	m.expect(m.tickAt("2024-06-04 05:30"), 1, "31 of 200")
+	m.weather("2024-06-04")
+	m.type_("/weather day date:2024-06-03 high:31 low:10")
+	m.expect(m.tickAt("2024-06-05 05:30"), 2, "Tue corrected: ", "late readings")
+	m.weather("2024-06-05")
+	if posts := m.tickAt("2024-06-06 05:30"); strings.Contains(posts[2], "corrected") {
+		t.Errorf("told twice:\n%s", posts[2])
+	}
+}
+
 func TestPostFollowUp(t *testing.T) {
 	m := newMorning(t)
 	m.weather("2024-06-01")

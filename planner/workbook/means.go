@@ -24,7 +24,7 @@ func (b *book) bothMeans() []planner.DayFacts {
 
 // means compares the two means over the sheet's measured days.
 func (b *book) means(p *page) error {
-	if err := p.SetColWidth(1, 5, 18); err != nil {
+	if err := p.SetColWidth(1, 6, 18); err != nil {
 		return err
 	}
 	if err := p.SetPanes(&excelize.Panes{Freeze: true, YSplit: meansHead, TopLeftCell: fmt.Sprintf("A%d", meansHead+1), ActivePane: "bottomLeft"}); err != nil {
@@ -38,7 +38,7 @@ func (b *book) means(p *page) error {
 		_, err := p.add(b.value(small, "No day of this sheet has both means."))
 		return err
 	}
-	if _, err := p.add(b.heads("days with both", "difference", "size of it", "spread (sd)", "largest")...); err != nil {
+	if _, err := p.add(b.heads("days with both", "difference", "size of it", "spread (sd)", "largest", "on")...); err != nil {
 		return err
 	}
 	means := planner.CompareMeans(b.Plan.Record, days[0].Day, days[len(days)-1].Day)

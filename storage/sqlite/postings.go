@@ -3,6 +3,7 @@ package sqlite
 import (
 	"context"
 	"database/sql"
+	"encoding/json"
 	"time"
 
 	"swardbook/planner"
@@ -19,10 +20,14 @@ var (
 func (t *Team) Postings(ctx context.Context, from planner.Day) ([]planner.Posting, error) {
 	postings, err := collect(ctx, t.db.reader, func(rows *sql.Rows) (p planner.Posting, err error) {
 		var at int64
-		err = rows.Scan(&p.Post, &p.Day, &p.Part, &p.State, &at, &p.Message, &p.Reason, &p.Partial)
+		var figures string
+		err = rows.Scan(&p.Post, &p.Day, &p.Part, &p.State, &at, &p.Message, &p.Reason, &p.Partial, &figures)
 		p.At = time.Unix(at, 0).UTC()
+		if err == nil && figures != "" {
+			err = json.Unmarshal([]byte(figures), &p.Figures)
+		}
 		return p, err
-	}, `SELECT post, day, part, state, at, message, reason, partial FROM posting AS p
+	}, `SELECT post, day, part, state, at, message, reason, partial, figures FROM posting AS p
 		WHERE team = ?1 AND (day >= ?2 OR state = 'claimed'
 			OR day = (SELECT max(day) FROM posting WHERE team = ?1 AND post = p.post))
 		ORDER BY post, day, part`, t.id, from)
@@ -52,10 +57,18 @@ func (t *Team) Claim(ctx context.Context, p planner.Posting) (claimed bool, err 
 // Settle says what became of a claimed row. A row that is not there, or no
 // longer claimed, is a NotFound problem.
 func (t *Team) Settle(ctx context.Context, p planner.Posting) error {
+	figures := ""
+	if len(p.Figures) > 0 {
+		text, err := encode(p.Figures)
+		if err != nil {
+			return err
+		}
+		figures = text
+	}
 	return t.db.write(ctx, "settle a post", func(conn *sql.Conn) error {
-		result, err := conn.ExecContext(ctx, `UPDATE posting SET state = ?, at = ?, message = ?, reason = ?, partial = ?
+		result, err := conn.ExecContext(ctx, `UPDATE posting SET state = ?, at = ?, message = ?, reason = ?, partial = ?, figures = ?
 			WHERE team = ? AND post = ? AND day = ? AND part = ? AND state = 'claimed'`,
-			p.State, p.At.Unix(), p.Message, p.Reason, p.Partial, t.id, p.Post, p.Day, p.Part)
+			p.State, p.At.Unix(), p.Message, p.Reason, p.Partial, figures, t.id, p.Post, p.Day, p.Part)
 		if err != nil {
 			return err
 		}

@@ -31,6 +31,7 @@ CREATE TABLE posting (
     message TEXT    NOT NULL,
     reason  TEXT    NOT NULL,
     partial INTEGER NOT NULL CHECK (partial IN (0, 1)),
+    figures TEXT    NOT NULL DEFAULT '',
     PRIMARY KEY (team, post, day, part),
     FOREIGN KEY (team, post) REFERENCES post (team, id)
 ) STRICT, WITHOUT ROWID;
