@@ -28,6 +28,9 @@ const (
 	// and each of a few other programs, with a pause before the next.
 	migrationTries = 40
 	migrationPause = 50 * time.Millisecond
+	// busyTries bounds how often a file that stays locked through the busy
+	// timeout is looked at again: a minute and a half in all.
+	busyTries = 18
 )
 
 // checkPath returns the absolute path, or says what to do about it.
@@ -52,8 +55,24 @@ func checkPath(path string) (string, error) {
 	return absolute, nil
 }
 
-// migrate brings the file to the newest of the migrations.
+// migrate brings the file to the newest of the migrations. Another program
+// that is at the same may hold it up at any step: it looks again.
 func migrate(ctx context.Context, writer *sql.DB, path string, migrations fs.FS) error {
+	var err error
+	for range busyTries {
+		if err = migrateOnce(ctx, writer, path, migrations); planner.KindOf(err) != planner.Busy {
+			return err
+		}
+		select {
+		case <-ctx.Done():
+			return err
+		case <-time.After(migrationPause):
+		}
+	}
+	return err
+}
+
+func migrateOnce(ctx context.Context, writer *sql.DB, path string, migrations fs.FS) error {
 	provider, err := goose.NewProvider(goose.DialectSQLite3, writer, migrations,
 		goose.WithTableName(versionTable), goose.WithDisableGlobalRegistry(true), goose.WithLogger(goose.NopLogger()))
 	if err != nil {
