@@ -123,12 +123,6 @@ func (s shift) applied(facts DayFacts) DayFacts {
 	}
 	byC := s.hourly.meanC()
 	facts.HourlyC += byC
-	if facts.HoursC != nil {
-		hoursC := make([]float64, len(facts.HoursC))
-		for i, c := range facts.HoursC {
-			hoursC[i] = c + byC
-		}
-		facts.HoursC = hoursC
-	}
+	facts.HoursC = raised(facts.HoursC, byC)
 	return facts
 }

@@ -1,6 +1,10 @@
 package planner
 
-import "fmt"
+import (
+	"fmt"
+
+	"swardbook/calc"
+)
 
 // Basis says which mean a figure stands on.
 type Basis string
@@ -136,13 +140,15 @@ type DayFacts struct {
 }
 
 // Mean returns the day's mean on the basis. It is not known when the day lacks
-// that mean; it never falls back (the caller does, and labels it).
+// that mean or its extremes cannot be; it never falls back (the caller does, and
+// labels it).
 func (f DayFacts) Mean(basis Basis) (meanC float64, known bool) {
 	switch {
 	case basis == Hourly && f.HasHourly:
 		return f.HourlyC, true
 	case basis == Midrange && f.HasExtremes:
-		return (f.HighC + f.LowC) / 2, true
+		meanC, err := calc.MidrangeMean(f.HighC, f.LowC)
+		return meanC, err == nil
 	}
 	return 0, false
 }
@@ -155,14 +161,20 @@ func (f DayFacts) Warmer(byC float64) DayFacts {
 	f.HighC += byC
 	f.LowC += byC
 	f.HourlyC += byC
-	if f.HoursC != nil {
-		hours := make([]float64, len(f.HoursC))
-		for i, c := range f.HoursC {
-			hours[i] = c + byC
-		}
-		f.HoursC = hours
-	}
+	f.HoursC = raised(f.HoursC, byC)
 	return f
+}
+
+// raised returns the values with the difference added; nil stays nil.
+func raised(valuesC []float64, byC float64) []float64 {
+	if valuesC == nil {
+		return nil
+	}
+	out := make([]float64, len(valuesC))
+	for i, c := range valuesC {
+		out[i] = c + byC
+	}
+	return out
 }
 
 // Record is the weather record of a site: what is known of each past day.

@@ -50,36 +50,39 @@ func (d Desk) runHelp(_ context.Context, req Request) (reply.Reply, error) {
 		return d.firstPage(table, req.Caller.Role), nil
 	}
 	wanted = strings.Join(strings.Fields(strings.ToLower(strings.TrimPrefix(wanted, "/"))), " ")
-	for _, topic := range topics() {
-		if topic.name == wanted {
-			page := topic.page()
-			page.Private = true
-			return page, nil
-		}
-	}
-	for _, formula := range calc.Catalogue() {
-		if formula.ID == wanted {
-			page := formulaPage(formula)
-			page.Private = true
-			return page, nil
-		}
-	}
-	if found, ok := table.Find(wanted); ok {
-		page := Help(found)
+	if page, ok := helpOn(wanted, table); ok {
 		page.Private = true
-		return page, nil
-	}
-	if inside := table.under(strings.Fields(wanted)); len(inside) > 0 {
-		page := reply.Reply{Private: true}
-		var fields reply.Fields
-		for _, command := range inside {
-			fields = append(fields, reply.Field{Name: "/" + command.Path, Value: command.Short})
-		}
-		page.Add(reply.Heading("/"+wanted), fields)
 		return page, nil
 	}
 	return reply.Reply{}, planner.Problemf(planner.NotFound, "There is no help on %q.", wanted).
 		WithHint("Topics: %s, or a command like /help due.", strings.Join(namesOf(topics(), func(t topic) string { return t.name }), ", "))
+}
+
+// helpOn is the page of a topic, a formula, a command, or the word that several
+// commands begin with.
+func helpOn(wanted string, table Table) (page reply.Reply, ok bool) {
+	for _, topic := range topics() {
+		if topic.name == wanted {
+			return topic.page(), true
+		}
+	}
+	for _, formula := range calc.Catalogue() {
+		if formula.ID == wanted {
+			return formulaPage(formula), true
+		}
+	}
+	if found, ok := table.Find(wanted); ok {
+		return Help(found), true
+	}
+	inside := table.under(strings.Fields(wanted))
+	if len(inside) == 0 {
+		return reply.Reply{}, false
+	}
+	var fields reply.Fields
+	for _, command := range inside {
+		fields = append(fields, reply.Field{Name: "/" + command.Path, Value: command.Short})
+	}
+	return reply.Of(reply.Heading("/"+wanted), fields), true
 }
 
 func (d Desk) firstPage(table Table, role Role) reply.Reply {
