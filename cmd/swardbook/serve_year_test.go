@@ -267,21 +267,27 @@ func (r *yearRunner) run(times []time.Time) {
 // tickAndKill kills the child in the tick, in one of four ways; false when the
 // tick gave no occasion.
 func (r *yearRunner) tickAndKill(c *child, at time.Time) bool {
-	way := r.way
+	first := r.way
+	way := first // a look-back may come sooner
 	var struck atomic.Bool
 	strike := func() {
 		struck.Store(true)
 		c.kill()
 	}
-	switch way {
+	switch first {
 	case 0:
 		timer := time.AfterFunc(time.Duration(r.random.IntN(20_000))*time.Microsecond, strike)
 		defer timer.Stop()
 	case 1, 2:
+		// Requests come side by side: what they decide by is theirs, behind one lock.
+		var deciding sync.Mutex
+		looks := rand.New(rand.NewPCG(r.random.Uint64(), 0))
 		skip := r.random.IntN(2) // the first message of the tick, or the second
 		r.fake.SetFault(func(method, path string) *fakechat.Fault {
+			deciding.Lock()
+			defer deciding.Unlock()
 			switch {
-			case method == "GET" && strings.HasSuffix(path, "/messages") && !struck.Load() && r.random.IntN(2) == 0:
+			case method == "GET" && strings.HasSuffix(path, "/messages") && !struck.Load() && looks.IntN(2) == 0:
 				way = 3
 				strike()
 				return &fakechat.Fault{CutBefore: true}
@@ -290,7 +296,7 @@ func (r *yearRunner) tickAndKill(c *child, at time.Time) bool {
 			case skip > 0:
 				skip--
 				return nil
-			case way == 1:
+			case first == 1:
 				strike()
 				return &fakechat.Fault{CutBefore: true}
 			}
@@ -299,7 +305,7 @@ func (r *yearRunner) tickAndKill(c *child, at time.Time) bool {
 		defer r.fake.SetFault(nil)
 	}
 	alive := c.tick(at)
-	if way == 0 && alive {
+	if first == 0 && alive {
 		for end := time.Now().Add(time.Second); !struck.Load() && time.Now().Before(end); time.Sleep(time.Millisecond) {
 		}
 	}
