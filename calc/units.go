@@ -16,6 +16,8 @@ const (
 	GramsPerOunce = GramsPerPound / 16
 	// MetresPerFoot: 1 ft = 0.3048 m, by definition.
 	MetresPerFoot = 0.3048
+	// MMPerInch: 1 in = 1/12 ft = 25.4 mm.
+	MMPerInch = 1000 * MetresPerFoot / 12
 	// SquareMetresPer1000SquareFeet: 1000 · 0.3048² = 92.90304 m².
 	SquareMetresPer1000SquareFeet = 1000 * MetresPerFoot * MetresPerFoot
 	// SquareMetresPerAcre: 1 acre = 43560 ft² = 4046.8564224 m².

@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"slices"
 	"sync"
 )
 
@@ -77,14 +78,38 @@ func (b *Book) Plan(ctx context.Context, site Site, asOf, today Day) (Plan, erro
 	if err != nil {
 		return Plan{}, fmt.Errorf("load the days ahead: %w", err)
 	}
+	rain, err := b.rain(ctx, site, setup, asOf, today)
+	if err != nil {
+		return Plan{}, err
+	}
 	record = record.Before(asOf)
 	return Plan{
 		Site: site, AsOf: asOf, Record: record,
 		Surfaces: setup.SurfacesOf(site.ID), Works: setup.WorksOf(site.ID), Totals: setup.TotalsOf(site.ID),
 		Closed:  setup.ClosedOf(site.ID),
 		Log:     filter(log, func(e Entry) bool { return e.Day < asOf || e.Day == asOf && asOf == today }),
-		Outlook: b.ahead.Outlook(record, hand, asOf), Hand: hand,
+		Outlook: b.ahead.Outlook(record, hand, asOf), Hand: hand, Rain: rain,
 	}, nil
+}
+
+// rain loads what the gauge caught since the oldest pass that may still be
+// asked about: for a past morning up to its midnight. Sites whose works have no
+// rain-free hours are not looked up.
+func (b *Book) rain(ctx context.Context, site Site, setup Setup, asOf, today Day) ([]Rain, error) {
+	wanted := slices.ContainsFunc(setup.WorksOf(site.ID), func(w Work) bool { return w.Settings.On(asOf).RainFreeHours > 0 })
+	zone, err := site.Location()
+	if !wanted || err != nil {
+		return nil, err
+	}
+	from, to := site.Rules.On(asOf).Window(zone, asOf-rainDays-1).Start, site.Rules.On(asOf).Window(zone, asOf+1).End
+	if asOf != today {
+		to = site.Rules.On(asOf).Window(zone, asOf).Start
+	}
+	rain, err := b.recorder.Rain(ctx, site.ID, from, to)
+	if err != nil {
+		return nil, fmt.Errorf("load the rain: %w", err)
+	}
+	return rain, nil
 }
 
 // Log returns the site's work log by day, undone entries left out.

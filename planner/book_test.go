@@ -27,6 +27,9 @@ type shelf struct {
 	loads  int
 	hand   []planner.HandDay
 	asked  planner.Day // of Ahead
+	rain   []planner.Rain
+	// what Rain was asked for
+	rainFrom, rainTo int64
 
 	imported planner.ImportRequest
 	facts    []planner.DayFacts // what an import brings
@@ -100,6 +103,11 @@ func (s *shelf) SaveAhead(_ context.Context, _ planner.Stamp, _ planner.SiteID, 
 func (s *shelf) Ahead(_ context.Context, _ planner.SiteID, asOf planner.Day) ([]planner.HandDay, error) {
 	s.asked = asOf
 	return s.hand, s.fails["Ahead"]
+}
+
+func (s *shelf) Rain(_ context.Context, _ planner.SiteID, from, to int64) ([]planner.Rain, error) {
+	s.rainFrom, s.rainTo = from, to
+	return s.rain, s.fails["Rain"]
 }
 
 func (s *shelf) Import(_ context.Context, request planner.ImportRequest) (planner.ImportReport, error) {

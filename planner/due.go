@@ -47,6 +47,9 @@ type WorkState struct {
 	// AskForgotten is set on the one morning on which the work turns overdue:
 	// it was perhaps done and not logged.
 	AskForgotten bool
+	// Rain is what fell on the newest pass within its rain-free hours and is
+	// still to be asked about; nil when there is nothing to ask.
+	Rain *RainAfter
 }
 
 // DueFacts is the count of a work and its due date on one basis.
@@ -127,6 +130,7 @@ func (p Plan) evaluateWork(work Work) (WorkState, error) {
 		return state, nil
 	}
 	state.LastDone, state.Behind = last, behind
+	state.Rain = p.rainOn(state)
 	for _, basis := range measure.Bases() {
 		state.Bases = append(state.Bases, p.dueOn(state, measure, basis, last))
 	}

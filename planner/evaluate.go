@@ -214,6 +214,10 @@ func (w WorkState) Figures(asOf Day) Figures {
 			Figure{Key: key + "since", Value: float64(facts.Since), Unit: Date, Basis: facts.Basis})
 		f = append(f, facts.dates(key, asOf)...)
 	}
+	if w.Rain != nil {
+		key := fmt.Sprintf("due.%s.%s.rain_mm", NameKey(w.Surface.Name), NameKey(w.Work.Name))
+		f = append(f, Figure{Key: key, Value: w.Rain.MM, Unit: Millimetres, Basis: NoBasis})
+	}
 	return f
 }
 

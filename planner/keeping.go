@@ -71,6 +71,10 @@ type Recorder interface {
 	// day from asOf on the newest typed on or before asOf, in order, cleared
 	// ones left out.
 	Ahead(ctx context.Context, site SiteID, asOf Day) ([]HandDay, error)
+	// Rain returns what the gauge caught from one time to another, both
+	// included, in UTC seconds, by time: that of the site's first station by rank
+	// that has any reading of rain in between.
+	Rain(ctx context.Context, site SiteID, from, to int64) ([]Rain, error)
 }
 
 // Importer reads station files into the record.
@@ -169,10 +173,23 @@ type ImportReport struct {
 	Refusals []Refusal
 	From, To Day // first and last day of the readings taken; meaningless when none was
 	Import   ImportID
-	Notes    []string // in sentences: what else was found, left out or taken for granted
+	// Rain counts the gauge readings that came with the rows; all are 0 when the
+	// file has none.
+	Rain  RowCounts
+	Notes []string // in sentences: what else was found, left out or taken for granted
 	// Remembered is what is remembered for the station's next file: "sensor:roof".
 	Remembered []string
 }
+
+// RowCounts says how values stood to those in the record.
+type RowCounts struct {
+	New     int // that were not in the record
+	Changed int // that replaced another value
+	Same    int // in the record with this value
+}
+
+// All is the number of values.
+func (c RowCounts) All() int { return c.New + c.Changed + c.Same }
 
 // Taken is the number of rows that are in the record after the import.
 func (r ImportReport) Taken() int { return r.New + r.Changed + r.Same }

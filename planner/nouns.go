@@ -227,7 +227,10 @@ type Entry struct {
 	// not said.
 	Clock   string `json:"clock,omitempty"`
 	Watered Day    `json:"watered,omitempty"` // when it was watered in; 0 when not said
-	Undone  bool   `json:"undone,omitempty"`
+	// RainCounts says that it counts although it rained within the rain-free
+	// hours: it is not asked again.
+	RainCounts bool `json:"rain_counts,omitempty"`
+	Undone     bool `json:"undone,omitempty"`
 }
 
 // Pass is one work done in an entry.

@@ -52,6 +52,7 @@ type Plan struct {
 	Log      []Entry // by day, undone entries left out
 	Outlook  Outlook
 	Hand     []HandDay // days ahead as typed, with what the outlook does not hold
+	Rain     []Rain    // gauge readings since some days ago, by time; may be empty
 }
 
 // Surface returns the surface with the id.

@@ -184,7 +184,13 @@ func (r *run) take(row intake.Row, err error) error {
 		return nil
 	case err != nil:
 		return err
-	case row.Empty:
+	}
+	if row.HasRain {
+		if err := r.stage.AddRain(row.Line, row.Rain); err != nil {
+			return fmt.Errorf("stage the rain of line %d: %w", row.Line, err)
+		}
+	}
+	if row.Empty {
 		r.empty++
 		return nil
 	}
@@ -255,6 +261,7 @@ func (r *run) report(merged sqlite.MergeReport) planner.ImportReport {
 		From:     merged.From,
 		To:       merged.To,
 		Import:   planner.ImportID(merged.ImportID),
+		Rain:     merged.Rain,
 		Notes:    r.file.Notes,
 
 		Remembered: remembered(r.file),

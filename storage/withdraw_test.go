@@ -3,6 +3,7 @@ package storage_test
 import (
 	"bytes"
 	"fmt"
+	"math"
 	"slices"
 	"strings"
 	"testing"
@@ -14,15 +15,19 @@ import (
 )
 
 // written is a file of hourly readings and days: of each hour, or day, a value
-// or none.
+// or none. With every other reading comes rain.
 func written(hours, days map[int]float64) string {
 	var b strings.Builder
-	b.WriteString("time,temp_c,day_high_c,day_low_c,day_mean_c\n")
+	b.WriteString("time,temp_c,day_high_c,day_low_c,day_mean_c,rain_mm\n")
 	for _, hour := range sortedKeys(hours) {
-		fmt.Fprintf(&b, "2013-07-%02dT%02d:00:00Z,%v,,,\n", 1+hour/24, hour%24, hours[hour])
+		rain := ""
+		if hour%2 == 0 {
+			rain = fmt.Sprint(math.Abs(hours[hour]))
+		}
+		fmt.Fprintf(&b, "2013-07-%02dT%02d:00:00Z,%v,,,,%s\n", 1+hour/24, hour%24, hours[hour], rain)
 	}
 	for _, day := range sortedKeys(days) {
-		fmt.Fprintf(&b, "2013-07-%02d,,%v,%v,\n", 1+day, days[day]+5, days[day]-5)
+		fmt.Fprintf(&b, "2013-07-%02d,,%v,%v,,\n", 1+day, days[day]+5, days[day]-5)
 	}
 	return b.String()
 }

@@ -163,3 +163,35 @@ func TestTitlesFitAPhone(t *testing.T) {
 		}
 	}
 }
+
+// What is told of the rain after a pass: what the gauge knows, and no more.
+func TestRainNote(t *testing.T) {
+	pass := planner.Entry{Day: june(3), Clock: "06:10"}
+	at := func(minutes int64, mm float64) planner.Rain {
+		return planner.Rain{At: int64(june(3))*86400 + 5*3600 + 600 + 60*minutes, MM: mm} // 05:10 UTC is 06:10 on the wall
+	}
+	dry := []planner.Rain{at(60, 0), at(120, 0), at(180, 0), at(240, 0)}
+	needs := planner.WorkSettings{RainFreeHours: 4}
+	for _, row := range []struct {
+		name     string
+		settings planner.WorkSettings
+		entry    planner.Entry
+		rain     []planner.Rain
+		want     string
+	}{
+		{"rain", needs, pass, []planner.Rain{at(40, 1.8), at(60, 0)}, "1.8 mm fell 40 min after: still count it?\nif not, say result:doubtful or result:lost"},
+		{"a little, late", needs, pass, []planner.Rain{at(170, 0.03)}, "under 0.1 mm fell 3 h after: still count it?\nif not, say result:doubtful or result:lost"},
+		{"dry", needs, pass, dry, "no rain in its 4 rain-free hours"},
+		{"dry so far", needs, pass, dry[:3], "4 rain-free hours: if it rained sooner, amend it with result:doubtful or lost"},
+		{"no gauge", needs, pass, nil, "4 rain-free hours: if it rained sooner, amend it with result:doubtful or lost"},
+		{"no time", needs, planner.Entry{Day: june(3)}, dry, "4 rain-free hours: say the time, and the rain is looked up, as in when:\"today 06:10\""},
+		{"it was said", needs, planner.Entry{Day: june(3), Clock: "06:10", Result: planner.Doubtful}, []planner.Rain{at(40, 1.8)}, ""},
+		{"it counts", needs, planner.Entry{Day: june(3), Clock: "06:10", RainCounts: true}, []planner.Rain{at(40, 1.8)}, ""},
+		{"no rain-free hours", planner.WorkSettings{}, pass, []planner.Rain{at(40, 1.8)}, ""},
+	} {
+		plan := planner.Plan{Site: planner.Site{Zone: "Europe/Dublin"}, Rain: row.rain}
+		if got := briefing.RainNote(row.settings, row.entry, plan); got != row.want {
+			t.Errorf("%s: %q, want %q", row.name, got, row.want)
+		}
+	}
+}

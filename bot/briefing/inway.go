@@ -2,6 +2,8 @@ package briefing
 
 import (
 	"fmt"
+	"math"
+	"time"
 
 	"swardbook/planner"
 )
@@ -41,10 +43,48 @@ func InTheWay(state planner.WorkState) []string {
 	if doubted := state.Doubted; doubted != nil {
 		add("last pass doubtful; without it: %s", passage(doubted.Date()))
 	}
+	if state.Rain != nil {
+		lines = append(lines, RainQuestion(*state.Rain), fmt.Sprintf("(entry %d: result:good, doubtful or lost)", state.Rain.Entry))
+	}
 	if state.AskForgotten {
 		add("was it done on or about %s and not logged?", DayMonth(facts.Date().Day))
 	}
 	return lines
+}
+
+// RainQuestion asks whether a pass that it rained on still counts.
+func RainQuestion(rain planner.RainAfter) string {
+	mm := Plain(math.Round(10*rain.MM) / 10)
+	if mm == "0" {
+		mm = "under 0.1"
+	}
+	return fmt.Sprintf("%s mm fell %s after: still count it?", mm, soon(rain.First))
+}
+
+// soon writes a time within some days: "40 min", "3 h".
+func soon(after time.Duration) string {
+	if after < 2*time.Hour {
+		return fmt.Sprintf("%.0f min", after.Minutes())
+	}
+	return fmt.Sprintf("%.0f h", after.Hours())
+}
+
+// RainNote says what is known of the rain after the entry's pass of a work with
+// rain-free hours; "" when there is nothing to say, or it is said already.
+func RainNote(settings planner.WorkSettings, entry planner.Entry, plan planner.Plan) string {
+	hours := settings.RainFreeHours
+	rain, known := plan.RainAfter(entry, hours)
+	switch {
+	case !(hours > 0) || entry.Result != planner.Good || entry.RainCounts:
+		return ""
+	case known && rain.Rained():
+		return RainQuestion(rain) + "\nif not, say result:doubtful or result:lost"
+	case known && rain.Whole:
+		return "no rain in its " + Plain(hours) + " rain-free hours"
+	case entry.Clock == "" && len(plan.Rain) > 0:
+		return Plain(hours) + " rain-free hours: say the time, and the rain is looked up, as in when:\"today 06:10\""
+	}
+	return Plain(hours) + " rain-free hours: if it rained sooner, amend it with result:doubtful or lost"
 }
 
 func passage(p planner.Passage) string {
@@ -78,9 +118,6 @@ func PassNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []st
 	}
 	if !state.Settings.Season.On(day) {
 		add("out of its season")
-	}
-	if hours := state.Settings.RainFreeHours; hours > 0 {
-		add("%s rain-free hours: if it rained sooner, amend it with result:doubtful or lost", Plain(hours))
 	}
 	return lines
 }

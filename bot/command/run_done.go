@@ -2,6 +2,7 @@ package command
 
 import (
 	"context"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -50,7 +51,11 @@ func (d Desk) runDone(ctx context.Context, req Request) (reply.Reply, error) {
 	if err != nil {
 		return reply.Reply{}, err
 	}
-	r, err := v.meaning(ctx, entry)
+	plan, before, err := v.evaluate(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	r, err := v.meaning(plan, before, entry)
 	if err != nil {
 		return reply.Reply{}, err
 	}
@@ -63,6 +68,7 @@ func (d Desk) runDone(ctx context.Context, req Request) (reply.Reply, error) {
 		r.Confirm = &reply.Confirm{Question: "Log this?", Line: v.LineWith("when", when)}
 		return r, nil
 	}
+	entry.RainCounts = entry.RainCounts || rainedOn(plan, entry) // it was asked
 	kept, err := v.book.Save(ctx, v.stamp(), entry)
 	if err != nil {
 		return reply.Reply{}, err
@@ -110,6 +116,7 @@ func (v visit) fill(entry *planner.Entry) error {
 	if v.Values.Has("when") {
 		entry.Day = day
 		entry.Clock, _ = v.Values.Clock("when")
+		entry.RainCounts = false
 	}
 	if watered, given, err := v.Values.Day("watered", v.today); err != nil {
 		return err
@@ -118,6 +125,7 @@ func (v visit) fill(entry *planner.Entry) error {
 	}
 	if result, given := v.Values.Text("result"); given {
 		entry.Result = planner.Result(strings.TrimPrefix(result, "good"))
+		entry.RainCounts = entry.Result == planner.Good
 	}
 	entry.Note = textOr(v.Values, "note", entry.Note)
 	if err := v.fillPasses(entry.Passes); err != nil {
@@ -223,13 +231,21 @@ func (v visit) needsNitrogen(entry planner.Entry) error {
 	return nil
 }
 
+// rainedOn reports whether rain is known to have fallen within the rain-free
+// hours of any of the entry's works.
+func rainedOn(plan planner.Plan, entry planner.Entry) bool {
+	return entry.Result == planner.Good && slices.ContainsFunc(plan.Works, func(work planner.Work) bool {
+		_, has := entry.Of(work.ID)
+		rain, ok := plan.RainAfter(entry, work.Settings.On(plan.AsOf).RainFreeHours)
+		return has && ok && rain.Rained()
+	})
+}
+
 // meaning says what an entry does to counts, dates, limits and the balance.
-func (v visit) meaning(ctx context.Context, entry planner.Entry) (reply.Reply, error) {
-	plan, before, err := v.evaluate(ctx)
-	if err != nil {
-		return reply.Reply{}, err
-	}
-	changed, refusals := planner.Apply(plan, planner.LogEntry{Entry: entry, Name: "the entry"})
+func (v visit) meaning(plan planner.Plan, before planner.Evaluation, entry planner.Entry) (reply.Reply, error) {
+	asked := entry
+	asked.RainCounts = true // with the pass, once
+	changed, refusals := planner.Apply(plan, planner.LogEntry{Entry: asked, Name: "the entry"})
 	if len(refusals) > 0 {
 		return reply.Reply{}, refusals[0]
 	}
@@ -243,6 +259,9 @@ func (v visit) meaning(ctx context.Context, entry planner.Entry) (reply.Reply, e
 		lines := passLines(surface, work, entry, pass)
 		if was, ok := stateOf(before.Works, pass.Work); ok {
 			lines = append(lines, briefing.PassNotes(was, entry.Day, plan)...)
+			if note := briefing.RainNote(was.Settings, entry, plan); note != "" {
+				lines = append(lines, note)
+			}
 		}
 		if is, ok := stateOf(after.Works, pass.Work); ok && entry.Result != planner.Lost {
 			lines = append(lines, nextLines(is, v.today)...)

@@ -2,6 +2,7 @@ package command
 
 import (
 	"context"
+	"strconv"
 	"strings"
 
 	"swardbook/bot/briefing"
@@ -52,6 +53,7 @@ func (d Desk) runDue(ctx context.Context, req Request) (reply.Reply, error) {
 		r.Add(reply.Text(strings.Join(briefing.Brief(state, evaluation), "\n")))
 		r.Figures = append(r.Figures, state.Figures(v.today)...)
 	}
+	r.Add(rainAnswers(states)...)
 	if !v.Values.Has("surface") && !v.Values.Has("work") {
 		for _, total := range evaluation.Totals {
 			for _, mark := range total.Marks {
@@ -64,6 +66,26 @@ func (d Desk) runDue(ctx context.Context, req Request) (reply.Reply, error) {
 	}
 	r.Add(reply.Text(briefing.AheadNote(evaluation.Outlook)), reply.Text(briefing.Cautions(states)))
 	return r, nil
+}
+
+// rainAnswers are the buttons that answer whether passes that it rained on
+// still count.
+func rainAnswers(states []planner.WorkState) []reply.Block {
+	var blocks []reply.Block
+	asked := map[planner.EntryID]bool{}
+	for _, state := range states {
+		if state.Rain == nil || asked[state.Rain.Entry] {
+			continue
+		}
+		asked[state.Rain.Entry] = true
+		var answers reply.Actions
+		for _, result := range []string{"good", string(planner.Doubtful), string(planner.Lost)} {
+			id := strconv.FormatInt(int64(state.Rain.Entry), 10)
+			answers = append(answers, reply.Action{Label: "Entry " + id + ": " + result, Line: Line("log amend", Pair{"entry", id}, Pair{"result", result})})
+		}
+		blocks = append(blocks, answers)
+	}
+	return blocks
 }
 
 // chosen keeps the works that the surface and work options name; none left is

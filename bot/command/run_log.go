@@ -118,6 +118,9 @@ func (v visit) entryLines(entry planner.Entry, titles map[planner.WorkID]string)
 	if entry.Result != planner.Good {
 		lines = append(lines, "result: "+string(entry.Result))
 	}
+	if entry.RainCounts {
+		lines = append(lines, "counts, though it rained")
+	}
 	if entry.Note != "" {
 		lines = append(lines, "\""+entry.Note+"\"")
 	}
@@ -226,7 +229,11 @@ func (d Desk) runLogAmend(ctx context.Context, req Request) (reply.Reply, error)
 	if err := v.needsNitrogen(entry); err != nil {
 		return reply.Reply{}, err
 	}
-	r, err := v.meaning(ctx, entry)
+	plan, before, err := v.evaluate(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	r, err := v.meaning(plan, before, entry)
 	if err != nil {
 		return reply.Reply{}, err
 	}

@@ -80,7 +80,7 @@ func (d Desk) runSheetGet(ctx context.Context, req Request) (reply.Reply, error)
 // sheetInputs is the plan without what the record and the set-up keep anyway.
 func sheetInputs(plan planner.Plan) planner.Plan {
 	plan.Record = planner.Record{Revision: plan.Record.Revision}
-	plan.Outlook.Members = nil
+	plan.Outlook.Members, plan.Rain = nil, nil
 	return plan
 }
 

@@ -175,6 +175,9 @@ func ImportReply(station planner.Station, report planner.ImportReport) reply.Rep
 		fields = append(fields, reply.Field{Name: "from", Value: report.From.String()}, reply.Field{Name: "to", Value: report.To.String()})
 	}
 	r.Add(fields, reply.Text(strings.Join(append([]string{readAs(report)}, report.Notes...), "\n")))
+	if rain := report.Rain; rain.All() > 0 {
+		r.Add(reply.Textf("Rain: %s, %d new.", counted(rain.All(), "reading", "readings"), rain.New+rain.Changed))
+	}
 	if len(report.Remembered) > 0 {
 		r.Add(reply.Textf("Remembered for %s: %s.", station.Name, strings.Join(report.Remembered, ", ")))
 	}

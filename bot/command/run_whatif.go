@@ -117,6 +117,9 @@ func (v visit) sideBySide(chosen []planner.WorkState, base, whatIf planner.Evalu
 // passNotes say what stands against doing the work on the day.
 func passNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []reply.Block {
 	notes := briefing.PassNotes(state, day, plan)
+	if hours := state.Settings.RainFreeHours; hours > 0 {
+		notes = append(notes, briefing.Plain(hours)+" rain-free hours after it")
+	}
 	if len(notes) == 0 {
 		return nil
 	}

@@ -7,6 +7,7 @@ import (
 	"unicode"
 	"unicode/utf8"
 
+	"swardbook/calc"
 	"swardbook/planner"
 )
 
@@ -24,7 +25,8 @@ const (
 	sensorRole   // which of several sensors a row is of
 	humidityRole // known and not kept
 	rainRole
-	likelyRole // a temperature that is not called the air's
+	rainSumRole // rain of a day so far or a whole day: known and not kept
+	likelyRole  // a temperature that is not called the air's
 )
 
 // unitEndings is what may stand at the end of a column's name, written as
@@ -46,6 +48,9 @@ type column struct {
 	name  string // as written
 	role  role
 	units planner.Units // "" when the name has none
+	// rainMM is what one of the unit of a rain column is in mm; 0 when the name
+	// has none.
+	rainMM float64
 	// zone is what the name of a time says of its zone: "time (UTC)".
 	zone    int
 	hasZone bool
@@ -69,8 +74,13 @@ func readColumn(index int, name []byte) column {
 		found.role = likelyRole
 	}
 	if at := strings.LastIndexByte(plain, ' '); found.role == noRole && at > 0 {
-		if base := roleOf(plain[:at]); base == humidityRole || base == rainRole {
-			found.role = base // "rain mm"
+		switch base := roleOf(plain[:at]); base {
+		case humidityRole, rainSumRole:
+			found.role = base // "humidity percent"
+		case rainRole:
+			if mm, known := rainUnits[plain[at+1:]]; known {
+				found.role, found.rainMM = base, mm // "rain mm"
+			}
 		}
 	}
 	if (found.role == timeRole || found.role == hourRole) && found.units != "" {
@@ -78,6 +88,10 @@ func readColumn(index int, name []byte) column {
 	}
 	return found
 }
+
+// rainUnits are the units of rain, in mm, as they end a column's name. A rate
+// ("rain mm h") is none of them.
+var rainUnits = map[string]float64{"mm": 1, "in": calc.MMPerInch, "inch": calc.MMPerInch, "inches": calc.MMPerInch, "cm": 10}
 
 // roleOf is the role of a plain name.
 func roleOf(plain string) role {

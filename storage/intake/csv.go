@@ -28,10 +28,11 @@ type csvFile struct {
 	order        dateOrder     // of dates in figures
 	zones        zoneNames
 	clocks       fileClock
-	sensor       *column // the column that says which sensor a row is of
-	wanted       string  // the sensor that counts
-	lastRow      int     // the last line with a time: what stands below is no row
-	below        int     // lines below it
+	rain         *rainColumn // nil when the file has none that is kept
+	sensor       *column     // the column that says which sensor a row is of
+	wanted       string      // the sensor that counts
+	lastRow      int         // the last line with a time: what stands below is no row
+	below        int         // lines below it
 }
 
 // valueColumn is a column of temperatures with its reasons ready.
@@ -70,6 +71,7 @@ func openCSV(src *spool, site Site, how How) (*File, error) {
 		}
 		guessed = found.values.named == [2]int{}
 	}
+	rainNote := file.settleRain(l.head, found.rain, units)
 	for _, c := range columns {
 		file.temperatures = append(file.temperatures, newValueColumn(c, units))
 	}
@@ -81,7 +83,7 @@ func openCSV(src *spool, site Site, how How) (*File, error) {
 	if file.daily {
 		out.Format = Daily
 	}
-	out.Notes = file.notes(l, guessed, units, found)
+	out.Notes = append(file.notes(l, guessed, units, found), rainNote...)
 	if how.OnWallBefore && found.bare && !file.daily && file.clocks.kind == standardClock && !file.clocks.said && !found.notWall {
 		out.Notes = append(out.Notes, "An earlier file of this station ran on the clock on the wall; this one does not show it. clock:wall reads it so.")
 	}
@@ -109,7 +111,7 @@ func (f *csvFile) notes(l layout, guessed bool, units planner.Units, found *surv
 		notes = append(notes, fmt.Sprintf("Left out above the header: %s.", countOf(l.above, "line")))
 	}
 	var also []string
-	for _, role := range []role{humidityRole, rainRole} {
+	for _, role := range []role{humidityRole, rainSumRole} {
 		if l.head.has(role) {
 			also = append(also, role.word())
 		}
@@ -155,6 +157,7 @@ func (f *csvFile) choose(src *spool, l layout, how How) (columns []column, err e
 			WithHint("A day needs its high and low (date,high_c,low_c); readings need a time of day (2013-07-01T05:00).")
 	}
 	if !f.daily {
+		f.rain = pickRain(l.head)
 		picked, err := f.pickTemperature(l.head, how)
 		return []column{picked}, err
 	}
@@ -356,7 +359,9 @@ func (f *csvFile) readingRow(line int, written []byte, m moment) (Row, error) {
 	if reason != "" {
 		return Row{}, refuse(line, f.values[f.temperatures[0].index], reason)
 	}
-	return Row{Line: line, Empty: !known, Reading: planner.Reading{At: at, C: temperatureC}}, nil
+	row := Row{Line: line, Empty: !known, Reading: planner.Reading{At: at, C: temperatureC}}
+	row.addRain(f.rain, f.values)
+	return row, nil
 }
 
 // dailyRow needs both the high and the low: with one of them missing the row is

@@ -72,6 +72,9 @@ type Row struct {
 	Empty   bool
 	Reading planner.Reading
 	Day     planner.DailyReading
+	// HasRain says that the row's gauge reading is known, of an empty row too.
+	HasRain bool
+	Rain    planner.Rain
 }
 
 // RowError is a row that cannot be used. Reading goes on after it. Its Reason

@@ -95,7 +95,7 @@ var files = []struct {
 	{name: "observations_lines.json", format: "readings", units: "c", clock: "offset in the file", taken: 1, empty: 1},
 	{name: "observations_collection.json", format: "readings", units: "c", clock: "offset in the file", taken: 2, empty: 1},
 	{name: "fault_observations.json", format: "readings", units: "c", clock: "offset in the file", taken: 1, refused: 5},
-	{name: "own_export", format: "readings", units: "c", clock: "offset in the file", taken: 4, refused: 1},
+	{name: "own_export", format: "readings", units: "c", clock: "offset in the file", taken: 4, empty: 1, refused: 1},
 	{name: "readings_offset", format: "readings", units: "c", clock: "offset in the file", taken: 3},
 	{name: "readings_utc_seconds_fraction", format: "readings", units: "c", clock: "offset in the file", taken: 3},
 	{name: "readings_site_time_space", format: "readings", units: "c", clock: "site standard time", taken: 2},
@@ -111,6 +111,10 @@ var files = []struct {
 	{name: "readings_date_column_with_clock", format: "readings", units: "c", clock: "site standard time", taken: 2},
 	{name: "readings_beside_high_low", format: "readings", units: "c", clock: "offset in the file", taken: 2},
 	{name: "readings_trailing_commas", format: "readings", units: "c", clock: "offset in the file", taken: 3},
+	{name: "readings_rain_inches", format: "readings", units: "f", clock: "offset in the file", taken: 8, empty: 1},
+	{name: "readings_rain_running_total", format: "readings", units: "c", clock: "offset in the file", taken: 13},
+	{name: "readings_rain_two_gauges", format: "readings", units: "c", clock: "offset in the file", taken: 2},
+	{name: "metar_rain.txt", format: "readings", units: "c", clock: intake.ClockUTC, taken: 5},
 	{name: "readings_repeats", format: "readings", units: "c", clock: "offset in the file", taken: 26},
 	{name: "daily", format: "daily", units: "c", clock: "dates only", taken: 2},
 	{name: "daily_with_mean", format: "daily", units: "c", clock: "dates only", taken: 3},
@@ -273,6 +277,13 @@ func readHow(content io.Reader, site intake.Site, how intake.How) (out outcome) 
 }
 
 func rowText(row intake.Row) string {
+	if row.HasRain {
+		return fmt.Sprintf("%s, rain %.6g mm", temperatureText(row), row.Rain.MM)
+	}
+	return temperatureText(row)
+}
+
+func temperatureText(row intake.Row) string {
 	switch day := row.Day; {
 	case row.Daily && row.Empty:
 		return fmt.Sprintf("line %d: %s empty", row.Line, day.Day)

@@ -11,10 +11,12 @@ import (
 // ISD-Lite, hourly observations in lines of 61 characters, times in UTC
 // (layout: the archive's format note of 2006). The air temperature, in tenths
 // of °C, stands in characters 14 to 19, -9999 is missing. A report of the ten
-// minutes before the hour carries the hour.
+// minutes before the hour carries the hour. Characters 50 to 55 are the rain of
+// that hour in tenths of mm, -1 for a trace.
 const (
 	isdLength  = 61
 	isdMissing = -9999
+	isdTrace   = -1
 )
 
 const notISDLite = "the line is not one of this format: 61 characters, year, month, day, hour, then eight values"
@@ -92,6 +94,11 @@ func (f *isdFile) row(line int, text []byte) (Row, error) {
 		return Row{}, refuse(line, text[:13], reason)
 	}
 	row := Row{Line: line, Reading: planner.Reading{At: at}}
+	if rain, _ := wholeNumber(text[49:55]); rain == isdTrace {
+		row.setRain(0)
+	} else if rain != isdMissing {
+		row.setRain(float64(rain) / 10)
+	}
 	tenths, _ := wholeNumber(text[13:19])
 	if row.Empty = tenths == isdMissing; row.Empty {
 		return row, nil

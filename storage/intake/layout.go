@@ -112,7 +112,7 @@ func findHeader(src *spool, sign byte, sensor string) (found layout, roles int, 
 // known counts the columns that a file cannot do without.
 func (h header) known() (n int) {
 	for _, c := range h.columns {
-		if c.role != noRole && c.role != humidityRole && c.role != rainRole && c.role != sensorRole {
+		if c.role != noRole && c.role != humidityRole && c.role != rainRole && c.role != rainSumRole && c.role != sensorRole {
 			n++
 		}
 	}

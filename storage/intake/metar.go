@@ -8,6 +8,7 @@ import (
 	"slices"
 	"strconv"
 
+	"swardbook/calc"
 	"swardbook/planner"
 )
 
@@ -18,6 +19,7 @@ import (
 //	T s TTT s DDD     tenths of °C, s = 1 below zero
 //	1 s TTT, 2 s TTT  highest and lowest of the last six hours, at 00, 06, 12 and 18 UTC
 //	4 s TTT s TTT     highest and lowest of the 24 hours to midnight, local standard time
+//	P rrrr            rain of the last hour in hundredths of an inch (from memory)
 //
 // A report says the day of the month, not the month: a date in front of it
 // does, or dates: the month of the first.
@@ -27,6 +29,7 @@ var (
 	metarBody  = regexp.MustCompile(`^(M?\d{2}|//)/(M?\d{2}|//)?$`)
 	metarTenth = regexp.MustCompile(`^T([01]\d{3})([01]\d{3})?$`)
 	metarSix   = regexp.MustCompile(`^([12])([01]\d{3})$`)
+	metarRain  = regexp.MustCompile(`^P(\d{4})$`)
 	metarDay   = regexp.MustCompile(`^4([01]\d{3})([01]\d{3})$`)
 )
 
@@ -50,6 +53,11 @@ type report struct {
 	hasSix             [2]bool
 	day                [2]float64
 	hasDay             bool
+	// special is a report between the hours, which says again what fell since
+	// the last hourly one.
+	special bool
+	rainMM  float64
+	hasRain bool
 }
 
 func recogniseMETAR(head []byte) bool {
@@ -76,6 +84,7 @@ func readReport(text []byte) (r report, ok bool) {
 	before := slices.DeleteFunc(slices.Clone(groups[:at-1]), func(g []byte) bool {
 		switch string(g) {
 		case "METAR", "SPECI", "COR":
+			r.special = r.special || string(g) == "SPECI"
 			return true
 		}
 		return false
@@ -105,6 +114,9 @@ func (r *report) groups(groups [][]byte) {
 			r.tenths, r.hasTenths = signedC(text[1:5]), true
 		case metarDay.MatchString(text):
 			r.day, r.hasDay = [2]float64{signedC(text[1:5]), signedC(text[5:9])}, true
+		case metarRain.MatchString(text):
+			hundredths, _ := strconv.Atoi(text[1:])
+			r.rainMM, r.hasRain = float64(hundredths)/100*calc.MMPerInch, true
 		case metarSix.MatchString(text):
 			place := int(text[0] - '1')
 			r.six[place], r.hasSix[place] = signedC(text[1:5]), true
@@ -237,6 +249,9 @@ func (f *metarFile) row(line int, text []byte, r report) (Row, error) {
 	row := Row{Line: line, Reading: planner.Reading{At: at, C: r.body}}
 	if r.hasTenths {
 		row.Reading.C = r.tenths
+	}
+	if r.hasRain && !r.special {
+		row.setRain(r.rainMM)
 	}
 	if row.Empty = !r.hasTenths && !r.hasBody; row.Empty {
 		return row, nil

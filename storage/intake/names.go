@@ -86,10 +86,13 @@ var columnNames = []struct {
 		"luftfuktighet", "luftfugtighed", "wilgotnosc", "wilgotnosc wzgledna",
 	}},
 	{rainRole, "rain", []string{
-		"rain", "rainfall", "precipitation", "precip", "rain 1h", "hourly rain", "daily rain",
+		"rain", "rainfall", "precipitation", "precip", "rain 1h", "hourly rain",
 		"regen", "niederschlag", "regenmenge", "pluie", "precipitations", "lluvia", "precipitacion",
 		"pioggia", "precipitazione", "precipitazioni", "chuva", "precipitacao", "neerslag",
 		"nederbord", "nedbor", "opad", "opady",
+	}},
+	{rainSumRole, "rain of a whole day", []string{
+		"daily rain", "rain day", "rain today", "rain total", "total rain", "rain 24h", "tagesniederschlag", "pluie jour",
 	}},
 }
 

@@ -27,6 +27,7 @@ type survey struct {
 	notWall   bool   // a row at a time that the clock on the wall leaves out
 	lastRow   int
 	values    valueCount
+	rain      rainCount
 	sensors   map[string]bool
 }
 
@@ -105,6 +106,9 @@ func (s *survey) add(f *csvFile, line int, values [][]byte, columns []column) {
 	}
 	for _, c := range columns {
 		s.values.add(bytes.TrimSpace(values[c.index]))
+	}
+	if f.rain != nil {
+		s.rain.add(bytes.TrimSpace(values[f.rain.index]))
 	}
 	if f.sensor != nil && len(s.sensors) < mostSensors {
 		if name := bytes.TrimSpace(values[f.sensor.index]); len(name) > 0 && !s.sensors[string(name)] {

@@ -72,11 +72,18 @@ func (s store) Import(ctx context.Context, stamp planner.Stamp, station planner.
 			return done, err
 		}
 	}
+	for _, rain := range file.Rain {
+		line++
+		if err := take(stage.AddRain(line, rain)); err != nil {
+			return done, err
+		}
+	}
 	report, err := stage.Merge(ctx, stamp, about("made up.csv"))
 	if err != nil {
 		return done, err
 	}
 	done.New, done.Changed, done.Same = report.New, report.Changed, report.Same
+	done.Rain = report.Rain
 	done.From, done.To = report.From, report.To
 	return done, nil
 }

@@ -4,6 +4,7 @@ import (
 	"bufio"
 	"context"
 	"database/sql"
+	"errors"
 	"io"
 	"strconv"
 	"time"
@@ -90,20 +91,41 @@ func (t *Team) ExportStation(ctx context.Context, station planner.StationID, hea
 }
 
 func exportReadings(ctx context.Context, on session, team int64, station planner.StationID, out *bufio.Writer) error {
-	rows, err := on.QueryContext(ctx, `SELECT at, c FROM reading WHERE team = ? AND station = ? ORDER BY at`, team, station)
-	if err != nil {
-		return err
-	}
-	defer rows.Close()
-	var line []byte
-	for rows.Next() {
-		var reading planner.Reading
-		if err := rows.Scan(&reading.At, &reading.C); err != nil {
+	// Readings with their rain, then rain without a reading.
+	for _, query := range []string{
+		`SELECT reading.at, c, mm FROM reading LEFT JOIN rain USING (team, station, at) WHERE reading.team = ? AND reading.station = ? ORDER BY reading.at`,
+		`SELECT at, NULL, mm FROM rain WHERE team = ? AND station = ?
+			AND NOT EXISTS (SELECT 1 FROM reading WHERE reading.team = rain.team AND reading.station = rain.station AND reading.at = rain.at) ORDER BY at`,
+	} {
+		rows, err := on.QueryContext(ctx, query, team, station)
+		if err != nil {
 			return err
 		}
-		line = time.Unix(reading.At, 0).UTC().AppendFormat(line[:0], time.RFC3339)
-		line = strconv.AppendFloat(append(line, ','), reading.C, 'g', -1, 64)
-		if _, err := out.Write(append(line, ",,,\n"...)); err != nil {
+		if err := errors.Join(writeReadings(rows, out), rows.Close()); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+func writeReadings(rows *sql.Rows, out *bufio.Writer) error {
+	var line []byte
+	known := func(value sql.NullFloat64) {
+		if line = append(line, ','); value.Valid {
+			line = strconv.AppendFloat(line, value.Float64, 'g', -1, 64)
+		}
+	}
+	for rows.Next() {
+		var at int64
+		var c, rainMM sql.NullFloat64
+		if err := rows.Scan(&at, &c, &rainMM); err != nil {
+			return err
+		}
+		line = time.Unix(at, 0).UTC().AppendFormat(line[:0], time.RFC3339)
+		known(c)
+		line = append(line, ",,,"...)
+		known(rainMM)
+		if _, err := out.Write(append(line, '\n')); err != nil {
 			return err
 		}
 	}
@@ -130,7 +152,7 @@ func exportDaily(ctx context.Context, on session, team int64, station planner.St
 		if meanC.Valid {
 			line = strconv.AppendFloat(line, meanC.Float64, 'g', -1, 64)
 		}
-		if _, err := out.Write(append(line, '\n')); err != nil {
+		if _, err := out.Write(append(line, ",\n"...)); err != nil {
 			return err
 		}
 	}

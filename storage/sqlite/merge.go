@@ -25,9 +25,10 @@ type ImportAbout struct {
 // MergeReport says what a merge did.
 type MergeReport struct {
 	ImportID int64
-	New      int // rows that were not in the record
-	Changed  int // rows that replaced another value
-	Same     int // rows already in the record with this value, or repeated in the file
+	// RowCounts counts rows of readings and days; rows repeated in the file are
+	// among Same.
+	planner.RowCounts
+	Rain planner.RowCounts
 	// From and To are the first and last day of the readings, in the site's
 	// day rule; zero when there was none.
 	From, To planner.Day
@@ -74,8 +75,10 @@ func (s *Stage) settle() error {
 		return nil
 	}
 	ctx := context.Background()
-	if err := s.readings.flush(ctx); err != nil {
-		return err
+	for _, rows := range []*batch{s.readings, s.rain} {
+		if err := rows.flush(ctx); err != nil {
+			return err
+		}
 	}
 	if _, err := s.conn.ExecContext(ctx, "COMMIT"); err != nil {
 		return err
@@ -108,13 +111,17 @@ func (m *merge) run(ctx context.Context) error {
 	if err != nil {
 		return err
 	}
-	m.report = MergeReport{Same: m.repeated}
-	var rows [2]staged
+	m.report.RowCounts = planner.RowCounts{Same: m.repeated}
+	var rows [len(weatherTables)]staged
 	for i, table := range weatherTables {
 		if rows[i], err = m.count(ctx, table); err != nil {
 			return err
 		}
-		rows[i].addTo(&m.report)
+		counts := &m.report.RowCounts
+		if !table.facts {
+			counts = &m.report.Rain
+		}
+		rows[i].addTo(counts)
 	}
 	m.report.From, m.report.To = daysOf(rows[0], rows[1], cutter)
 	if err := m.addImport(ctx); err != nil {
@@ -192,9 +199,12 @@ func (m *merge) addImport(ctx context.Context) (err error) {
 }
 
 // rebuild builds the facts of all days that a new or changed row touches.
-func (m *merge) rebuild(ctx context.Context, c *cutter, rows [2]staged) error {
+func (m *merge) rebuild(ctx context.Context, c *cutter, rows [len(weatherTables)]staged) error {
 	var touched []planner.Day
 	for i, table := range weatherTables {
+		if !table.facts {
+			continue
+		}
 		days, err := m.touched(ctx, table, rows[i])
 		if err != nil {
 			return err

@@ -10,18 +10,22 @@ import (
 	"swardbook/planner"
 )
 
-// weatherTable is one of the two tables of weather. Its temporary twin is
+// weatherTable is one of the tables of weather. Its temporary twin is
 // temp.staged_NAME, and values that are replaced go to replaced_NAME.
 type weatherTable struct {
 	name   string
 	key    string   // beside team and station
 	values []string // the columns that are the value
 	perDay int64    // how much the key grows in a day
+	// facts says that day facts stand on it. What they do not stand on rides
+	// along with the readings of a file and is counted apart.
+	facts bool
 }
 
-var weatherTables = [2]weatherTable{
-	{name: "reading", key: "at", values: []string{"c"}, perDay: secondsPerDay},
-	{name: "daily", key: "day", values: []string{"high_c", "low_c", "mean_c"}, perDay: 1},
+var weatherTables = [...]weatherTable{
+	{name: "reading", key: "at", values: []string{"c"}, perDay: secondsPerDay, facts: true},
+	{name: "daily", key: "day", values: []string{"high_c", "low_c", "mean_c"}, perDay: 1, facts: true},
+	{name: "rain", key: "at", values: []string{"mm"}, perDay: secondsPerDay},
 }
 
 // of lists the value columns of the row called alias.
@@ -55,10 +59,10 @@ type staged struct {
 	last    int64
 }
 
-func (s staged) addTo(report *MergeReport) {
-	report.New += s.rows - s.kept
-	report.Changed += s.changed
-	report.Same += s.kept - s.changed
+func (s staged) addTo(counts *planner.RowCounts) {
+	counts.New += s.rows - s.kept
+	counts.Changed += s.changed
+	counts.Same += s.kept - s.changed
 }
 
 // count compares the staged rows with the record.

@@ -26,26 +26,49 @@ func (t *Team) Record(ctx context.Context, site planner.SiteID) (planner.Record,
 		if record.Revision, err = siteRevision(ctx, conn, t.id, site); err != nil {
 			return err
 		}
-		open, err := stations{}.list(ctx, conn, t.id, `site = ? AND archived = 0`, site)
+		open, err := ranked(ctx, conn, t.id, site)
 		if err != nil {
 			return err
 		}
-		slices.SortStableFunc(open, func(a, b planner.Station) int { return cmp.Compare(a.Rank, b.Rank) })
-		var ranked []planner.StationFacts
+		var stations []planner.StationFacts
 		for _, station := range open {
 			facts, err := stationFacts(ctx, conn, t.id, station.ID)
 			if err != nil {
 				return fmt.Errorf("station %s: %w", station.Name, err)
 			}
-			ranked = append(ranked, planner.StationFacts{Name: station.Name, Facts: facts})
+			stations = append(stations, planner.StationFacts{Name: station.Name, Facts: facts})
 		}
-		record.Facts = planner.JoinStations(ranked)
+		record.Facts = planner.JoinStations(stations)
 		return nil
 	})
 	if err != nil {
 		return planner.Record{}, err
 	}
 	return record, nil
+}
+
+// ranked lists the site's stations by rank, then in the order added.
+func ranked(ctx context.Context, on session, team int64, site planner.SiteID) ([]planner.Station, error) {
+	open, err := stations{}.list(ctx, on, team, `site = ? AND archived = 0`, site)
+	slices.SortStableFunc(open, func(a, b planner.Station) int { return cmp.Compare(a.Rank, b.Rank) })
+	return open, err
+}
+
+// Rain returns what the gauge caught from one time to another, both included,
+// in UTC seconds, by time: that of the site's first station by rank that has any
+// reading of rain in between.
+func (t *Team) Rain(ctx context.Context, site planner.SiteID, from, to int64) (rain []planner.Rain, err error) {
+	err = t.db.read(ctx, "read the rain", func(conn *sql.Conn) error {
+		open, err := ranked(ctx, conn, t.id, site)
+		for i := 0; err == nil && len(rain) == 0 && i < len(open); i++ {
+			rain, err = collect(ctx, conn, func(rows *sql.Rows) (one planner.Rain, err error) {
+				err = rows.Scan(&one.At, &one.MM)
+				return one, err
+			}, `SELECT at, mm FROM rain WHERE team = ? AND station = ? AND at BETWEEN ? AND ? ORDER BY at`, t.id, open[i].ID, from, to)
+		}
+		return err
+	})
+	return rain, err
 }
 
 // siteRevision is the newest revision of the site's stations, dropped ones

@@ -25,6 +25,7 @@ type Stage struct {
 	open     bool // a transaction on the temporary tables is open
 	merged   bool
 	readings *batch
+	rain     *batch
 	reading  *sql.Stmt // one reading, checked
 	daily    *sql.Stmt // one daily reading, checked
 	newest   int64     // the latest time taken so far
@@ -50,6 +51,7 @@ var errDone = errors.New("the stage is closed or merged")
 const stagedTables = `
 	CREATE TEMP TABLE staged_reading (at INTEGER PRIMARY KEY, c REAL NOT NULL, line INTEGER NOT NULL) STRICT;
 	CREATE TEMP TABLE staged_daily (day INTEGER PRIMARY KEY, high_c REAL NOT NULL, low_c REAL NOT NULL, mean_c REAL, line INTEGER NOT NULL) STRICT;
+	CREATE TEMP TABLE staged_rain (at INTEGER PRIMARY KEY, mm REAL NOT NULL) STRICT;
 	BEGIN`
 
 // Stage begins to take in a file for the station. A station that the team does
@@ -93,6 +95,9 @@ func (s *Stage) prepare(ctx context.Context) (err error) {
 	if s.readings, err = newBatch(ctx, s.conn, stagedRows, `INSERT INTO temp.staged_reading (at, c, line) VALUES`, 3); err != nil {
 		return err
 	}
+	if s.rain, err = newBatch(ctx, s.conn, stagedRows, `INSERT OR IGNORE INTO temp.staged_rain (at, mm) VALUES`, 2); err != nil {
+		return err
+	}
 	if s.reading, err = s.conn.PrepareContext(ctx, `INSERT INTO temp.staged_reading (at, c, line)
 		VALUES (?, ?, ?) ON CONFLICT DO NOTHING`); err != nil {
 		return err
@@ -119,8 +124,8 @@ func (s *Stage) AddReading(line int, r planner.Reading) error {
 	if err := planner.CheckTemperature(r.C); err != nil {
 		return invalidRow(line, err)
 	}
-	if day := floorDiv(r.At, secondsPerDay); day < int64(planner.DayMin) || day > int64(planner.DayMax) {
-		return invalidRow(line, fmt.Errorf("the time is outside the years 1700 to 2299"))
+	if err := checkTime(line, r.At); err != nil {
+		return err
 	}
 	if r.At > s.newest {
 		s.newest = r.At
@@ -131,6 +136,30 @@ func (s *Stage) AddReading(line int, r planner.Reading) error {
 	}
 	return s.addChecked(ctx, line, s.reading, []any{r.At, r.C, line},
 		`SELECT line, c = ?2 FROM temp.staged_reading WHERE at = ?1`, r.At, r.C)
+}
+
+func checkTime(line int, at int64) error {
+	if day := floorDiv(at, secondsPerDay); day < int64(planner.DayMin) || day > int64(planner.DayMax) {
+		return invalidRow(line, fmt.Errorf("the time is outside the years 1700 to 2299"))
+	}
+	return nil
+}
+
+// AddRain takes what the gauge caught by the time of a row. A second value for
+// a time is left out: the first stands. A value that no gauge shows and a time
+// outside the years 1700 to 2299 are an Invalid problem and not taken. Any other
+// error ends the import.
+func (s *Stage) AddRain(line int, r planner.Rain) error {
+	if !s.open {
+		return errDone
+	}
+	if err := planner.CheckRain(r.MM); err != nil {
+		return invalidRow(line, err)
+	}
+	if err := checkTime(line, r.At); err != nil {
+		return err
+	}
+	return storeError("stage rain", s.rain.add(context.Background(), r.At, r.MM))
 }
 
 // AddDaily takes one daily reading of the file, as AddReading does; a repeat is
@@ -189,8 +218,10 @@ func (s *Stage) Close() error {
 	s.conn = nil
 	// A connection with a statement left open keeps its memory after it is closed.
 	var wrong []error
-	if s.readings != nil && s.readings.full != nil {
-		wrong = append(wrong, s.readings.close())
+	for _, rows := range []*batch{s.readings, s.rain} {
+		if rows != nil && rows.full != nil {
+			wrong = append(wrong, rows.close())
+		}
 	}
 	for _, statement := range []*sql.Stmt{s.reading, s.daily} {
 		if statement != nil {

@@ -73,9 +73,14 @@ func (w *withdrawing) run(ctx context.Context, stamp planner.Stamp) error {
 	}
 	var touched []planner.Day
 	for _, table := range weatherTables {
+		told := w.report
 		days, err := w.take(ctx, table)
 		if err != nil {
 			return err
+		}
+		if !table.facts {
+			w.report = told // it goes along with the readings
+			continue
 		}
 		touched = append(touched, days...)
 	}

@@ -29,6 +29,7 @@ type Store interface {
 type File struct {
 	Readings []planner.Reading
 	Daily    []planner.DailyReading
+	Rain     []planner.Rain
 }
 
 // Imported says what became of a File.
@@ -36,6 +37,7 @@ type Imported struct {
 	New, Changed, Same int
 	From, To           planner.Day
 	Repeats            []Repeat // refused rows
+	Rain               planner.RowCounts
 }
 
 // Repeat is a row that says otherwise than an earlier one of the same time.
@@ -80,6 +82,9 @@ type Repeat struct{ Line, First int }
 //     rule, or another zone, all days.
 //  18. Writers at the same time lose nothing.
 //  19. A call whose context has ended keeps nothing.
+//  20. Rain comes by time, both ends included, of the first station by rank that
+//     has any in between; of two values of a time in a file the first stands,
+//     a later file's replaces; it moves neither record nor revision.
 func Run(t *testing.T, open func(t *testing.T) (newTeam func(name string) Store)) {
 	promises := []struct {
 		name string
@@ -104,6 +109,7 @@ func Run(t *testing.T, open func(t *testing.T) (newTeam func(name string) Store)
 		{"17 day rules", testDayRules},
 		{"18 writers", testWriters},
 		{"19 ended context", testEndedContext},
+		{"20 rain", testRain},
 	}
 	for _, promise := range promises {
 		t.Run(promise.name, func(t *testing.T) {
