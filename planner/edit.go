@@ -1,9 +1,6 @@
 package planner
 
-import (
-	"fmt"
-	"slices"
-)
+import "fmt"
 
 // Edit is one change of a plan, as a what-if asks for it. It prints itself as
 // a sentence.
@@ -130,92 +127,6 @@ func (p Plan) withAhead(change func(DayFacts) DayFacts) Plan {
 	return p
 }
 
-// DoWork logs a pass of a work on a day, past or ahead.
-type DoWork struct {
-	Work        WorkID
-	Name        string // how the sentence names it
-	Day         Day
-	NitrogenGM2 float64
-}
-
-// Sentence says what the edit does, like "greens feed done on Mon 1 Jul at 2 g N/m²".
-func (d DoWork) Sentence(Units) string {
-	if d.NitrogenGM2 > 0 {
-		return fmt.Sprintf("%s done on %s at %s g N/m²", d.Name, d.Day.Short(), number(d.NitrogenGM2))
-	}
-	return fmt.Sprintf("%s done on %s", d.Name, d.Day.Short())
-}
-
-func (d DoWork) apply(plan Plan) (Plan, error) {
-	if !slices.ContainsFunc(plan.Works, func(work Work) bool { return work.ID == d.Work }) {
-		return plan, errNoSuchWork()
-	}
-	return LogEntry{Name: d.Name, Entry: Entry{Site: plan.Site.ID, Day: d.Day,
-		Passes: []Pass{{Work: d.Work, NitrogenGM2: d.NitrogenGM2, Rate: nitrogenRate(d.NitrogenGM2)}}}}.apply(plan)
-}
-
-func nitrogenRate(gM2 float64) Rate {
-	if gM2 == 0 {
-		return Rate{}
-	}
-	return Rate{Kind: NutrientRate, Value: gM2}
-}
-
-// LogEntry logs a whole entry, past or ahead.
-type LogEntry struct {
-	Entry Entry
-	Name  string // how the sentence names it
-}
-
-// Sentence says what the edit does, like "tank mix logged on Mon 1 Jul".
-func (l LogEntry) Sentence(Units) string {
-	return fmt.Sprintf("%s logged on %s", l.Name, l.Entry.Day.Short())
-}
-
-func (l LogEntry) apply(plan Plan) (Plan, error) {
-	if err := l.Entry.Check(); err != nil {
-		return plan, err
-	}
-	if l.Entry.Day >= plan.Outlook.end() {
-		return plan, Problemf(Invalid, "%s is beyond the days ahead", l.Entry.Day.Short())
-	}
-	plan.Log = withEntry(plan.Log, l.Entry)
-	return plan, nil
-}
-
-// withEntry puts the entry in its place by day, instead of the one that has its
-// id.
-func withEntry(log []Entry, entry Entry) []Entry {
-	out := make([]Entry, 0, len(log)+1)
-	for _, kept := range log {
-		if entry.ID == 0 || kept.ID != entry.ID {
-			out = append(out, kept)
-		}
-	}
-	at := len(out)
-	for at > 0 && out[at-1].Day > entry.Day {
-		at--
-	}
-	return slices.Insert(out, at, entry)
-}
-
-// SetLimits gives a work other limits.
-type SetLimits struct {
-	Work   WorkID
-	Name   string // how the sentence names it
-	Limits Limits
-}
-
-// Sentence says what the edit does, like "greens regulator with 10 days
-// between".
-func (s SetLimits) Sentence(Units) string {
-	return fmt.Sprintf("%s with at least %d %s between", s.Name, s.Limits.LeastDays, plural(s.Limits.LeastDays, "day"))
-}
-
-func (s SetLimits) apply(plan Plan) (Plan, error) {
-	return plan.withSettings(s.Work, func(settings *WorkSettings) { settings.Limits = s.Limits })
-}
-
 // OpenAll takes closed days as open.
 type OpenAll struct{}
 
@@ -226,42 +137,3 @@ func (OpenAll) apply(plan Plan) (Plan, error) {
 	plan.Closed = nil
 	return plan, nil
 }
-
-// SetTarget gives a work another target, and with it the default latest again.
-type SetTarget struct {
-	Work   WorkID
-	Name   string // how the sentence names it
-	Target float64
-	Unit   Unit
-}
-
-// Sentence says what the edit does, like "greens regulator at 250 °C-days".
-func (s SetTarget) Sentence(units Units) string {
-	target, unit := units.Show(s.Target, s.Unit)
-	return fmt.Sprintf("%s at %s %s", s.Name, number(target), unit)
-}
-
-func (s SetTarget) apply(plan Plan) (Plan, error) {
-	return plan.withSettings(s.Work, func(settings *WorkSettings) { settings.Target, settings.Latest = s.Target, 0 })
-}
-
-// withSettings changes the settings of a work from the plan's morning on.
-func (p Plan) withSettings(id WorkID, change func(*WorkSettings)) (Plan, error) {
-	works := slices.Clone(p.Works)
-	for i, work := range works {
-		if work.ID != id {
-			continue
-		}
-		settings := work.Settings.On(p.AsOf)
-		change(&settings)
-		if err := settings.check(); err != nil {
-			return p, err
-		}
-		works[i].Settings = work.Settings.With(p.AsOf, settings)
-		p.Works = works
-		return p, nil
-	}
-	return p, errNoSuchWork()
-}
-
-func errNoSuchWork() error { return Problemf(NotFound, "the plan has no such work") }

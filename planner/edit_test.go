@@ -38,6 +38,15 @@ func TestEditSentences(t *testing.T) {
 		{planner.SetTarget{Work: 1, Name: "greens regulator", Target: 200, Unit: planner.DegreeDays}, "greens regulator at 200 °C-days", "greens regulator at 360 °F-days"},
 		{planner.SetTarget{Work: 2, Name: "greens feed", Target: 0.5, Unit: planner.NitrogenGM2}, "greens feed at 0.5 g N/m²", "greens feed at 0.5 g N/m²"},
 		{planner.SetTarget{Work: 3, Name: "cut", Target: 2, Unit: planner.Days}, "cut at 2 days", "cut at 2 days"},
+		{planner.DoWork{Work: 1, Name: "greens regulator", Day: day, Part: 1, PartName: "front nine"}, "greens regulator (front nine) done on Mon 1 Jul", "greens regulator (front nine) done on Mon 1 Jul"},
+		{planner.SetLimits{Work: 1, Name: "cut", Limits: planner.Limits{LeastDays: 1}}, "cut with at least 1 day between", "cut with at least 1 day between"},
+		{planner.SetLimits{Work: 1, Name: "cut", Limits: planner.Limits{LeastDays: 10, MostTimes: 4}}, "cut with at least 10 days between, at most 4 times a season", "cut with at least 10 days between, at most 4 times a season"},
+		{planner.SetSeason{Work: 1, Name: "cut", Resting: true}, "cut resting", "cut resting"},
+		{planner.SetSeason{Work: 1, Name: "cut"}, "cut on", "cut on"},
+		{planner.SetRainFree{Work: 1, Name: "cut", Hours: 6.5}, "cut with 6.5 rain-free hours", "cut with 6.5 rain-free hours"},
+		{planner.SetResult{Work: 1, Name: "cut", Result: planner.Lost}, "the last cut lost", "the last cut lost"},
+		{planner.SetResult{Work: 1, Name: "cut"}, "the last cut good", "the last cut good"},
+		{planner.SetGrass{Surface: 1, Name: "greens", Grass: "warm"}, "greens with warm grass", "greens with warm grass"},
 	} {
 		if c, f := row.edit.Sentence(planner.Celsius), row.edit.Sentence(planner.Fahrenheit); c != row.c || f != row.f {
 			t.Errorf("%q and %q, want %q and %q", c, f, row.c, row.f)
@@ -166,6 +175,14 @@ func TestRefusedEdits(t *testing.T) {
 		{planner.SetTarget{Work: 1, Target: math.NaN()}, planner.Invalid},
 		{planner.SetTarget{Work: 1, Target: math.Inf(1)}, planner.Invalid},
 		{planner.SetTarget{Work: 2, Target: -0.1}, planner.Invalid},
+		{planner.SetSeason{Work: 77}, planner.NotFound},
+		{planner.SetRainFree{Work: 77, Hours: 2}, planner.NotFound},
+		{planner.SetRainFree{Work: 1, Hours: math.NaN()}, planner.Invalid},
+		{planner.SetRainFree{Work: 1, Hours: 999}, planner.Invalid},
+		{planner.SetResult{Work: 77, Result: planner.Lost}, planner.NotFound},
+		{planner.SetResult{Work: 1, Result: "wet"}, planner.Invalid},
+		{planner.SetGrass{Surface: 77, Grass: "warm", Curve: calc.WarmSeason()}, planner.NotFound},
+		{planner.SetGrass{Surface: 1, Grass: "own", Curve: calc.GrowthCurve{OptimumC: 20, WidthC: -1}}, planner.Invalid},
 	} {
 		changed, refusals := planner.Apply(plan, row.edit)
 		if len(refusals) != 1 {
@@ -232,6 +249,11 @@ func TestApplyLeavesThePlan(t *testing.T) {
 					planner.SetDay{Day: day, HighC: drawTemperature(t, 0, 40, "high"), LowC: drawTemperature(t, -10, 20, "low")},
 					planner.DoWork{Work: work, Name: "work", Day: day, NitrogenGM2: drawTemperature(t, -1, 6, "rate")},
 					planner.SetTarget{Work: work, Name: "work", Target: drawTemperature(t, -1, 300, "target"), Unit: planner.DegreeDays},
+					planner.SetSeason{Work: work, Name: "work", Resting: rapid.Bool().Draw(t, "resting")},
+					planner.SetResult{Work: work, Name: "work", Result: rapid.SampledFrom([]planner.Result{planner.Good, planner.Doubtful, planner.Lost}).Draw(t, "result")},
+					planner.SetGrass{Surface: planner.SurfaceID(rapid.IntRange(1, 3).Draw(t, "surface")), Grass: "warm", Curve: calc.WarmSeason()},
+					planner.SetRainFree{Work: work, Name: "work", Hours: drawTemperature(t, -1, 300, "hours")},
+					planner.SetLimits{Work: work, Name: "work", Limits: planner.Limits{LeastDays: rapid.IntRange(-1, 40).Draw(t, "gap"), MostTimes: rapid.IntRange(0, 4).Draw(t, "most")}},
 				}).Draw(t, "edit")
 			}), 0, 5).Draw(t, "edits")
 		}

@@ -3,6 +3,7 @@ package briefing
 import (
 	"fmt"
 	"math"
+	"strings"
 	"time"
 
 	"swardbook/planner"
@@ -43,6 +44,9 @@ func InTheWay(state planner.WorkState) []string {
 	if doubted := state.Doubted; doubted != nil {
 		add("last pass doubtful; without it: %s", passage(doubted.Date()))
 	}
+	if hours := state.Settings.RainFreeHours; hours > 0 && isUrgent(state.Status) {
+		add("%s rain-free hours after it", Plain(hours))
+	}
 	if state.Rain != nil {
 		lines = append(lines, RainQuestion(*state.Rain), fmt.Sprintf("(entry %d: result:good, doubtful or lost)", state.Rain.Entry))
 	}
@@ -51,6 +55,28 @@ func InTheWay(state planner.WorkState) []string {
 	}
 	return lines
 }
+
+// OriginLine says what a work's target was found with, as it does not hold for
+// anything else; "" when the lead has not said.
+func OriginLine(origin planner.Origin) string {
+	var parts []string
+	add := func(given bool, format string, value any) {
+		if given {
+			parts = append(parts, fmt.Sprintf(format, value))
+		}
+	}
+	add(origin.Source != "", "from %s", origin.Source)
+	add(origin.Ingredient != "", "%s", origin.Ingredient)
+	add(origin.Grass != "", "on %s", origin.Grass)
+	add(origin.HeightMM > 0, "at %s mm", Plain(origin.HeightMM))
+	if len(parts) == 0 {
+		return ""
+	}
+	return "target " + strings.Join(parts, ", ")
+}
+
+// TargetCaution stands where a target is set or changed.
+const TargetCaution = "A target holds for the product, grass, height of cut and mean it was found with; it does not transfer."
 
 // RainQuestion asks whether a pass that it rained on still counts.
 func RainQuestion(rain planner.RainAfter) string {

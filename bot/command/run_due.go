@@ -53,6 +53,9 @@ func (d Desk) runDue(ctx context.Context, req Request) (reply.Reply, error) {
 		r.Add(reply.Text(strings.Join(briefing.Brief(state, evaluation), "\n")))
 		r.Figures = append(r.Figures, state.Figures(v.today)...)
 	}
+	if origin := briefing.OriginLine(states[0].Settings.Origin); len(states) == 1 && origin != "" {
+		r.Add(reply.Text(origin))
+	}
 	r.Add(rainAnswers(states)...)
 	if !v.Values.Has("surface") && !v.Values.Has("work") {
 		for _, total := range evaluation.Totals {

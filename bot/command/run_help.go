@@ -4,6 +4,7 @@ import (
 	"context"
 	"strings"
 
+	"swardbook/bot/briefing"
 	"swardbook/bot/reply"
 	"swardbook/calc"
 	"swardbook/planner"
@@ -146,7 +147,7 @@ func cautionsPage() reply.Reply {
 		reply.Text("The label's rates, gaps and re-entry times are the law. Local fertiliser ordinances hold. Where a licence is needed, a licensed applicator decides. The work log is not the legal spray record."),
 		reply.Text("No feed on frozen, saturated, dormant or drought-browned turf, nor before heavy rain."),
 		reply.Text("Growth potential knows temperature only: not water, shade, wear or disease."),
-		reply.Text("A target holds for the product, grass, height of cut and mean it was found with; it does not transfer."),
+		reply.Text(briefing.TargetCaution),
 		reply.Text("The station may stand away from the turf. Air a few degrees above zero can come with white grass: keep traffic off frozen turf."),
 		reply.Text("Heat: water, rest and shade. The rules come from the employer and the local code."),
 	)

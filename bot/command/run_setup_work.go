@@ -138,7 +138,7 @@ func (d Desk) setupWork() []Command {
 	change = append(append(append(change, settings...), counting[1:3]...), limitOptions()...)
 	return []Command{
 		{Path: "setup work add", Short: "add a work: a feed, a regulator spray, a cut", Who: Lead, Options: append(add, d.siteOption()),
-			Long: "A target holds for the product, grass, height of cut and mean it was found with; it does not transfer. Swardbook plans dates and prescribes no product and no rate.",
+			Long: briefing.TargetCaution + " Swardbook plans dates and prescribes no product and no rate.",
 			Examples: []string{"/setup work add surface:greens name:regulator counts:degree-days base:0 target:200",
 				"/setup work add surface:greens name:feed counts:nitrogen", "/setup work add surface:pitch name:cut counts:days target:3"}, Run: d.runWorkAdd},
 		{Path: "setup work change", Long: "Limits are what the label and your rules say: they move or flag dates.",
@@ -214,7 +214,7 @@ func (d Desk) runWorkAdd(ctx context.Context, req Request) (reply.Reply, error) 
 	name, _ := v.Values.Text("name")
 	said := reply.Of(reply.Textf("Added %s %s: %s.", surface.Name, name, settingsText(settings, v.site.Units)))
 	if settings.Counts == planner.ByDegreeDays || settings.Counts == planner.ByGrowthDays {
-		said.Add(reply.Text("A target holds for the product, grass, height of cut and mean it was found with; it does not transfer."))
+		said.Add(reply.Text(briefing.TargetCaution))
 	}
 	if settings.Counts == planner.ByGrowthDays {
 		said.Add(reply.Text("For a growth regulator count degree days: growth days do not tell how fast it wears off."))
@@ -305,7 +305,7 @@ func limitsText(settings planner.WorkSettings) string {
 			text += ", " + fmt.Sprintf(format, args...)
 		}
 	}
-	limits, season, origin := settings.Limits, settings.Season, settings.Origin
+	limits, season := settings.Limits, settings.Season
 	add(limits.LeastDays > 0, "%d days between", limits.LeastDays)
 	add(limits.MostTimes > 0, "at most %d times a season", limits.MostTimes)
 	add(limits.MostTotal > 0, "at most %s given a season", briefing.Plain(limits.MostTotal))
@@ -314,10 +314,8 @@ func limitsText(settings planner.WorkSettings) string {
 	add(season.Resting, "resting")
 	add(settings.WateredIn, "counts from watering in")
 	add(settings.RainFreeHours > 0, "%s rain-free hours", briefing.Plain(settings.RainFreeHours))
-	add(origin.Source != "", "target from %s", origin.Source)
-	add(origin.Ingredient != "", "%s", origin.Ingredient)
-	add(origin.Grass != "", "on %s", origin.Grass)
-	add(origin.HeightMM > 0, "at %s mm", briefing.Plain(origin.HeightMM))
+	origin := briefing.OriginLine(settings.Origin)
+	add(origin != "", "%s", origin)
 	return text
 }
 

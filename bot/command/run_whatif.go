@@ -3,6 +3,7 @@ package command
 import (
 	"context"
 	"fmt"
+	"slices"
 	"strings"
 
 	"swardbook/bot/briefing"
@@ -14,7 +15,8 @@ import (
 func (d Desk) whatIf() Command {
 	return Command{
 		Path: "whatif", Short: "as it stands beside what would change", Listed: true,
-		Long: "Changes the days ahead, a target, or the day a work is done, and shows the due dates before and after. Nothing is kept. " +
+		Long: "Changes the days ahead, the day a work is done, how the last pass turned out, a target, a limit, the grass, " +
+			"and shows the due dates before and after. Nothing is kept. " +
 			"Highs and lows stand for the days from warm-from on, today when it is not given.",
 		Options: []Option{
 			d.surfaceOption(), d.workOption(),
@@ -25,8 +27,14 @@ func (d Desk) whatIf() Command {
 			{Name: "lows", Kind: Numbers, Help: "lows of the days ahead, one a day", Example: "18 19 18"},
 			{Name: "work-on", Kind: Day, Help: "the work is done on this day", Example: "tomorrow"},
 			{Name: "rate", Kind: Text, Help: "with work-on: nitrogen given, g N/m² or with a unit", Example: "2.5"},
+			{Name: "part", Kind: Name, Help: "with work-on: the part that is done", Example: "front nine"},
+			{Name: "result", Kind: Choice, Choices: []string{"good", string(planner.Doubtful), string(planner.Lost)}, Help: "the last pass turned out so"},
 			{Name: "gap", Kind: Whole, Range: Between(0, 366), Help: "another least number of days between two passes", Example: "10"},
+			{Name: "most", Kind: Whole, Range: Between(1, 366), Help: "another most of times a season", Example: "4"},
+			{Name: "rain-free", Kind: Number, Range: Between(0, 240), Help: "other rain-free hours", Example: "6"},
+			{Name: "resting", Kind: Yes, Help: "yes: the work rests from today on; no: it is on all year"},
 			{Name: "open", Kind: Yes, Help: "take closed days as open"},
+			{Name: "grass", Kind: Choice, Choices: []string{"cool", "warm", "cool-f", "warm-f"}, Help: "other grass on the surface from today on"},
 			{Name: "target", Kind: Target, Range: AtLeast(0), Help: "another target for the work", Example: "250"},
 			d.siteOption(),
 		},
@@ -68,7 +76,11 @@ func (d Desk) runWhatIf(ctx context.Context, req Request) (reply.Reply, error) {
 		}
 	}
 	if day, given, _ := v.Values.Day("work-on", v.today); given {
-		r.Add(passNotes(chosen[0], day, plan)...)
+		after, _ := stateOf(whatIf.Works, chosen[0].Work.ID)
+		r.Add(passNotes(chosen[0], day, plan, after.Settings.RainFreeHours)...)
+	}
+	if v.Values.Has("target") {
+		r.Add(reply.Text(strings.TrimPrefix(briefing.OriginLine(chosen[0].Settings.Origin)+"\n"+briefing.TargetCaution, "\n")))
 	}
 	r.Private = true
 	r.Figures = append(base.Figures().Under("base."), whatIf.Figures().Under("whatif.")...)
@@ -115,10 +127,10 @@ func (v visit) sideBySide(chosen []planner.WorkState, base, whatIf planner.Evalu
 }
 
 // passNotes say what stands against doing the work on the day.
-func passNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []reply.Block {
+func passNotes(state planner.WorkState, day planner.Day, plan planner.Plan, rainFreeHours float64) []reply.Block {
 	notes := briefing.PassNotes(state, day, plan)
-	if hours := state.Settings.RainFreeHours; hours > 0 {
-		notes = append(notes, briefing.Plain(hours)+" rain-free hours after it")
+	if rainFreeHours > 0 {
+		notes = append(notes, briefing.Plain(rainFreeHours)+" rain-free hours after it")
 	}
 	if len(notes) == 0 {
 		return nil
@@ -128,8 +140,13 @@ func passNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []re
 
 func shortDate(state planner.WorkState) string {
 	facts, started := state.OwnFacts()
-	if !started {
+	switch {
+	case state.Status == planner.Resting:
+		return "resting"
+	case !started:
 		return "not started"
+	case state.Status == planner.Full:
+		return "full"
 	}
 	return passageText(facts.Date())
 }
@@ -163,6 +180,13 @@ func (v visit) edits(chosen []planner.WorkState) ([]planner.Edit, error) {
 	if open, _ := v.Values.Yes("open"); open {
 		edits = append(edits, planner.OpenAll{})
 	}
+	if grass, given := v.Values.Text("grass"); given {
+		onGrass, err := grassEdits(chosen, grass)
+		if err != nil {
+			return nil, err
+		}
+		edits = append(edits, onGrass...)
+	}
 	forWork, err := v.workEdits(chosen)
 	if err != nil {
 		return nil, err
@@ -174,12 +198,27 @@ func (v visit) edits(chosen []planner.WorkState) ([]planner.Edit, error) {
 	return edits, nil
 }
 
+// grassEdits put other grass on the one surface of the works chosen.
+func grassEdits(chosen []planner.WorkState, grass string) ([]planner.Edit, error) {
+	surface := chosen[0].Surface
+	for _, state := range chosen {
+		if state.Surface.ID != surface.ID {
+			return nil, planner.Problemf(planner.Missing, "Which surface has other grass?").WithHint("Add surface:%s.", surface.Name)
+		}
+	}
+	curve, _ := grassCurve(grass)
+	return []planner.Edit{planner.SetGrass{Surface: surface.ID, Name: surface.Name, Grass: grass, Curve: curve}}, nil
+}
+
 // workEdits are the edits of one work, which must then be the only one chosen.
 func (v visit) workEdits(chosen []planner.WorkState) ([]planner.Edit, error) {
-	if !v.Values.Has("work-on") && !v.Values.Has("target") && !v.Values.Has("gap") {
-		if v.Values.Has("rate") {
-			return nil, planner.Problemf(planner.Missing, "A rate needs the day it is given.").WithHint("Add work-on:tomorrow.")
+	for _, option := range []string{"rate", "part"} {
+		if v.Values.Has(option) && !v.Values.Has("work-on") {
+			return nil, planner.Problemf(planner.Missing, "A %s needs the day the work is done.", option).WithHint("Add work-on:tomorrow.")
 		}
+	}
+	ofOne := []string{"work-on", "target", "gap", "most", "rain-free", "resting", "result"}
+	if !slices.ContainsFunc(ofOne, v.Values.Has) {
 		return nil, nil
 	}
 	if len(chosen) != 1 {
@@ -187,34 +226,76 @@ func (v visit) workEdits(chosen []planner.WorkState) ([]planner.Edit, error) {
 		return nil, planner.Problemf(planner.Missing, "Which work?").
 			WithHint("Add surface: and work:. There is: %s.", strings.Join(titles, ", "))
 	}
-	state := chosen[0]
+	edits, err := v.settingEdits(chosen[0])
+	if err != nil {
+		return nil, err
+	}
+	if result, given := v.Values.Text("result"); given {
+		edits = append(edits, planner.SetResult{Work: chosen[0].Work.ID, Name: briefing.Title(chosen[0]), Result: planner.Result(strings.TrimPrefix(result, "good"))})
+	}
+	if v.Values.Has("work-on") {
+		pass, err := v.passEdit(chosen[0])
+		if err != nil {
+			return nil, err
+		}
+		edits = append(edits, pass)
+	}
+	return edits, nil
+}
+
+// settingEdits are the edits of the work's settings.
+func (v visit) settingEdits(state planner.WorkState) ([]planner.Edit, error) {
+	id, name := state.Work.ID, briefing.Title(state)
 	var edits []planner.Edit
 	if typed, given := v.Values.Degrees("target"); given {
 		target, err := v.target(state.Settings.Counting, typed)
 		if err != nil {
 			return nil, err
 		}
-		edits = append(edits, planner.SetTarget{Work: state.Work.ID, Name: briefing.Title(state), Target: target, Unit: state.Unit})
+		edits = append(edits, planner.SetTarget{Work: id, Name: name, Target: target, Unit: state.Unit})
 	}
-	if gap, given := v.Values.Whole("gap"); given {
-		limits := state.Settings.Limits
+	limits := state.Settings.Limits
+	gap, hasGap := v.Values.Whole("gap")
+	most, hasMost := v.Values.Whole("most")
+	if hasGap {
 		limits.LeastDays = gap
-		edits = append(edits, planner.SetLimits{Work: state.Work.ID, Name: briefing.Title(state), Limits: limits})
 	}
-	if v.Values.Has("work-on") {
-		day, err := v.day("work-on", v.today)
+	if hasMost {
+		limits.MostTimes = most
+	}
+	if hasGap || hasMost {
+		edits = append(edits, planner.SetLimits{Work: id, Name: name, Limits: limits})
+	}
+	if hours, given := v.Values.Number("rain-free"); given {
+		edits = append(edits, planner.SetRainFree{Work: id, Name: name, Hours: hours})
+	}
+	if resting, given := v.Values.Yes("resting"); given {
+		edits = append(edits, planner.SetSeason{Work: id, Name: name, Resting: resting})
+	}
+	return edits, nil
+}
+
+// passEdit is the pass that work-on asks for.
+func (v visit) passEdit(state planner.WorkState) (planner.Edit, error) {
+	day, err := v.day("work-on", v.today)
+	if err != nil {
+		return nil, err
+	}
+	pass := planner.DoWork{Work: state.Work.ID, Name: briefing.Title(state), Day: day}
+	if text, given := v.Values.Text("rate"); given {
+		rate, err := planner.ParseRate(text, 0, false)
 		if err != nil {
 			return nil, err
 		}
-		var rate planner.Rate
-		if text, given := v.Values.Text("rate"); given {
-			if rate, err = planner.ParseRate(text, 0, false); err != nil {
-				return nil, err
-			}
-		}
-		edits = append(edits, planner.DoWork{Work: state.Work.ID, Name: briefing.Title(state), Day: day, NitrogenGM2: rate.NitrogenGM2()})
+		pass.NitrogenGM2 = rate.NitrogenGM2()
 	}
-	return edits, nil
+	if part, given := v.Values.Text("part"); given {
+		if pass.Part, err = v.partOf(state.Work.ID, part); err != nil {
+			return nil, err
+		}
+		pass.PartName = part
+	}
+	return pass, nil
 }
 
 // typedDays reads highs and lows, one a day from the first day on.
