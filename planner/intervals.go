@@ -20,8 +20,9 @@ type IntervalSum struct {
 // PastIntervals returns how the work's intervals really ran, oldest first: the
 // days from one pass to the next, and what they came to in degree days (by the
 // work's own method, else from the mean above 0 °C) and in growth days of its
-// surface, on both means. Lost passes are left out; a count starts the day
-// after a pass and runs through the day of the next.
+// surface, on both means. Lost passes are left out; a surface done in parts is
+// done once all of them are, as of the first; a count starts the day after a
+// pass and runs through the day of the next.
 func PastIntervals(plan Plan, work Work) ([]Interval, error) {
 	surface, ok := plan.Surface(work.Surface)
 	if !ok {
@@ -41,24 +42,36 @@ func PastIntervals(plan Plan, work Work) ([]Interval, error) {
 	}
 	kinds := []Counts{ByDegreeDays, ByGrowthDays}
 	var intervals []Interval
-	last, started := Day(0), false
-	for _, entry := range plan.Log {
-		if _, ok := entry.Of(work.ID); !ok || entry.Result == Lost || started && entry.Day == last {
-			continue
-		}
-		if started {
-			interval := Interval{From: last, To: entry.Day, Days: int(entry.Day - last)}
-			for i, measure := range measures {
-				for _, basis := range measure.Bases() {
-					sum := counter{plan: plan, measure: measure, basis: basis}.past(last+1, entry.Day+1).sum
-					interval.Sums = append(interval.Sums, IntervalSum{kinds[i], measure.Unit(), basis, sum})
-				}
+	days := wholeDays(plan.Log, work.ID, surface)
+	for i := 1; i < len(days); i++ {
+		from, to := days[i-1], days[i]
+		interval := Interval{From: from, To: to, Days: int(to - from)}
+		for j, measure := range measures {
+			for _, basis := range measure.Bases() {
+				sum := counter{plan: plan, measure: measure, basis: basis}.past(from+1, to+1).sum
+				interval.Sums = append(interval.Sums, IntervalSum{kinds[j], measure.Unit(), basis, sum})
 			}
-			intervals = append(intervals, interval)
 		}
-		last, started = entry.Day, true
+		intervals = append(intervals, interval)
 	}
 	return intervals, nil
+}
+
+// wholeDays are the days as of which the whole surface was done, in order, each
+// once.
+func wholeDays(log []Entry, work WorkID, surface Surface) (days []Day) {
+	var done []donePass
+	for _, entry := range log {
+		pass, has := entry.Of(work)
+		if !has || entry.Result == Lost {
+			continue
+		}
+		done = append(done, donePass{entry.Day, pass.Part, entry.Result})
+		if since, _, ok := wholeSince(surface, done); ok && (len(days) == 0 || since > days[len(days)-1]) {
+			days = append(days, since)
+		}
+	}
+	return days
 }
 
 // MeanInterval is the mean of the newest intervals, at most the number asked

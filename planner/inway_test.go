@@ -256,6 +256,13 @@ func TestPastIntervals(t *testing.T) {
 			t.Errorf("interval %d: %+v", i, intervals[i])
 		}
 	}
+	// In parts the surface is done once both are, as of the first of them.
+	parts := simple(byDays(7), june(20), doneOn(june(1)), doneOn(june(8), inPart(frontNine)), doneOn(june(10), inPart(backNine)),
+		doneOn(june(14), inPart(backNine), result(planner.Lost)), doneOn(june(17), inPart(backNine)), doneOn(june(18), inPart(frontNine)))
+	inParts, err := planner.PastIntervals(parts, parts.Works[0])
+	if err != nil || len(inParts) != 2 || inParts[0].To != june(8) || inParts[1].From != june(8) || inParts[1].To != june(17) {
+		t.Errorf("in parts: %+v, %v", inParts, err)
+	}
 	days, sums, ok := planner.MeanInterval(intervals, 5)
 	if !ok || days != 8.5 || sums[0] != 170 {
 		t.Errorf("mean %v %v", days, sums)
