@@ -182,7 +182,7 @@ func (p Plan) flagDate(state *WorkState) {
 		yesterday.AsOf--
 		before := facts
 		before.filled -= facts.last
-		state.AskForgotten = !yesterday.overdue(*state, before)
+		state.AskForgotten = date.Day > state.LastDone && !yesterday.overdue(*state, before)
 	}
 }
 

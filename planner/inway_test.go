@@ -3,6 +3,7 @@ package planner_test
 import (
 	"fmt"
 	"math"
+	"strings"
 	"testing"
 
 	"pgregory.net/rapid"
@@ -408,5 +409,52 @@ func TestLimitAndClosedEdits(t *testing.T) {
 	}
 	if _, refusals := planner.Apply(plan, planner.SetLimits{Work: 9}); len(refusals) != 1 {
 		t.Error("limits of a work that is not there")
+	}
+}
+
+// A surface done in parts counts from the earliest of them; what is behind is
+// what a round still lacks. By hand from the rule.
+func TestRoundsOfParts(t *testing.T) {
+	const dropped planner.PartID = 3
+	front, back := inPart(frontNine), inPart(backNine)
+	for _, row := range []struct {
+		name   string
+		log    []planner.Entry
+		since  planner.Day // counted from the day after
+		behind string
+	}{
+		{"the whole", []planner.Entry{doneOn(june(2))}, june(2), ""},
+		{"one part of a round", []planner.Entry{doneOn(june(2)), doneOn(june(5), front)}, june(2), "back nine"},
+		{"both parts", []planner.Entry{doneOn(june(2)), doneOn(june(5), front), doneOn(june(6), back)}, june(5), ""},
+		{"both on a day", []planner.Entry{doneOn(june(5), back), doneOn(june(5), front)}, june(5), ""},
+		{"a round in the other order", []planner.Entry{doneOn(june(5), front), doneOn(june(6), back), doneOn(june(8), back)}, june(5), "front nine"},
+		{"a part twice, the other late", []planner.Entry{doneOn(june(2)), doneOn(june(4), front), doneOn(june(6), front)}, june(2), "back nine"},
+		{"and then done", []planner.Entry{doneOn(june(2)), doneOn(june(4), front), doneOn(june(6), front), doneOn(june(7), back)}, june(6), ""},
+		{"the whole ends a round", []planner.Entry{doneOn(june(4), front), doneOn(june(6))}, june(6), ""},
+		{"one part and no more", []planner.Entry{doneOn(june(4), front)}, june(4), "back nine"},
+		{"a lost part is not done", []planner.Entry{doneOn(june(2)), doneOn(june(4), front), doneOn(june(5), back, result(planner.Lost))}, june(2), "back nine"},
+		{"a part that was dropped", []planner.Entry{doneOn(june(2)), doneOn(june(4), inPart(dropped))}, june(2), ""},
+	} {
+		plan := simple(byDays(20), june(10), row.log...)
+		plan.Surfaces[0].Parts = append(plan.Surfaces[0].Parts, planner.Part{ID: dropped, Name: "nursery", Share: 0.2, Dropped: true})
+		state := stateOf(t, plan)
+		if got := strings.Join(state.Behind, ", "); state.LastDone != row.since || got != row.behind {
+			t.Errorf("%s: since %s, behind %q; want %s, %q", row.name, state.LastDone, got, row.since, row.behind)
+		}
+	}
+}
+
+// A feed that leaves the balance short is due at once; it was logged all the
+// same, and is not asked for.
+func TestALoggedFeedIsNotAskedFor(t *testing.T) {
+	settings := planner.WorkSettings{Counting: planner.Counting{Counts: planner.ByNitrogen}, Basis: planner.Hourly}
+	feed := func(day planner.Day) planner.Entry {
+		return doneOn(day, func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = 0.5 })
+	}
+	for asOf := june(21); asOf < june(25); asOf++ {
+		state := stateOf(t, simple(settings, asOf, feed(june(1)), feed(june(20)))) // 0.1 g a day is used, all of it by the 11th
+		if facts, _ := state.OwnFacts(); facts.Date().Day != june(20) || state.AskForgotten {
+			t.Errorf("%s: due %v, asked %v", asOf, facts.Date(), state.AskForgotten)
+		}
 	}
 }

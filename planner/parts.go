@@ -114,31 +114,41 @@ func (p Plan) passesOf(work WorkID, settings WorkSettings) []donePass {
 }
 
 // wholeSince returns the day from which the whole surface counts: the earliest
-// of its parts' newest passes. Parts never done are left out, and named when
-// others were done since.
+// of its parts' newest passes. Parts never done are left out. behind names the
+// parts that are still to be done of a round that others began: a round ends
+// with the last part, or with a pass over the whole. Passes of parts that were
+// dropped do not count.
 func wholeSince(surface Surface, done []donePass) (since Day, behind []string, ok bool) {
 	parts := surface.ActiveParts()
 	if len(parts) == 0 {
 		parts = []Part{{}}
 	}
-	newest := make([]Day, len(parts))
-	latest := DayMin
-	for i, part := range parts {
-		newest[i] = DayMin
-		for _, pass := range done {
+	newest, left := map[PartID]Day{}, []Part(nil)
+	for _, pass := range done {
+		if pass.Part != 0 && !slices.ContainsFunc(parts, func(part Part) bool { return part.ID == pass.Part }) {
+			continue // of a part that was dropped
+		}
+		if len(left) == 0 {
+			left = parts
+		}
+		left = filter(left, func(part Part) bool {
+			return pass.Part != 0 && pass.Part != part.ID
+		})
+		for _, part := range parts {
 			if pass.Part == 0 || pass.Part == part.ID {
-				newest[i] = max(newest[i], pass.Day)
+				if day, known := newest[part.ID]; !known || pass.Day > day {
+					newest[part.ID] = pass.Day
+				}
 			}
 		}
-		latest = max(latest, newest[i])
-		if newest[i] > DayMin && (!ok || newest[i] < since) {
-			since, ok = newest[i], true
+	}
+	for _, day := range newest {
+		if !ok || day < since {
+			since, ok = day, true
 		}
 	}
-	for i, part := range parts {
-		if newest[i] < latest {
-			behind = append(behind, part.Name)
-		}
+	for _, part := range left {
+		behind = append(behind, part.Name)
 	}
 	return since, behind, ok
 }

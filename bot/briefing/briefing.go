@@ -249,7 +249,9 @@ func Progress(state planner.WorkState, facts planner.DueFacts, e planner.Evaluat
 		text += " " + base
 	}
 	if state.Status == planner.DueToday {
-		text += ", today should fill it"
+		if text += ", today should fill it"; state.Settings.Counts == planner.ByNitrogen {
+			text = strings.TrimSuffix(text, "fill it") + "use it up"
+		}
 	}
 	return text
 }

@@ -25,6 +25,9 @@ func InTheWay(state planner.WorkState) []string {
 	}
 	if limits.MostTotal > 0 {
 		add("%s of at most %s given since %s", Plain(state.Season.Given), Plain(limits.MostTotal), DayMonth(state.Season.Since))
+		if state.Season.Given > limits.MostTotal {
+			add("past your most of a season")
+		}
 	}
 	if state.RestsThen {
 		add("rests then: its season ends %s", monthDay(state.Settings.Season.To))
