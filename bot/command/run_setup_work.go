@@ -158,36 +158,12 @@ func (v visit) workSettings(settings planner.WorkSettings, surface planner.Surfa
 	if err := v.checkCounting(settings.Counting); err != nil {
 		return settings, err
 	}
-	if before.Counts != "" && before.Counts != settings.Counts && !v.Values.Has("target") && settings.Counts != planner.ByNitrogen {
-		return settings, v.Missing("target")
-	}
-	typed, given := v.Values.Degrees("target")
-	switch {
-	case given:
-		target, err := v.target(settings.Counting, typed)
-		if err != nil {
+	for _, read := range []func(*planner.WorkSettings) error{
+		func(s *planner.WorkSettings) error { return v.targets(s, before) }, v.limits, v.ownMean,
+	} {
+		if err := read(&settings); err != nil {
 			return settings, err
 		}
-		settings.Target, settings.Latest = target, 0
-	case before.Counts == "" && settings.Counts != planner.ByNitrogen:
-		return settings, v.Missing("target")
-	}
-	if typed, given := v.Values.Degrees("latest"); given {
-		latest, err := v.target(settings.Counting, typed)
-		if err != nil {
-			return settings, err
-		}
-		settings.Latest = latest
-	}
-	if err := v.limits(&settings); err != nil {
-		return settings, err
-	}
-	settings.Basis = planner.Basis(textOr(v.Values, "mean", string(settings.Basis)))
-	if !settings.StandsOnMean() {
-		if v.Values.Has("mean") {
-			return settings, v.Invalid("counts", "mean: does not go with what this work counts")
-		}
-		settings.Basis = ""
 	}
 	if settings.Counts == planner.ByNitrogen && surface.Turf.On(v.today).CeilingGM2 == 0 {
 		return settings, planner.Problemf(planner.Missing, "How much nitrogen can %s use in a month?", surface.Name).
@@ -195,6 +171,38 @@ func (v visit) workSettings(settings planner.WorkSettings, surface planner.Surfa
 				Line("setup surface change", Pair{"name", surface.Name}, Pair{"ceiling", "3"}, Pair{"from", "2000-01-01"}))
 	}
 	return settings, nil
+}
+
+// targets reads the target and the latest. A work that counts something else
+// than before must be given a target, but for a nitrogen reserve, which may be 0;
+// a new target takes the old latest with it.
+func (v visit) targets(settings *planner.WorkSettings, before planner.Counting) error {
+	target, given := v.Values.Degrees("target")
+	if !given && before.Counts != settings.Counts && settings.Counts != planner.ByNitrogen {
+		return v.Missing("target")
+	}
+	var err error
+	if given {
+		settings.Latest = 0
+		if settings.Target, err = v.target(settings.Counting, target); err != nil {
+			return err
+		}
+	}
+	if latest, given := v.Values.Degrees("latest"); given {
+		settings.Latest, err = v.target(settings.Counting, latest)
+	}
+	return err
+}
+
+// ownMean reads which mean the work stands on.
+func (v visit) ownMean(settings *planner.WorkSettings) error {
+	if !settings.StandsOnMean() && v.Values.Has("mean") {
+		return v.Invalid("counts", "mean: does not go with what this work counts")
+	}
+	if settings.Basis = planner.Basis(textOr(v.Values, "mean", string(settings.Basis))); !settings.StandsOnMean() {
+		settings.Basis = ""
+	}
+	return nil
 }
 
 func (d Desk) runWorkAdd(ctx context.Context, req Request) (reply.Reply, error) {
@@ -279,8 +287,11 @@ func settingsText(settings planner.WorkSettings, units planner.Units) string {
 	unit := unitCounted(settings.Counting)
 	target, unitName := units.Show(settings.Target, unit)
 	text := fmt.Sprintf("every %s %s", briefing.Plain(target), unitName)
-	if settings.Counts == planner.ByNitrogen {
+	switch {
+	case settings.Counts == planner.ByNitrogen:
 		text = fmt.Sprintf("when %s %s are left", briefing.Plain(target), unitName)
+	case settings.Counts == planner.ByDays && target == 1:
+		text = "every day"
 	}
 	text += countingText(settings.Counting, units)
 	if settings.Latest > 0 {
