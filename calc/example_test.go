@@ -3,6 +3,7 @@ package calc_test
 import (
 	"errors"
 	"fmt"
+	"slices"
 
 	"swardbook/calc"
 )
@@ -272,9 +273,9 @@ func ExampleReached() {
 
 func ExampleFirstPassage() {
 	ahead := []float64{18.4, 15.0, 12.7, 14.9} // °C-days a day
-	days, reached := calc.FirstPassage(158, ahead, 200)
+	days, reached := calc.FirstPassage(158, slices.Values(ahead), 200)
 	fmt.Printf("in %d days: %v\n", days, reached)
-	days, reached = calc.FirstPassage(100, ahead, 200)
+	days, reached = calc.FirstPassage(100, slices.Values(ahead), 200)
 	fmt.Printf("within %d days: %v\n", days, reached)
 	// Output:
 	// in 3 days: true

@@ -3,6 +3,7 @@ package calc_test
 import (
 	"encoding/binary"
 	"math"
+	"slices"
 	"testing"
 
 	"swardbook/calc"
@@ -109,7 +110,7 @@ func FuzzFirstPassage(f *testing.F) {
 	f.Add(math.MaxFloat64, 0.0, bytesOf(math.MaxFloat64))
 	f.Fuzz(func(t *testing.T, start, target float64, data []byte) {
 		units := floats(data)
-		days, reached := calc.FirstPassage(start, units, target)
+		days, reached := calc.FirstPassage(start, slices.Values(units), target)
 		if days < 0 || days > len(units) {
 			t.Fatalf("day %d of %d", days, len(units))
 		}

@@ -2,6 +2,7 @@ package calc
 
 import (
 	"fmt"
+	"iter"
 	"math"
 )
 
@@ -41,8 +42,9 @@ func roundSix(value float64) float64 {
 //	total(n) = start + units(1) + … + units(n)
 //	days     = the smallest n with Reached(total(n), target)
 //
-// start is the total before the first day, units what each day adds, in order,
-// target what to reach, all in the same unit. Units may be negative; the first
+// start is the total before the first day, units what each day adds, in order
+// (asked for only as far as they are needed), target what to reach, all in the
+// same unit. Units may be negative; the first
 // passage counts even if the total falls back later. days is 0 when start
 // already reaches the target, and n when the n-th unit does it.
 //
@@ -52,7 +54,7 @@ func roundSix(value float64) float64 {
 // or a target that is not finite is never reached.
 //
 // Source: see [Reached].
-func FirstPassage(start float64, units []float64, target float64) (days int, reached bool) {
+func FirstPassage(start float64, units iter.Seq[float64], target float64) (days int, reached bool) {
 	if !isFinite(start) || !isFinite(target) {
 		return 0, false
 	}
@@ -60,16 +62,17 @@ func FirstPassage(start float64, units []float64, target float64) (days int, rea
 	if Reached(total, target) {
 		return 0, true
 	}
-	for i, unit := range units {
+	for unit := range units {
 		total += unit
 		if !isFinite(total) {
-			return i, false
+			return days, false
 		}
+		days++
 		if Reached(total, target) {
-			return i + 1, true
+			return days, true
 		}
 	}
-	return len(units), false
+	return days, false
 }
 
 // rankNoise is the rounding error forgiven in share · count, so that

@@ -57,7 +57,7 @@ func TestFirstPassage(t *testing.T) {
 	}
 	for _, tt := range tests {
 		t.Run(tt.name, func(t *testing.T) {
-			days, reached := calc.FirstPassage(tt.start, tt.units, tt.target)
+			days, reached := calc.FirstPassage(tt.start, slices.Values(tt.units), tt.target)
 			if days != tt.days || reached != tt.reached {
 				t.Errorf("day %d, reached %v; want day %d, %v", days, reached, tt.days, tt.reached)
 			}
@@ -69,10 +69,10 @@ func TestFirstPassage(t *testing.T) {
 // millionth more on the day after.
 func TestFirstPassageAtEveryTotal(t *testing.T) {
 	for i, total := range totals {
-		if days, reached := calc.FirstPassage(0, increments, total); days != i+1 || !reached {
+		if days, reached := calc.FirstPassage(0, slices.Values(increments), total); days != i+1 || !reached {
 			t.Errorf("target %g: day %d, reached %v; want day %d", total, days, reached, i+1)
 		}
-		days, reached := calc.FirstPassage(0, increments, total+1e-6)
+		days, reached := calc.FirstPassage(0, slices.Values(increments), total+1e-6)
 		last := i == len(totals)-1
 		if reached == last || !last && days != i+2 {
 			t.Errorf("target %g and a millionth: day %d, reached %v", total, days, reached)
@@ -119,7 +119,7 @@ func TestFirstPassageProperties(t *testing.T) {
 		units := rapid.SliceOfN(rapid.Float64Range(0, 30), 0, 40).Draw(t, "units")
 		start := rapid.Float64Range(0, 100).Draw(t, "start")
 		target := rapid.Float64Range(0, 400).Draw(t, "target")
-		days, reached := calc.FirstPassage(start, units, target)
+		days, reached := calc.FirstPassage(start, slices.Values(units), target)
 		total := start
 		for _, unit := range units[:days] {
 			total += unit
@@ -131,11 +131,11 @@ func TestFirstPassageProperties(t *testing.T) {
 			t.Fatalf("day %d, but %g of %g was there the day before", days, total-units[days-1], target)
 		}
 		more := rapid.Float64Range(0, 50).Draw(t, "more")
-		higherDays, higherReached := calc.FirstPassage(start, units, target+more)
+		higherDays, higherReached := calc.FirstPassage(start, slices.Values(units), target+more)
 		if higherReached && (!reached || higherDays < days) {
 			t.Fatalf("target %g on day %d (%v), %g on day %d", target, days, reached, target+more, higherDays)
 		}
-		headDays, headReached := calc.FirstPassage(start+more, units, target)
+		headDays, headReached := calc.FirstPassage(start+more, slices.Values(units), target)
 		if reached && (!headReached || headDays > days) {
 			t.Fatalf("day %d, with a head start of %g day %d (%v)", days, more, headDays, headReached)
 		}

@@ -247,7 +247,7 @@ func slowDates(since planner.Day, past []float64, members [][]float64, target fl
 			units = append(units, max(c, 0))
 		}
 		day := never
-		if n, reached := calc.FirstPassage(0, units, target); reached {
+		if n, reached := calc.FirstPassage(0, slices.Values(units), target); reached {
 			day = since + planner.Day(n) - 1
 		}
 		dates = append(dates, day)

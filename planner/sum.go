@@ -135,17 +135,14 @@ type Passage struct {
 // the target, along the path or a member; missing past days are taken from it
 // too. A target of 0 or less was reached the day before the count began.
 func (c counter) passage(days []DayFacts, past pastUnits, target float64) Passage {
-	if calc.Reached(0, target) {
-		return Passage{past.first - 1, true}
-	}
-	total := 0.0
-	for day := past.first; day < c.plan.Outlook.end(); day++ {
-		total += c.along(days, past, day)
-		if calc.Reached(total, target) {
-			return Passage{day, true}
+	n, reached := calc.FirstPassage(0, func(yield func(float64) bool) {
+		for day := past.first; day < c.plan.Outlook.end() && yield(c.along(days, past, day)); day++ {
 		}
+	}, target)
+	if !reached {
+		return Passage{}
 	}
-	return Passage{}
+	return Passage{past.first - 1 + Day(n), true}
 }
 
 func (c counter) along(days []DayFacts, past pastUnits, day Day) float64 {
