@@ -93,11 +93,15 @@ type SetLimits struct {
 // Sentence says what the edit does, like "greens regulator with at least 10 days
 // between, at most 4 times a season".
 func (s SetLimits) Sentence(Units) string {
-	text := fmt.Sprintf("%s with at least %d %s between", s.Name, s.Limits.LeastDays, plural(s.Limits.LeastDays, "day"))
-	if s.Limits.MostTimes > 0 {
-		text += fmt.Sprintf(", at most %d %s a season", s.Limits.MostTimes, plural(s.Limits.MostTimes, "time"))
+	between := fmt.Sprintf("at least %d %s between", s.Limits.LeastDays, plural(s.Limits.LeastDays, "day"))
+	most := fmt.Sprintf("at most %d %s a season", s.Limits.MostTimes, plural(s.Limits.MostTimes, "time"))
+	switch {
+	case s.Limits.MostTimes == 0:
+		return s.Name + " with " + between
+	case s.Limits.LeastDays == 0:
+		return s.Name + " with " + most
 	}
-	return text
+	return s.Name + " with " + between + ", " + most
 }
 
 func (s SetLimits) apply(plan Plan) (Plan, error) {

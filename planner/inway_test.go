@@ -356,7 +356,7 @@ func TestEntryAndSettingsRefuse(t *testing.T) {
 		"slow without weeks":        func(e *planner.Entry) { e.Passes[0].SlowShare = 0.5 },
 		"slow share above 1":        func(e *planner.Entry) { e.Passes[0].SlowShare, e.Passes[0].SlowWeeks = 1.5, 4 },
 		"a rate of no kind":         func(e *planner.Entry) { e.Passes[0].Rate = planner.Rate{Kind: "bags", Value: 1} },
-		"nitrogen that is product":  func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = 14 },
+		"nitrogen past any pass":    func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = 51 },
 		"a work that is not named":  func(e *planner.Entry) { e.Passes[0].Work = 0 },
 		"a rate that is no number":  func(e *planner.Entry) { e.Passes[0].Rate = planner.Rate{Kind: planner.MassRate, Value: math.NaN()} },
 		"nitrogen that is infinite": func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = math.Inf(1) },

@@ -386,7 +386,7 @@ func (s WorkSettings) check() error {
 			return Problemf(Invalid, "a reserve of %g g N/m² cannot be used", s.Target).WithHint("Give 0 to 50 g N/m².")
 		}
 	} else if !(s.Target > 0 && s.Target <= maxTarget) {
-		return Problemf(Invalid, "a target of %g cannot be used", s.Target).WithHint("Give a number above 0, like target:200.")
+		return Problemf(Invalid, "a target of %g cannot be used", s.Target).WithHint("Give a number above 0, up to %d, like target:200.", maxTarget)
 	}
 	if s.Latest != 0 && s.Counts == ByNitrogen {
 		return Problemf(Invalid, "latest does not go with nitrogen").WithHint("A feed is overdue a tenth past what was there.")
@@ -448,9 +448,14 @@ func (t Total) Check() error {
 	return CheckName(t.Name)
 }
 
-// maxPassGM2 is the most nitrogen of one pass that is taken at its word; more
-// is most often an amount of product.
-const maxPassGM2 = 5
+const (
+	// WordGM2 is the most nitrogen of one pass that is taken at its word, g N/m²;
+	// a bare number above it is most often an amount of product.
+	WordGM2 = 5
+	// maxPassGM2 is the most nitrogen of one pass: 500 kg/ha, more than turf is
+	// given in a year (common practice).
+	maxPassGM2 = 50
+)
 
 // Check refuses an entry without a site, a day or a work, and nitrogen that
 // cannot have been given.
@@ -492,8 +497,7 @@ func (p Pass) check() error {
 			WithHint("Give its percent and its weeks, like slow:40 weeks:8.")
 	}
 	if !(p.NitrogenGM2 >= 0 && p.NitrogenGM2 <= maxPassGM2) {
-		return Problemf(Invalid, "%g g N/m² in one pass: nitrogen or product?", p.NitrogenGM2).
-			WithHint("The rate is nitrogen, 0 to 5 g N/m²: amount of product times its N share (14 g/m² at 21 %% is 2.9).")
+		return tooMuchNitrogen(p.NitrogenGM2)
 	}
 	return nil
 }

@@ -226,11 +226,11 @@ func TestEntryCheck(t *testing.T) {
 		"work 0":         func(e *planner.Entry) { e.Passes = []planner.Pass{{}} },
 		"day too early":  func(e *planner.Entry) { e.Day = planner.DayMin - 1 },
 		"day too late":   func(e *planner.Entry) { e.Day = planner.DayMax + 1 },
-		"much nitrogen":  func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = 5.01 },
+		"much nitrogen":  func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = 50.01 },
 		"nitrogen below": func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = -0.01 },
 		"no number":      func(e *planner.Entry) { e.Passes[0].NitrogenGM2 = math.NaN() },
 		"the second of two": func(e *planner.Entry) {
-			e.Passes = append(e.Passes, planner.Pass{Work: 2, NitrogenGM2: 21})
+			e.Passes = append(e.Passes, planner.Pass{Work: 2, NitrogenGM2: 210})
 		},
 	})
 	entry := done(3, 7, 1)

@@ -53,10 +53,14 @@ func (r Rate) Check() error {
 	case !(r.NPercent >= 0 && r.NPercent <= maxNPercent):
 		return Problemf(Invalid, "%g %% nitrogen is not possible", r.NPercent).WithHint("Urea has the most of the solid feeds, 46 %% (common practice).")
 	case r.NitrogenGM2() > maxPassGM2:
-		return Problemf(Invalid, "%s g N/m² in one pass: nitrogen or product?", number(r.NitrogenGM2())).
-			WithHint("Give product with its nitrogen share, like rate:\"14 g/m2\" n:21 (2.94 g N/m²), or nitrogen, like rate:\"2.9 gN/m2\".")
+		return tooMuchNitrogen(r.NitrogenGM2())
 	}
 	return nil
+}
+
+func tooMuchNitrogen(gM2 float64) error {
+	return Problemf(Invalid, "%s g N/m² is more than a pass can give", number(gM2)).
+		WithHint("Give 0 to %d g N/m². Product goes with its nitrogen percent: rate:\"14 g/m2\" n:21 is 2.94 g N/m².", maxPassGM2)
 }
 
 const (
@@ -90,7 +94,8 @@ func RateUnits() []RateUnit {
 	}
 }
 
-// ParseRate reads a rate as typed: "2.5" and "2.5 gN/m2" are nitrogen, "14
+// ParseRate reads a rate as typed: "2.5" and "2.5 gN/m2" are nitrogen (a bare
+// number above 5 is asked back, as it is most often product), "14
 // g/m2" with a nitrogen percent is a mass of product, "1.2 L/ha" a volume of
 // product. hasN says that a percent was given; a mass without one is a Missing
 // problem that asks which it is.
@@ -113,6 +118,10 @@ func ParseRate(text string, nPercent float64, hasN bool) (Rate, error) {
 
 func rateIn(unit string, value float64, text string, nPercent float64, hasN bool) (Rate, error) {
 	if unit == "" && !hasN {
+		if value > WordGM2 {
+			return Rate{}, Problemf(Missing, "%s g N/m² in one pass: nitrogen or product?", number(value)).
+				WithHint("Nitrogen: rate:\"%[1]s gN/m2\". Product: rate:\"%[1]s g/m2\" with its nitrogen percent, like n:21.", number(value))
+		}
 		return Rate{Kind: NutrientRate, Value: value}, nil
 	}
 	if unit == "" {

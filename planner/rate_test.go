@@ -32,6 +32,9 @@ func TestParseRate(t *testing.T) {
 		{"140 kg/ha", 21, true, planner.Rate{Kind: planner.MassRate, Value: 14, NPercent: 21}, 2.94},
 		{"11.9047619048 g/m2", 21, true, planner.Rate{Kind: planner.MassRate, Value: 11.9047619048, NPercent: 21}, 2.5},
 		{"100 lb/acre", 10, true, planner.Rate{Kind: planner.MassRate, Value: 11.2085115619, NPercent: 10}, 1.12085115619},
+		{"5", 0, false, planner.Rate{Kind: planner.NutrientRate, Value: 5}, 5},
+		{"7 gN/m2", 0, false, planner.Rate{Kind: planner.NutrientRate, Value: 7}, 7}, // said to be nitrogen
+		{"30 g/m2", 21, true, planner.Rate{Kind: planner.MassRate, Value: 30, NPercent: 21}, 6.3},
 		{"5 g/m2", 0, true, planner.Rate{Kind: planner.MassRate, Value: 5}, 0},
 		{"1.2 L/ha", 0, false, planner.Rate{Kind: planner.VolumeRate, Value: 0.12}, 0},
 		{"1 gal/acre", 0, false, planner.Rate{Kind: planner.VolumeRate, Value: 3785.411784 / 4046.8564224}, 0},
@@ -56,8 +59,8 @@ func TestParseRateRefuses(t *testing.T) {
 	}{
 		{"", 0, false, planner.Invalid}, {"much", 0, false, planner.Invalid}, {"-1", 0, false, planner.Invalid},
 		{"NaN", 0, false, planner.Invalid}, {"Inf", 0, false, planner.Invalid}, {"1e9 g/m2", 21, true, planner.Invalid},
-		{"2 bags", 0, false, planner.Invalid}, {"25", 0, false, planner.Invalid}, {"14 g/m2", 83, true, planner.Invalid},
-		{"14 g/m2", 0, false, planner.Missing}, {"30 g/m2", 21, true, planner.Invalid}, {"2 gN/m2", 21, true, planner.Invalid},
+		{"2 bags", 0, false, planner.Invalid}, {"5.01", 0, false, planner.Missing}, {"51 gN/m2", 0, false, planner.Invalid}, {"14 g/m2", 83, true, planner.Invalid},
+		{"14 g/m2", 0, false, planner.Missing}, {"300 g/m2", 21, true, planner.Invalid}, {"2 gN/m2", 21, true, planner.Invalid},
 	} {
 		rate, err := planner.ParseRate(row.text, row.n, row.hasN)
 		var problem *planner.Problem

@@ -95,7 +95,7 @@ func (c counter) past(first, end Day) pastUnits {
 		past.units = append(past.units, units)
 		past.known = append(past.known, standing != Nothing)
 		past.sum.add(units, standing, line)
-		if facts.Other != "" {
+		if facts.Other != "" && c.basis != NoBasis {
 			past.sum.Other++
 		}
 	}

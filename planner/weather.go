@@ -94,7 +94,7 @@ const (
 // infinities, below -95 °C or above 62 °C.
 func CheckTemperature(c float64) error {
 	if !(c >= LowestC && c <= HighestC) {
-		return fmt.Errorf("%g °C is outside %g to %g °C: check the value and its unit", c, LowestC, HighestC)
+		return fmt.Errorf("%.4g °C is outside %g to %g °C: check the value and its unit", c, LowestC, HighestC)
 	}
 	return nil
 }

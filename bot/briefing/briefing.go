@@ -136,13 +136,21 @@ func headline(state planner.WorkState, facts planner.DueFacts) string {
 	return facts.Date().Day.Short()
 }
 
+// dated writes a day with its year where that is not the morning's.
+func dated(day, asOf planner.Day) string {
+	if day.Year() == asOf.Year() {
+		return day.Short()
+	}
+	return fmt.Sprintf("%s %d", day.Short(), day.Year())
+}
+
 func soonAndSure(state planner.WorkState, facts planner.DueFacts, asOf planner.Day) string {
 	date := facts.Date()
 	switch {
 	case !date.Known:
 		return "not within a year"
 	case date.Day < asOf:
-		return fmt.Sprintf("since %s, %s ago", date.Day.Short(), Days(int(asOf-date.Day)))
+		return fmt.Sprintf("since %s, %s ago", dated(date.Day, asOf), Days(int(asOf-date.Day)))
 	}
 	sure := HowSure(facts, asOf)
 	if date.Day == asOf {
@@ -202,13 +210,20 @@ func When(state planner.WorkState, asOf planner.Day) string {
 	}
 }
 
+// farAhead is how many days ahead a date means little without past years to
+// tell the season by (common practice: weather is foretold for two weeks).
+const farAhead = 30
+
 // HowSure says between which dates the due date is likely to fall; "" once it
-// has passed, or when early and late are one day.
+// has passed, when early and late are one day, and when it is not the count that
+// decides it but the least days between.
 func HowSure(facts planner.DueFacts, asOf planner.Day) string {
 	date := facts.Date()
 	switch {
-	case date.Known && date.Day < asOf, facts.Basis == planner.NoBasis:
+	case date.Known && date.Day < asOf, facts.Basis == planner.NoBasis, facts.Held.Known:
 		return ""
+	case !facts.SpreadKnown && date.Known && date.Day > asOf+farAhead:
+		return "a mere guess so far ahead"
 	case !facts.SpreadKnown:
 		return "no spread known"
 	case !facts.Early.Known:
@@ -233,25 +248,49 @@ func Progress(state planner.WorkState, facts planner.DueFacts, e planner.Evaluat
 		total = "at least " + total
 	}
 	target, unit := units.Show(facts.Target, state.Unit)
+	if state.Unit == planner.Days && target == 1 {
+		unit = "day"
+	}
 	text := fmt.Sprintf("%s of %s %s", total, Plain(target), unit)
-	if state.Settings.Counts == planner.ByNitrogen {
-		reserve := state.Settings.Target
-		left, _ := units.Show(facts.Target+reserve-facts.Total.Total, state.Unit)
-		text = fmt.Sprintf("%s %s left", Digits(left, state.Unit), unit)
-		if left < 0 {
-			text = fmt.Sprintf("%s %s short", Digits(-left, state.Unit), unit)
-		}
-		if reserve > 0 {
+	if balance, ok := balanceOf(state, facts.Basis, e); ok {
+		text = LeftText(balance)
+		if reserve := state.Settings.Target; reserve > 0 {
 			text += ", reserve " + Plain(reserve)
 		}
 	}
 	if base := Base(state.Settings.Counting, units); base != "" {
 		text += " " + base
 	}
-	if state.Status == planner.DueToday {
+	if state.Status == planner.DueToday && !facts.Held.Known {
 		if text += ", today should fill it"; state.Settings.Counts == planner.ByNitrogen {
 			text = strings.TrimSuffix(text, "fill it") + "use it up"
 		}
+	}
+	return text
+}
+
+// balanceOf is the nitrogen balance of the work's surface on the basis; ok is
+// false for a work that does not count by nitrogen.
+func balanceOf(state planner.WorkState, basis planner.Basis, e planner.Evaluation) (planner.NitrogenFacts, bool) {
+	for _, nitrogen := range e.Nitrogen {
+		for _, facts := range nitrogen.Bases {
+			if state.Settings.Counts == planner.ByNitrogen && nitrogen.Surface.ID == state.Surface.ID && facts.Basis == basis {
+				return facts, true
+			}
+		}
+	}
+	return planner.NitrogenFacts{}, false
+}
+
+// LeftText says what is left of a balance through yesterday, or short. Missing
+// days used some too: then that much is left at most, or short at least.
+func LeftText(facts planner.NitrogenFacts) string {
+	text, bound := fmt.Sprintf("%s g N/m² left", Digits(facts.LeftGM2, planner.NitrogenGM2)), " at most"
+	if facts.LeftGM2 < 0 {
+		text, bound = fmt.Sprintf("%s g N/m² short", Digits(-facts.LeftGM2, planner.NitrogenGM2)), " at least"
+	}
+	if facts.Used.Missing > 0 {
+		text += bound
 	}
 	return text
 }

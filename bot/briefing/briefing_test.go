@@ -31,7 +31,14 @@ func state(status planner.Status, own, other planner.Passage, change ...func(*pl
 }
 
 func TestBrief(t *testing.T) {
-	evaluation := planner.Evaluation{Site: planner.Site{Name: "Quillmere", Units: planner.Celsius}, AsOf: june(11)}
+	evaluation := planner.Evaluation{Site: planner.Site{Name: "Quillmere", Units: planner.Celsius}, AsOf: june(11),
+		Nitrogen: []planner.NitrogenState{{Surface: planner.Surface{ID: 1}, Bases: []planner.NitrogenFacts{{Basis: planner.Hourly, LeftGM2: -0.3}}}}}
+	missing := evaluation
+	missing.Nitrogen = []planner.NitrogenState{{Surface: planner.Surface{ID: 1}, Bases: []planner.NitrogenFacts{{Basis: planner.Hourly, LeftGM2: -0.3, Used: planner.Sum{Missing: 2}}}}}
+	byNitrogen := func(s *planner.WorkState) {
+		s.Settings, s.Unit = planner.WorkSettings{Counting: planner.Counting{Counts: planner.ByNitrogen}, Target: 0.2}, planner.NitrogenGM2
+	}
+	held := func(s *planner.WorkState) { s.Settings.Limits.LeastDays, s.Bases[0].Held = 14, on(13) }
 	spread := func(early, late int) func(*planner.WorkState) {
 		return func(s *planner.WorkState) { s.Bases[0].Early, s.Bases[0].Late = on(early), on(late) }
 	}
@@ -54,14 +61,21 @@ func TestBrief(t *testing.T) {
 		{"days missing", state(planner.NotYet, on(13), on(13), func(s *planner.WorkState) { s.Bases[0].Total.Missing = 2 }), "greens regulator: Thu 13 Jun|in 2 days|at least 182 of 200 °C-days base 0|24-hour mean|2 days missing"},
 		{"not started", state(planner.NotStarted, planner.Passage{}, planner.Passage{}, func(s *planner.WorkState) { s.Bases = nil }), "greens regulator: not started|log the last one with /done"},
 		{"resting", state(planner.Resting, planner.Passage{}, planner.Passage{}, func(s *planner.WorkState) { s.Bases = nil; s.Resumes = on(30) }), "greens regulator: resting|on again Sun 30 Jun"},
-		{"nitrogen short", state(planner.Due, on(10), on(10), func(s *planner.WorkState) {
-			s.Settings, s.Unit = planner.WorkSettings{Counting: planner.Counting{Counts: planner.ByNitrogen}, Target: 0.2}, planner.NitrogenGM2
-			s.Bases[0].Target, s.Bases[0].Total.Total = 1, 1.5
-		}), "greens regulator: due|since Mon 10 Jun, 1 day ago|0.30 g N/m² short, reserve 0.2|24-hour mean"},
+		{"nitrogen short", state(planner.Due, on(10), on(10), byNitrogen), "greens regulator: due|since Mon 10 Jun, 1 day ago|0.30 g N/m² short, reserve 0.2|24-hour mean"},
+		{"held by the least days", state(planner.NotYet, on(12), on(12), held, spread(11, 12)), "greens regulator: Thu 13 Jun|in 2 days|182 of 200 °C-days base 0|24-hour mean; high/low: 12 Jun|count full 12 Jun; your 14-day gap holds it to Thu 13 Jun"},
+		{"held until today", state(planner.DueToday, on(8), on(8), func(s *planner.WorkState) { s.Settings.Limits.LeastDays, s.Bases[0].Held = 14, on(11) }),
+			"greens regulator: due today|182 of 200 °C-days base 0|24-hour mean; high/low: 8 Jun|count full 8 Jun; your 14-day gap holds it to Tue 11 Jun"},
+		{"far ahead of what is known", state(planner.NotYet, planner.Passage{Day: june(11) + 31, Known: true}, planner.Passage{Day: june(11) + 31, Known: true},
+			func(s *planner.WorkState) { s.Bases[0].SpreadKnown = false }), "greens regulator: Fri 12 Jul|in 31 days, a mere guess so far ahead|182 of 200 °C-days base 0|24-hour mean"},
+		{"due since another year", state(planner.Overdue, planner.Passage{Day: planner.DayOf(2023, 12, 30), Known: true}, planner.Passage{Day: planner.DayOf(2023, 12, 30), Known: true}),
+			"greens regulator: OVERDUE|since Sat 30 Dec 2023, 164 days ago|182 of 200 °C-days base 0|24-hour mean"},
 	} {
 		if got := strings.Join(briefing.Brief(row.state, evaluation), "|"); got != row.want {
 			t.Errorf("%s:\n%s\nwant\n%s", row.name, got, row.want)
 		}
+	}
+	if got := briefing.Brief(state(planner.Due, on(10), on(10), byNitrogen), missing)[2]; got != "0.30 g N/m² short at least, reserve 0.2" {
+		t.Errorf("with days missing: %q", got)
 	}
 }
 

@@ -59,7 +59,7 @@ func yesterdayBlocks(e planner.Evaluation) []reply.Block {
 		blocks = append(blocks, reply.Text(note))
 	}
 	if y.HasExtremes && y.LowC < planner.WhiteFrostC {
-		blocks = append(blocks, reply.Text("Low near or below 0 °C: grass can be white with frost while the air is a few degrees above. Keep traffic off frozen turf."))
+		blocks = append(blocks, reply.Text("Low near or below freezing: grass can be white with frost while the air is a few degrees above. Keep traffic off frozen turf."))
 	}
 	if len(y.Growth) > 0 {
 		blocks = append(blocks, growthTable(y))

@@ -3,6 +3,7 @@ package briefing
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 	"time"
 
@@ -125,10 +126,12 @@ func passage(p planner.Passage) string {
 
 func monthDay(m planner.MonthDay) string { return DayMonth(m.In(2023)) }
 
-// PassNotes say what to check before a pass on the day: how far the running
-// count is, the gap to the last pass, the season's limits, closed days. state
-// is the work as it stands without the pass.
-func PassNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []string {
+// PassNotes say what to check before the entry's pass of the work: how far the
+// running count is, the gap to the last pass, the season's limits, closed days,
+// much nitrogen. state is the work as it stands without the pass.
+func PassNotes(state planner.WorkState, entry planner.Entry, plan planner.Plan) []string {
+	day := entry.Day
+	pass, _ := entry.Of(state.Work.ID)
 	var lines []string
 	add := func(format string, args ...any) { lines = append(lines, fmt.Sprintf(format, args...)) }
 	facts, started := state.OwnFacts()
@@ -136,11 +139,16 @@ func PassNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []st
 		add("at %.0f %% of the interval: check the label's least gap and season total", 100*facts.Total.Total/facts.Target)
 	}
 	limits := state.Settings.Limits
-	if gap := int(day - state.LastDone); started && gap > 0 && gap < limits.LeastDays {
+	if before, ok := passBefore(plan.Log, entry, state.Work.ID); ok && before.Day == day {
+		add("logged on that day already: entry %d", before.ID)
+	} else if gap := int(day - before.Day); ok && gap < limits.LeastDays {
 		add("%s after the last: your least is %d", Days(gap), limits.LeastDays)
 	}
 	if limits.MostTimes > 0 && state.Season.Times+1 > limits.MostTimes {
 		add("past your most of %d times a season", limits.MostTimes)
+	}
+	if pass.NitrogenGM2 > planner.WordGM2 {
+		add("%s g N/m² in one pass: nitrogen or product? Check the label", Plain(pass.NitrogenGM2))
 	}
 	if closed, ok := plan.ClosedOn(state.Work.ID, day); ok {
 		add("%s is closed: %s", day.Short(), closed.Name)
@@ -149,6 +157,20 @@ func PassNotes(state planner.WorkState, day planner.Day, plan planner.Plan) []st
 		add("out of its season")
 	}
 	return lines
+}
+
+// passBefore is the newest other entry, up to the entry's day, with a pass of the
+// work over any of what the entry's goes over.
+func passBefore(log []planner.Entry, entry planner.Entry, work planner.WorkID) (planner.Entry, bool) {
+	pass, _ := entry.Of(work)
+	for _, other := range slices.Backward(log) {
+		before, has := other.Of(work)
+		meets := before.Part == pass.Part || before.Part == 0 || pass.Part == 0
+		if has && meets && other.ID != entry.ID && other.Day <= entry.Day && other.Result != planner.Lost {
+			return other, true
+		}
+	}
+	return planner.Entry{}, false
 }
 
 // NitrogenLine is a surface's balance on the mean of its works: what is left,
@@ -166,13 +188,7 @@ func NitrogenLine(state planner.NitrogenState, works []planner.WorkState) string
 			facts = on
 		}
 	}
-	text := fmt.Sprintf("%s nitrogen: %s g N/m² left", state.Surface.Name, Digits(facts.LeftGM2, planner.NitrogenGM2))
-	if facts.LeftGM2 < 0 {
-		text = fmt.Sprintf("%s nitrogen: %s g N/m² short", state.Surface.Name, Digits(-facts.LeftGM2, planner.NitrogenGM2))
-	}
-	if facts.Used.Missing > 0 {
-		text += " at most"
-	}
+	text := state.Surface.Name + " nitrogen: " + LeftText(facts)
 	if state.SlowToComeGM2 > 0.005 {
 		text += fmt.Sprintf("\n%s still to come slowly", Digits(state.SlowToComeGM2, planner.NitrogenGM2))
 	}

@@ -5,6 +5,7 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"unicode"
 
 	"swardbook/bot/briefing"
 	"swardbook/bot/reply"
@@ -158,6 +159,10 @@ func (v visit) fillPasses(passes []planner.Pass) error {
 			if err != nil {
 				return err
 			}
+			if bare := !hasN && !strings.ContainsFunc(text, unicode.IsLetter); bare && !v.countsNitrogen(passes[i].Work) {
+				return planner.Problemf(planner.Missing, "%s of what?", text).
+					WithHint("Product by volume: rate:\"%[1]s L/ha\". By mass, with its nitrogen percent: rate:\"%[1]s g/m2\" n:0. Nitrogen: rate:\"%[1]s gN/m2\".", text)
+			}
 			passes[i].Rate, passes[i].NitrogenGM2 = rate, rate.NitrogenGM2()
 		}
 		if hasSlow {
@@ -220,13 +225,24 @@ func (v visit) workOf(id planner.WorkID) (planner.Work, planner.Surface, bool) {
 	return planner.Work{}, planner.Surface{}, false
 }
 
+// countsNitrogen reports whether the work counts by nitrogen today.
+func (v visit) countsNitrogen(id planner.WorkID) bool {
+	work, _, _ := v.workOf(id)
+	return work.Settings.On(v.today).Counts == planner.ByNitrogen
+}
+
 // needsNitrogen asks for the nitrogen of a work that counts by it.
 func (v visit) needsNitrogen(entry planner.Entry) error {
 	for _, pass := range entry.Passes {
-		work, _, _ := v.workOf(pass.Work)
-		if pass.NitrogenGM2 == 0 && work.Settings.On(v.today).Counts == planner.ByNitrogen {
+		switch {
+		case pass.NitrogenGM2 > 0 || !v.countsNitrogen(pass.Work):
+			continue
+		case pass.Rate == planner.Rate{}:
 			return v.Missing("rate")
 		}
+		work, _, _ := v.workOf(pass.Work)
+		return planner.Problemf(planner.Missing, "%s counts nitrogen, and %s says none.", work.Name, pass.Rate.Words()).
+			WithHint("Say the nitrogen it gave, like rate:\"0.5 gN/m2\"; of a liquid it is its litres by its density and nitrogen percent.")
 	}
 	return nil
 }
@@ -258,7 +274,7 @@ func (v visit) meaning(plan planner.Plan, before planner.Evaluation, entry plann
 		work, surface, _ := v.workOf(pass.Work)
 		lines := passLines(surface, work, entry, pass)
 		if was, ok := stateOf(before.Works, pass.Work); ok {
-			lines = append(lines, briefing.PassNotes(was, entry.Day, plan)...)
+			lines = append(lines, briefing.PassNotes(was, entry, plan)...)
 			if note := briefing.RainNote(was.Settings, entry, plan); note != "" {
 				lines = append(lines, note)
 			}

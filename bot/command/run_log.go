@@ -89,10 +89,16 @@ func (v visit) wantedWorks() (map[planner.WorkID]string, error) {
 	return titles, nil
 }
 
+// allWorks reports whether no option keeps some works only.
+func (v visit) allWorks() bool { return !v.Values.Has("surface") && !v.Values.Has("work") }
+
 func (v visit) entryLines(entry planner.Entry, titles map[planner.WorkID]string) []string {
 	var lines []string
 	for _, pass := range entry.Passes {
 		title, ok := titles[pass.Work]
+		if _, _, kept := v.workOf(pass.Work); !kept && v.allWorks() {
+			title, ok = "a work that was dropped", true
+		}
 		if !ok {
 			continue
 		}
@@ -178,7 +184,13 @@ func (v visit) addIntervals(ctx context.Context, r *reply.Reply, id planner.Work
 	for _, interval := range intervals[max(0, len(intervals)-intervalsShown):] {
 		text = append(text, fmt.Sprintf("%s to %s: %s", briefing.DayMonth(interval.From), briefing.DayMonth(interval.To), briefing.Days(interval.Days)))
 		for _, sum := range interval.Sums {
-			text = append(text, "  "+sumText(sum, sum.Sum.Total, units))
+			switch shown := sumText(sum, sum.Sum.Total, units); {
+			case sum.Sum.AllStandIn(): // it is the other mean's sum
+			case sum.Sum.Missing > 0:
+				text = append(text, "  at least "+shown)
+			default:
+				text = append(text, "  "+shown)
+			}
 		}
 	}
 	text = append(text, fmt.Sprintf("mean of the last %d: %s days", min(len(intervals), intervalsShown), briefing.Plain(days)))
@@ -186,6 +198,9 @@ func (v visit) addIntervals(ctx context.Context, r *reply.Reply, id planner.Work
 	key := "interval." + planner.NameKey(surface.Name) + "." + planner.NameKey(work.Name) + "."
 	r.Figures = append(r.Figures, planner.Figure{Key: key + "days", Value: days, Unit: planner.Days, Basis: planner.NoBasis})
 	for i, sum := range newest.Sums {
+		if sum.Sum.AllStandIn() {
+			continue
+		}
 		text = append(text, "  "+sumText(sum, sums[i], units))
 		r.Figures = append(r.Figures, planner.Figure{Key: key + string(sum.Counts) + "." + string(sum.Basis), Value: sums[i], Unit: sum.Unit, Basis: sum.Basis})
 	}
@@ -222,6 +237,9 @@ func (d Desk) runLogAmend(ctx context.Context, req Request) (reply.Reply, error)
 	entry, err := v.book.Entry(ctx, v.site.ID, planner.EntryID(id), v.Caller.Name, v.Caller.Role >= Lead)
 	if err != nil {
 		return reply.Reply{}, err
+	}
+	if !slices.ContainsFunc(append([]Option{{Name: "when"}}, passOptions()...), func(o Option) bool { return v.Values.Has(o.Name) }) {
+		return reply.Reply{}, planner.Problemf(planner.Missing, "What is to be corrected?").WithHint("Like: /log amend entry:%d result:doubtful", id)
 	}
 	if err := v.fill(&entry); err != nil {
 		return reply.Reply{}, err

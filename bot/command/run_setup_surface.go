@@ -170,9 +170,13 @@ func (d Desk) runSurfaceAdd(ctx context.Context, req Request) (reply.Reply, erro
 	if err := v.areaAndParts(&surface); err != nil {
 		return reply.Reply{}, err
 	}
+	base, target := "0", "200"
+	if v.site.Units == planner.Fahrenheit { // the same count
+		base, target = "32f", "360f"
+	}
 	return d.kept(ctx, v.stamp(), surface, reply.Of(reply.Textf("Added %s: %s.", name, turfText(turf, v.site.Units)),
 		reply.Textf("Next:\n%s", Line("setup work add", Pair{"surface", name}, Pair{"name", "regulator"},
-			Pair{"counts", "degree-days"}, Pair{"base", "0"}, Pair{"target", "200"}))))
+			Pair{"counts", "degree-days"}, Pair{"base", base}, Pair{"target", target}))))
 }
 
 // namedSurface is a visit and the surface that the option names.

@@ -109,6 +109,11 @@ func (v visit) counting(c planner.Counting) planner.Counting {
 	return c
 }
 
+// leastBaseF is the lowest base in °F that is taken at its word on a site that
+// shows °F: a lower one is most often copied from a paper in °C (common
+// practice: bases run from 0 to 10 °C, 32 to 50 °F).
+const leastBaseF = 25
+
 // checkCounting refuses options that do not go with what is counted, rather
 // than dropping them silently.
 func (v visit) checkCounting(c planner.Counting) error {
@@ -116,6 +121,14 @@ func (v visit) checkCounting(c planner.Counting) error {
 		if c.Counts != planner.ByDegreeDays && v.Values.Has(option) {
 			return v.Invalid("counts", "%s: goes with counts:degree-days, not %s", option, c.Counts)
 		}
+	}
+	if c.Counts == planner.ByDegreeDays && c.Thresholds.Cutoff != calc.CutoffNone && v.Values.Has("upper") && c.Thresholds.UpperC <= c.Thresholds.LowerC {
+		return v.Invalid("upper", "it is not above the base, %s %s", briefing.Plain(v.site.Units.Temperature(c.Thresholds.LowerC)), v.site.Units.Degree())
+	}
+	if typed, given := v.Values.Degrees("base"); given && typed.Unit == "" && v.site.Units == planner.Fahrenheit && typed.Value < leastBaseF {
+		return planner.Problemf(planner.Missing, "Base %[1]g °F (= %.1[2]f °C), or %[1]g °C (= %.0[3]f °F)?", typed.Value,
+			planner.Fahrenheit.TemperatureC(typed.Value), planner.Fahrenheit.Temperature(typed.Value)).
+			WithHint("Write base:%gf or base:%gc.", typed.Value, typed.Value)
 	}
 	if v.Values.Has("cutoff") && c.Thresholds.Cutoff != calc.CutoffNone && c.Thresholds.UpperC == 0 && !v.Values.Has("upper") {
 		return v.Missing("upper")

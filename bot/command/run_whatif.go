@@ -128,7 +128,7 @@ func (v visit) sideBySide(chosen []planner.WorkState, base, whatIf planner.Evalu
 
 // passNotes say what stands against doing the work on the day.
 func passNotes(state planner.WorkState, day planner.Day, plan planner.Plan, rainFreeHours float64) []reply.Block {
-	notes := briefing.PassNotes(state, day, plan)
+	notes := briefing.PassNotes(state, planner.Entry{Day: day}, plan)
 	if rainFreeHours > 0 {
 		notes = append(notes, briefing.Plain(rainFreeHours)+" rain-free hours after it")
 	}

@@ -173,7 +173,11 @@ func (s saving) taken(ctx context.Context, n named, cause error) error {
 		}
 		of = " of " + parentName
 	}
-	return planner.Problemf(planner.Taken, "%s is already a %s%s", n.name, n.noun.Kind(), of).
+	kind := n.noun.Kind()
+	if kind == (planner.Closed{}).Kind() {
+		kind = "closed day"
+	}
+	return planner.Problemf(planner.Taken, "%s is already a %s%s", n.name, kind, of).
 		WithHint("Choose another name, or rename the other one first.").WithCause(cause)
 }
 
