@@ -9,7 +9,7 @@ const (
 	StatusAbstract       Status = "abstract"        // read in the paper's abstract
 	StatusSecondHand     Status = "second-hand"     // read in a copy that names the original
 	StatusComputed       Status = "computed"        // follows from a definition, computed and checked
-	StatusMemory         Status = "memory"          // from memory, not yet confirmed in the source
+	StatusMemory         Status = "from memory"     // from memory, not yet confirmed in the source
 	StatusCommonPractice Status = "common practice" // a fact of the trade, without a source
 )
 
@@ -29,6 +29,15 @@ const (
 	sourceMcMaster = "McMaster & Wilhelm 1997"
 	sourceZalom    = "Zalom et al. 1983"
 )
+
+// Origin is the source and how well it is known: "Zalom et al. 1983 (printed)";
+// a formula whose only source is common practice says that once.
+func (f Formula) Origin() string {
+	if f.Source == string(f.Status) {
+		return f.Source
+	}
+	return f.Source + " (" + string(f.Status) + ")"
+}
 
 // Catalogue returns an entry for every figure this package can compute, in the
 // order to be shown. The slice is the caller's own.

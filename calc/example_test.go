@@ -325,3 +325,11 @@ func ExampleHoursBelow() {
 	fmt.Printf("%.0f hours below freezing, %v\n", hours, err)
 	// Output: 12 hours below freezing, <nil>
 }
+
+func ExampleFormula_Origin() {
+	fmt.Println(calc.Formula{Source: "Zalom et al. 1983", Status: calc.StatusPrinted}.Origin())
+	fmt.Println(calc.Formula{Source: "common practice", Status: calc.StatusCommonPractice}.Origin())
+	// Output:
+	// Zalom et al. 1983 (printed)
+	// common practice
+}

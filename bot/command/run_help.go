@@ -138,7 +138,7 @@ func formulasPage() reply.Reply {
 
 func formulaPage(formula calc.Formula) reply.Reply {
 	return reply.Of(reply.Heading(formula.Title), reply.Text(formula.Words),
-		reply.Textf("Source: %s (%s).", formula.Source, formula.Status))
+		reply.Textf("Source: %s.", formula.Origin()))
 }
 
 func cautionsPage() reply.Reply {

@@ -274,7 +274,7 @@ func (b *book) notes(p *page) error {
 	for _, formula := range calc.Catalogue() {
 		text, _ := CellText(formula.ID)
 		if _, err := p.add(b.value(wrapped, formula.Title), b.value(wrapped, formula.Words),
-			b.value(wrapped, formula.Source+" ("+string(formula.Status)+")"), b.value(wrapped, text)); err != nil {
+			b.value(wrapped, formula.Origin()), b.value(wrapped, text)); err != nil {
 			return err
 		}
 	}
