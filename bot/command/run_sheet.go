@@ -60,11 +60,16 @@ func (d Desk) runSheetGet(ctx context.Context, req Request) (reply.Reply, error)
 	if err != nil {
 		return reply.Reply{}, err
 	}
+	seasons, err := seasonCurves(plan)
+	if err != nil {
+		return reply.Reply{}, err
+	}
 	paper := textOr(v.Values, "paper", "a4")
 	content, err := workbook.Build(workbook.Input{
 		ID: kept.ID, Plan: plan, Evaluation: evaluation, Data: data, Weeks: weeks,
 		Letter: paper == "letter" || !v.Values.Has("paper") && v.site.Units == planner.Fahrenheit,
 		Ahead:  briefing.AheadNote(plan.Outlook), Caution: strings.ReplaceAll(briefing.Cautions(evaluation.Works), "\n", " "),
+		Seasons: seasons,
 	})
 	if err != nil {
 		return reply.Reply{}, err
@@ -75,6 +80,23 @@ func (d Desk) runSheetGet(ctx context.Context, req Request) (reply.Reply, error)
 	r.Figures = evaluation.Figures()
 	r.Private = true
 	return r, nil
+}
+
+// seasonCurves are the season totals of the plan beside past years.
+func seasonCurves(plan planner.Plan) ([]planner.SeasonCurves, error) {
+	var all []planner.SeasonCurves
+	for _, total := range plan.Totals {
+		season, err := planner.CompareSeason(plan, total)
+		if err != nil {
+			return nil, err
+		}
+		curves, err := season.Curves(plan)
+		if err != nil {
+			return nil, err
+		}
+		all = append(all, curves)
+	}
+	return all, nil
 }
 
 // sheetInputs is the plan without what the record and the set-up keep anyway.

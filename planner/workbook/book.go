@@ -25,10 +25,12 @@ type Input struct {
 	Letter     bool   // paper of North America instead of A4
 	Ahead      string // where the days ahead come from, in words
 	Caution    string
+	// Seasons are the season totals beside past years; the first three are drawn.
+	Seasons []planner.SeasonCurves
 }
 
 // Build writes the workbook: the week, the days' arithmetic, works and log, the
-// two means compared, nitrogen, the issued curves, notes. Text that users typed is written as text and never as a
+// two means compared, nitrogen, the charts with their cells, the issued curves, notes. Text that users typed is written as text and never as a
 // formula. Weeks outside 1 to 8 are brought inside.
 func Build(in Input) (content []byte, err error) {
 	in.Weeks = min(max(in.Weeks, 1), 8)
@@ -42,21 +44,25 @@ func Build(in Input) (content []byte, err error) {
 		return nil, fmt.Errorf("make the styles: %w", err)
 	}
 	b.place()
+	b.placeCharts()
 	if err := b.file.SetSheetName("Sheet1", weekSheet); err != nil {
 		return nil, err
 	}
 	parts := []struct {
 		name  string
 		write func(*page) error
-	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {meansSheet, b.means}, {nitrogenSheet, b.nitrogen}, {curvesSheet, b.curves}, {notesSheet, b.notes}}
+	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {meansSheet, b.means}, {nitrogenSheet, b.nitrogen},
+		{chartsSheet, b.chartsPage}, {curvesSheet, b.curves}, {chartCellsSheet, b.chartCells}, {notesSheet, b.notes}}
 	for _, part := range parts[1:] {
 		if _, err := b.file.NewSheet(part.name); err != nil {
 			return nil, fmt.Errorf("add the sheet %s: %w", part.name, err)
 		}
 	}
 	// Now, while the sheets are empty: later these would read all of them back.
-	if err := b.file.SetSheetVisible(curvesSheet, false); err != nil {
-		return nil, fmt.Errorf("hide the curves: %w", err)
+	for _, name := range []string{curvesSheet, chartCellsSheet} {
+		if err := b.file.SetSheetVisible(name, false); err != nil {
+			return nil, fmt.Errorf("hide the sheet %s: %w", name, err)
+		}
 	}
 	b.file.SetActiveSheet(0)
 	for _, part := range parts {
@@ -76,13 +82,15 @@ func Build(in Input) (content []byte, err error) {
 
 // The sheets, in order.
 const (
-	weekSheet     = "week"
-	daysSheet     = "days"
-	worksSheet    = "works and log"
-	meansSheet    = "means compared"
-	nitrogenSheet = "nitrogen"
-	curvesSheet   = "curves"
-	notesSheet    = "notes"
+	weekSheet       = "week"
+	daysSheet       = "days"
+	worksSheet      = "works and log"
+	meansSheet      = "means compared"
+	nitrogenSheet   = "nitrogen"
+	chartsSheet     = "charts"
+	curvesSheet     = "curves"
+	chartCellsSheet = "chart cells"
+	notesSheet      = "notes"
 )
 
 // book is a workbook being written.
@@ -95,6 +103,11 @@ type book struct {
 	// what a user typed.
 	refs map[string]string
 	at   places
+	// What is drawn, from which cells, and what is not; charts counts those put.
+	drawings []drawing
+	blocks   []*chartBlock
+	without  []string
+	charts   int
 }
 
 // serial is the spreadsheet's number of a day: 1 January 1970 is 25569.
@@ -140,8 +153,7 @@ func (p *page) tall(cells ...any) (int, error) {
 }
 
 func (b *book) write(name string, fill func(*page) error) error {
-	fit := true
-	if err := b.file.SetSheetProps(name, &excelize.SheetPropsOptions{FitToPage: &fit}); err != nil {
+	if err := b.file.SetSheetProps(name, sheetProps(name)); err != nil {
 		return err
 	}
 	if err := b.file.SetSheetDimension(name, b.dimension(name)); err != nil {
@@ -161,16 +173,28 @@ func (b *book) write(name string, fill func(*page) error) error {
 	return p.Flush()
 }
 
+// sheetProps fit a sheet's columns to its pages. Those of the charts are broken
+// between charts, which stand on columns and rows of known size.
+func sheetProps(name string) *excelize.SheetPropsOptions {
+	yes, wide, high := true, chartColumnWide, chartRowHigh
+	if name == chartsSheet {
+		return &excelize.SheetPropsOptions{DefaultColWidth: &wide, DefaultRowHeight: &high, CustomHeight: &yes}
+	}
+	return &excelize.SheetPropsOptions{FitToPage: &yes}
+}
+
 // dimension is the range of a sheet's cells, which some readers trust.
 func (b *book) dimension(name string) string {
 	last := map[string][2]int{
-		weekSheet:     {b.weekColumns(), weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
-		daysSheet:     {b.at.columns, daysHead + len(b.Data.Days)},
-		worksSheet:    {len(workColumns()), b.at.worksEnd},
-		meansSheet:    {6, meansHead + len(b.bothMeans())},
-		nitrogenSheet: {9, 4 + 2*len(b.Evaluation.Nitrogen)},
-		curvesSheet:   {1 + 3*b.at.counts, 1 + b.ahead()},
-		notesSheet:    {4, len(calc.Catalogue()) + 20},
+		weekSheet:       {b.weekColumns(), weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
+		daysSheet:       {b.at.columns, daysHead + len(b.Data.Days)},
+		worksSheet:      {len(workColumns()), b.at.worksEnd},
+		meansSheet:      {6, meansHead + len(b.bothMeans())},
+		nitrogenSheet:   {9, 4 + 2*len(b.Evaluation.Nitrogen)},
+		curvesSheet:     {1 + 3*b.at.counts, 1 + b.ahead()},
+		notesSheet:      {4, len(calc.Catalogue()) + 20},
+		chartsSheet:     {1, 3 + len(b.without)},
+		chartCellsSheet: b.chartCellsEnd(),
 	}[name]
 	cell, _ := excelize.CoordinatesToCellName(max(last[0], 1), max(last[1], 1))
 	return "A1:" + cell
@@ -190,15 +214,17 @@ func (b *book) manners(p *page) error {
 	if b.Letter {
 		size = 1
 	}
-	orientation, wide := "landscape", 1
+	orientation, wide, scale := "landscape", 1, uint(100)
 	const perPage = 14 // columns that can still be read
 	switch p.name {
 	case weekSheet:
 		high = 1
 	case daysSheet:
 		wide = (b.at.columns + perPage - 1) / perPage
+	case chartsSheet:
+		orientation, scale = "portrait", chartsPercent
 	}
-	if err := b.file.SetPageLayout(p.name, &excelize.PageLayoutOptions{Size: &size, Orientation: &orientation, FitToWidth: &wide, FitToHeight: &high}); err != nil {
+	if err := b.file.SetPageLayout(p.name, &excelize.PageLayoutOptions{Size: &size, Orientation: &orientation, FitToWidth: &wide, FitToHeight: &high, AdjustTo: &scale}); err != nil {
 		return err
 	}
 	site := strings.ReplaceAll(b.Plan.Site.Name, "&", "&&")
