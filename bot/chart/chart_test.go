@@ -103,6 +103,30 @@ func TestRunning(t *testing.T) {
 	}
 }
 
+// A what-if with another target shows both targets; with the same, one.
+func TestTargetOfTheWhatIf(t *testing.T) {
+	p := plan()
+	stands, evaluation := sheetOf(t, p)
+	levels := func(edit planner.Edit) int {
+		changed, refused := planner.Apply(p, edit)
+		if refused != nil {
+			t.Fatal(refused)
+		}
+		whatIf, _ := sheetOf(t, changed)
+		picture, ok, err := chart.Running(evaluation.Works[0], morning, p.Site.Units, stands, whatIf)
+		drawn(t, picture, ok, err, "base 32") // 0 °C on a site that shows °F
+		image, err := png.Decode(bytes.NewReader(picture.PNG))
+		if err != nil {
+			t.Fatal(err)
+		}
+		return levelLines(image)
+	}
+	same, other := levels(planner.Warm{From: morning, ByC: 5}), levels(planner.SetTarget{Work: 1, Target: 150, Unit: planner.DegreeDays})
+	if other != same+1 {
+		t.Errorf("%d level lines with another target, %d with the same", other, same)
+	}
+}
+
 func TestSeason(t *testing.T) {
 	p := plan()
 	season, err := planner.CompareSeason(p, p.Totals[0])
@@ -118,6 +142,9 @@ func TestMeans(t *testing.T) {
 	means := planner.CompareMeans(p.Record, morning-100, morning-1)
 	picture, ok, err := chart.Means(p.Record, means, p.Site.Units)
 	drawn(t, picture, ok, err, "100 days", "+0.90 °F") // half of 6 less 5 °C is 0.5 °C
+	one := planner.CompareMeans(p.Record, morning-1, morning-1)
+	picture, ok, err = chart.Means(p.Record, one, p.Site.Units)
+	drawn(t, picture, ok, err, "1 days")
 	if _, ok, err := chart.Means(planner.Record{}, planner.Means{}, p.Site.Units); ok || err != nil {
 		t.Errorf("no day with both means was drawn: %v", err)
 	}

@@ -2,11 +2,14 @@ package chart
 
 import (
 	"fmt"
+	"image/color"
 	"math"
 	"strconv"
 
 	"gonum.org/v1/plot/plotter"
+	"gonum.org/v1/plot/vg"
 
+	"swardbook/bot/briefing"
 	"swardbook/bot/reply"
 	"swardbook/planner"
 )
@@ -24,6 +27,15 @@ func own(data planner.SheetData, work planner.WorkID) (count planner.SheetCount,
 	return planner.SheetCount{}, false
 }
 
+// counted is the unit of a running total as the site shows it, with its base.
+func counted(unit planner.Unit, counting planner.Counting, units planner.Units) string {
+	_, name := units.Show(0, unit)
+	if base := briefing.Base(counting, units); base != "" {
+		name += " " + base
+	}
+	return name
+}
+
 // Running draws a work's running total with its band to the target as it
 // stands, and as it would be. ok is false when the work is not started in
 // either.
@@ -34,8 +46,9 @@ func Running(state planner.WorkState, asOf planner.Day, units planner.Units, sta
 		return reply.Picture{}, false, nil
 	}
 	show := func(value float64) float64 { shown, _ := units.Show(value, state.Unit); return shown }
-	_, unit := units.Show(0, state.Unit)
-	from, to := min(before.Due.Since, after.Due.Since), asOf+7
+	unit := counted(state.Unit, state.Settings.Counting, units)
+	// From the day of the pass, on which the count stands at nothing.
+	from, to := min(before.Due.Since, after.Due.Since)-1, asOf+7
 	for _, due := range []planner.DueFacts{before.Due, after.Due} {
 		for _, date := range []planner.Passage{due.Late, due.Path} {
 			if date.Known {
@@ -45,6 +58,7 @@ func Running(state planner.WorkState, asOf planner.Day, units planner.Units, sta
 	}
 	name := state.Surface.Name + " " + state.Work.Name
 	c := newCanvas(name, unit, true)
+	c.Y.Min = 0
 	curve := func(data planner.SheetData, count planner.SheetCount) plotter.XYs {
 		return points(data.Days[0].Facts.Day, from, to, count.Running, show)
 	}
@@ -53,7 +67,13 @@ func Running(state planner.WorkState, asOf planner.Day, units planner.Units, sta
 	}
 	c.line("as it stands", curve(stands, before), dark, 2.4, nil)
 	c.line("what if", curve(whatIf, after), light, 2.4, dashes)
-	c.line("target", level(from, to, show(after.Due.Target)), black, 1.2, dots)
+	c.line("target", level(from, to, show(before.Due.Target)), black, 1.2, dots)
+	if after.Due.Target != before.Due.Target {
+		c.line("target, what if", level(from, to, show(after.Due.Target)), light, 1.4, dotDash)
+	}
+	if yesterday := asOf - 1; yesterday > from {
+		c.line("yesterday", plotter.XYs{{X: float64(yesterday), Y: c.Y.Min}, {X: float64(yesterday), Y: c.Y.Max}}, faint, 1, nil)
+	}
 	alt := fmt.Sprintf("%s: running total in %s from %s to %s. As it stands the target falls on %s, in the what-if on %s.",
 		name, unit, from.Short(), to.Short(), told(before.Due), told(after.Due))
 	picture, err = c.picture("running-total.png", alt)
@@ -84,35 +104,34 @@ func points(first, from, to planner.Day, values []float64, show func(float64) fl
 func Season(plan planner.Plan, season planner.Season) (picture reply.Picture, ok bool, err error) {
 	units, state := plan.Site.Units, season.State
 	show := func(value float64) float64 { shown, _ := units.Show(value, state.Unit); return shown }
-	_, unit := units.Show(0, state.Unit)
-	c := newCanvas(state.Total.Name, unit, true)
-	draw := func(name string, start, end planner.Day, thick float64) (float64, error) {
+	unit := counted(state.Unit, state.Settings.Counting, units)
+	c := newCanvas(state.Total.Name+": season so far", unit, true)
+	draw := func(name string, start, end planner.Day, ink color.Color, thick float64, dash []vg.Length) (float64, error) {
 		curve, err := season.Curve(plan, start, end)
 		if err != nil || len(curve) == 0 {
 			return 0, err
 		}
-		line := points(state.Start, state.Start, planner.DayMax, curve, show)
-		if thick > 1.5 {
-			c.line(name, line, dark, thick, nil)
-		} else {
-			c.line(name, line, faint, thick, nil)
-		}
+		c.line(name, points(state.Start, state.Start, planner.DayMax, curve, show), ink, thick, dash)
 		return show(curve[len(curve)-1]), nil
 	}
 	lowest, highest := math.Inf(1), math.Inf(-1)
-	for i, year := range season.Past {
-		name := ""
-		if i == 0 {
-			name = "past years"
+	for i := len(season.Past) - 1; i >= 0; i-- { // the newest on top
+		past := season.Past[i]
+		ink, thick, dash, name := color.Color(faint), 1.2, []vg.Length(nil), ""
+		switch i {
+		case 0:
+			ink, thick, dash, name = light, 1.8, dashes, strconv.Itoa(past.Start.Year())
+		case 1:
+			name = "older years"
 		}
-		last, err := draw(name, year.Start, year.End, 1.2)
+		last, err := draw(name, past.Start, past.End, ink, thick, dash)
 		if err != nil {
 			return reply.Picture{}, false, err
 		}
 		lowest, highest = min(lowest, last), max(highest, last)
 	}
 	year := strconv.Itoa(state.Start.Year())
-	last, err := draw(year, state.Start, plan.AsOf, 2.6)
+	last, err := draw(year, state.Start, plan.AsOf, dark, 2.8, nil)
 	if err != nil || plan.AsOf <= state.Start {
 		return reply.Picture{}, false, err
 	}
@@ -122,6 +141,14 @@ func Season(plan planner.Plan, season planner.Season) (picture reply.Picture, ok
 	}
 	picture, err = c.picture("season.png", alt)
 	return picture, err == nil, err
+}
+
+// thickness keeps many days apart.
+func thickness(days int) float64 {
+	if days > 120 {
+		return 0.8
+	}
+	return 1.6
 }
 
 // Means draws the high/low mean less the 24-hour mean of each day that has
@@ -141,8 +168,8 @@ func Means(record planner.Record, means planner.Means, units planner.Units) (pic
 	}
 	c := newCanvas("High/low mean less 24-hour mean", units.Degree(), true)
 	first, last := planner.Day(line[0].X), planner.Day(line[len(line)-1].X)
-	c.line("each day", line, dark, 1.4, nil)
-	c.line("on average", level(first, last, units.Difference(means.DifferenceC)), light, 2.2, dashes)
+	c.line("each day", line, middle, thickness(len(line)), nil)
+	c.line("on average", level(first, last, units.Difference(means.DifferenceC)), dark, 2.4, dashes)
 	c.line("", level(first, last, 0), black, 0.8, nil)
 	alt := fmt.Sprintf("High/low mean less 24-hour mean of %d days, %s to %s: %+.2f %s on average, the largest %+.2f on %s.", means.Days, first, last,
 		units.Difference(means.DifferenceC), units.Degree(), units.Difference(means.LargestC), means.LargestDay.Short())

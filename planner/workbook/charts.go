@@ -33,7 +33,8 @@ const (
 // The inks differ in lightness, and no two lines of a chart share a dash.
 const (
 	darkInk  = "122B4A"
-	lightInk = "C0640F"
+	warmInk  = "A04A00"
+	midInk   = "7393B7"
 	shadeInk = "BFCFE2"
 	blackInk = "202020"
 )
@@ -42,10 +43,11 @@ const (
 var (
 	unseen  = stroke{kind: area}
 	band    = stroke{kind: area, ink: shadeInk}
-	column1 = stroke{kind: bar, ink: darkInk}
+	pillar  = stroke{kind: bar, ink: midInk}
 	thick   = stroke{line, darkInk, 3, "solid"}
 	onward  = stroke{line, darkInk, 3, "sysDash"}
-	dashed  = stroke{line, lightInk, 2.5, "dash"}
+	dashed  = stroke{line, warmInk, 2.5, "dash"}
+	average = stroke{line, darkInk, 2.5, "dash"}
 	dotted  = stroke{line, blackInk, 2, "sysDot"}
 )
 
@@ -76,8 +78,8 @@ func (b *book) chartsPage(p *page) error {
 	if _, err := p.add(b.value(title, "Charts")); err != nil {
 		return err
 	}
-	lines := append([]string{"Totals, days ahead and targets move with the framed yellow cells. Seasons are as issued, and so is what is likely:",
-		"it is drawn until a day, a base or a curve is changed; then only the bot can tell it."}, b.without...)
+	lines := append([]string{"So far, days ahead and target move with the framed yellow cells. Likely and the seasons are as issued;",
+		"likely closes once a day, a base or a curve is changed: ask the bot then."}, b.without...)
 	for _, text := range lines {
 		if _, err := p.add(b.value(small, text)); err != nil {
 			return err
@@ -179,22 +181,22 @@ func (b *book) drawMeans() {
 		return fmt.Sprintf("'%s'!$%s$%d:$%s$%d", meansSheet, col, meansHead+1, col, meansHead+len(days))
 	}
 	means := planner.CompareMeans(b.Plan.Record, days[0].Day, days[len(days)-1].Day)
-	average := b.units.Difference(means.DifferenceC)
+	onAverage := b.units.Difference(means.DifferenceC)
 	block := b.block("High/low mean less 24-hour mean", b.units.Degree())
 	on := chartColumn{head: "on average", look: twoDecimals}
 	var dates, differences []float64
 	for _, facts := range days {
 		midrangeC, _ := facts.Mean(planner.Midrange)
 		dates, differences = append(dates, serial(facts.Day)), append(differences, b.units.Difference(midrangeC-facts.HourlyC))
-		on.values = append(on.values, average)
+		on.values = append(on.values, onAverage)
 		on.formulas = append(on.formulas, fmt.Sprintf("N('%s'!$B$3)", meansSheet))
 	}
 	block.columns = []chartColumn{on}
 	b.drawn(block, drawing{dates: dates, datesAt: cells("A"), curves: []curve{
-		{stroke: column1, name: "difference", nameAt: fmt.Sprintf("'%s'!$D$%d", meansSheet, meansHead), at: cells("D"), values: differences},
-		block.curve(0, dashed),
+		{stroke: pillar, name: "difference", nameAt: fmt.Sprintf("'%s'!$D$%d", meansSheet, meansHead), at: cells("D"), values: differences},
+		block.curve(0, average),
 	}, alt: fmt.Sprintf("%s, %d days from %s to %s: as issued %+.2f %s on average, the largest %+.2f on %s.", block.title, means.Days, days[0].Day, days[len(days)-1].Day,
-		average, block.axis, b.units.Difference(means.LargestC), means.LargestDay.Short())})
+		onAverage, block.axis, b.units.Difference(means.LargestC), means.LargestDay.Short())})
 }
 
 // drawWorks draws the started works that fall due soonest.
