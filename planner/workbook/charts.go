@@ -115,49 +115,60 @@ func (b *book) drawSeasons() {
 	if len(b.Seasons) == 0 {
 		b.undrawn("No season total is set up.")
 	}
+	if len(b.Seasons) > mostSeasons {
+		b.undrawn("Of %d season totals the first %d are drawn.", len(b.Seasons), mostSeasons)
+	}
 	for _, curves := range b.Seasons[:min(len(b.Seasons), mostSeasons)] {
-		state := curves.Season.State
 		if len(curves.This) == 0 {
-			b.undrawn("%s: no day of its season is over.", state.Total.Name)
+			b.undrawn("%s: no day of its season is over.", curves.Season.State.Total.Name)
 			continue
 		}
-		shown := func(values []float64) []float64 {
-			out := make([]float64, len(values))
-			for i, value := range values {
-				out[i] = b.show(value, state.Unit)
-			}
-			return out
-		}
-		block := b.block(state.Total.Name+": season so far", b.counted(state.Unit, state.Settings.Counting))
-		dates := daysFrom(state.Start, len(curves.This))
-		block.columns = []chartColumn{{head: "day", look: date, values: dates}}
-		this := shown(curves.This)
-		var drawn []curve
-		add := func(head string, values []float64, s stroke) {
-			block.columns = append(block.columns, chartColumn{head: head, look: twoDecimals, values: values})
-			drawn = append(drawn, block.curve(len(block.columns)-1, s))
-		}
-		if lowest, highest := shown(curves.Lowest), shown(curves.Highest); len(lowest) > 0 {
-			spread := make([]float64, len(lowest))
-			for i := range spread {
-				spread[i] = highest[i] - lowest[i]
-			}
-			add("lowest of past years", lowest, unseen)
-			add("past years", spread, band)
-		}
-		year := strconv.Itoa(state.Start.Year())
-		alt := fmt.Sprintf("%s, season total in %s: as issued %s stands at %.0f.", state.Total.Name, block.axis, year, this[len(this)-1])
-		if newest := shown(curves.Newest); len(newest) > 0 {
-			past := strconv.Itoa(curves.Season.Past[0].Start.Year())
-			add(past, newest, dashed)
-			alt += fmt.Sprintf(" %s stood at %.0f by the same date.", past, newest[len(newest)-1])
-		}
-		if n := len(curves.Lowest); n > 0 {
-			alt += fmt.Sprintf(" Past years stood at %.0f to %.0f.", b.show(curves.Lowest[n-1], state.Unit), b.show(curves.Highest[n-1], state.Unit))
-		}
-		add(year, this, thick)
-		b.drawn(block, drawing{dates: dates, datesAt: block.cellsAt(0), curves: drawn, alt: alt})
+		b.drawSeason(curves)
 	}
+}
+
+// drawSeason draws one season total; what it shows is as issued.
+func (b *book) drawSeason(curves planner.SeasonCurves) {
+	state := curves.Season.State
+	shown := func(values []float64) []float64 {
+		out := make([]float64, len(values))
+		for i, value := range values {
+			out[i] = b.show(value, state.Unit)
+		}
+		return out
+	}
+	block := b.block(state.Total.Name+": season so far", b.counted(state.Unit, state.Settings.Counting))
+	dates := daysFrom(state.Start, len(curves.This))
+	last := len(dates) - 1
+	var drawn []curve
+	add := func(column chartColumn) int {
+		block.columns = append(block.columns, column)
+		return len(block.columns) - 1
+	}
+	numbers := func(head string, values []float64) int {
+		return add(chartColumn{head: head, look: twoDecimals, values: values})
+	}
+	add(chartColumn{head: "day", look: date, values: dates})
+	this := shown(curves.This)
+	year := strconv.Itoa(state.Start.Year())
+	alt := fmt.Sprintf("%s, season total in %s: as issued %s stands at %.0f.", state.Total.Name, block.axis, year, this[last])
+	if lowest, highest := shown(curves.Lowest), shown(curves.Highest); len(lowest) > 0 {
+		low, high := numbers("lowest of past years", lowest), numbers("highest of past years", highest)
+		between := newColumn("past years", len(lowest))
+		for i := range lowest {
+			row := chartHead + 1 + i
+			between.set(i, block.cell(high, row)+"-"+block.cell(low, row), highest[i]-lowest[i])
+		}
+		drawn = append(drawn, block.curve(low, unseen), block.curve(add(between), band))
+		alt += fmt.Sprintf(" Past years stood at %.0f to %.0f by the same date.", lowest[last], highest[last])
+	}
+	if newest := shown(curves.Newest); len(newest) > 0 {
+		past := strconv.Itoa(curves.Season.Past[0].Start.Year())
+		drawn = append(drawn, block.curve(numbers(past, newest), dashed))
+		alt += fmt.Sprintf(" %s stood at %.0f.", past, newest[last])
+	}
+	drawn = append(drawn, block.curve(numbers(year, this), thick))
+	b.drawn(block, drawing{dates: dates, datesAt: block.cellsAt(0), curves: drawn, alt: alt})
 }
 
 // daysFrom are the spreadsheet's numbers of so many days.
@@ -208,6 +219,9 @@ func (b *book) drawWorks() {
 		if len(state.Bases) == 0 {
 			b.undrawn("%s %s is not started.", state.Surface.Name, state.Work.Name)
 		}
+	}
+	if len(b.Data.Works) > mostCharts {
+		b.undrawn("Of %d works the %d that fall due soonest are drawn.", len(b.Data.Works), mostCharts)
 	}
 	soonest := make([]int, len(b.Data.Works))
 	due := make([]planner.Day, len(soonest))
