@@ -144,7 +144,7 @@ func TestMeans(t *testing.T) {
 	drawn(t, picture, ok, err, "100 days", "+0.90 °F") // half of 6 less 5 °C is 0.5 °C
 	one := planner.CompareMeans(p.Record, morning-1, morning-1)
 	picture, ok, err = chart.Means(p.Record, one, p.Site.Units)
-	drawn(t, picture, ok, err, "1 days")
+	drawn(t, picture, ok, err, "of 1 day,")
 	if _, ok, err := chart.Means(planner.Record{}, planner.Means{}, p.Site.Units); ok || err != nil {
 		t.Errorf("no day with both means was drawn: %v", err)
 	}

@@ -171,7 +171,7 @@ func Means(record planner.Record, means planner.Means, units planner.Units) (pic
 	c.line("each day", line, middle, thickness(len(line)), nil)
 	c.line("on average", level(first, last, units.Difference(means.DifferenceC)), dark, 2.4, dashes)
 	c.line("", level(first, last, 0), black, 0.8, nil)
-	alt := fmt.Sprintf("High/low mean less 24-hour mean of %d days, %s to %s: %+.2f %s on average, the largest %+.2f on %s.", means.Days, first, last,
+	alt := fmt.Sprintf("High/low mean less 24-hour mean of %s, %s to %s: %+.2f %s on average, the largest %+.2f on %s.", briefing.Days(means.Days), first, last,
 		units.Difference(means.DifferenceC), units.Degree(), units.Difference(means.LargestC), means.LargestDay.Short())
 	picture, err = c.picture("means.png", alt)
 	return picture, err == nil, err

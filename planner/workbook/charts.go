@@ -206,7 +206,7 @@ func (b *book) drawMeans() {
 	b.drawn(block, drawing{dates: dates, datesAt: cells("A"), curves: []curve{
 		{stroke: pillar, name: "difference", nameAt: fmt.Sprintf("'%s'!$D$%d", meansSheet, meansHead), at: cells("D"), values: differences},
 		block.curve(0, average),
-	}, alt: fmt.Sprintf("%s, %d days from %s to %s: as issued %+.2f %s on average, the largest %+.2f on %s.", block.title, means.Days, days[0].Day, days[len(days)-1].Day,
+	}, alt: fmt.Sprintf("%s, days with both from %s to %s: %d; as issued %+.2f %s on average, the largest %+.2f on %s.", block.title, days[0].Day, days[len(days)-1].Day, means.Days,
 		onAverage, block.axis, b.units.Difference(means.LargestC), means.LargestDay.Short())})
 }
 
@@ -241,61 +241,86 @@ func (b *book) drawWorks() {
 // are formulas over the sheet's inputs: a changed input moves the lines.
 func (b *book) drawWork(w int) {
 	work := b.Data.Works[w]
-	c := ownCount(work)
-	count, state := work.Counts[c], work.State
+	count, state := work.Counts[ownCount(work)], work.State
 	first, last := b.workDays(count)
-	rows := int(last-first) + 1
-	if rows < 2 {
+	if last <= first {
 		b.undrawn("%s %s: no day to draw.", state.Surface.Name, state.Work.Name)
 		return
 	}
 	block := b.block(state.Surface.Name+" "+state.Work.Name, b.counted(state.Unit, state.Settings.Counting))
-	from := func(col string) string {
-		return fmt.Sprintf("'%s'!$%s$%d", worksSheet, col, b.at.works[w].counts[c].row)
-	}
+	from := func(col string) string { return b.workCell(w, col) }
 	// Once the issued curves no longer tell the dates, the band closes.
 	ask := fmt.Sprintf("AND(ISTEXT(%[1]s),%[1]s=%[2]q)", from("N"), askTheBot)
 	shift := from("K") + "-" + from("T")
 	block.beside = []excelize.Cell{b.live(small, ask, false), b.live(twoDecimals, shift, 0.0)}
-	askAt, shiftAt := "$"+column(block.column+1)+"$2", "$"+column(block.column+2)+"$2"
+	block.columns = b.totals(block, w, first, int(last-first)+1)
+	drawn := []curve{block.curve(1, thick), block.curve(2, onward), block.curve(3, dotted)}
+	if count.Due.SpreadKnown && state.Settings.Counts != planner.ByDays {
+		block.columns = append(block.columns, b.likely(block, w, first)...)
+		drawn = append([]curve{block.curve(4, unseen), block.curve(5, band)}, drawn...)
+	}
+	b.drawn(block, drawing{dates: block.columns[0].values, datesAt: block.cellsAt(0), curves: drawn, alt: b.workWords(block, count, state)})
+}
 
-	dates := chartColumn{head: "day", look: date, values: daysFrom(first, rows)}
+// workCell is a cell of the work's own count on the sheet works and log.
+func (b *book) workCell(w int, col string) string {
+	return fmt.Sprintf("'%s'!$%s$%d", worksSheet, col, b.at.works[w].counts[ownCount(b.Data.Works[w])].row)
+}
+
+// totals are the columns of a work's days, of its total so far and on the days
+// ahead, and of its target. The two totals join on yesterday.
+func (b *book) totals(block *chartBlock, w int, first planner.Day, rows int) []chartColumn {
+	work := b.Data.Works[w]
+	count, unit := work.Counts[ownCount(work)], work.State.Unit
 	soFar, ahead, target := newColumn("so far", rows), newColumn("days ahead", rows), newColumn("target", rows)
-	low, spread := newColumn("late", rows), newColumn("likely", rows)
 	for i := range rows {
 		day, row := first+planner.Day(i), chartHead+1+i
-		running := b.show(count.Running[day-b.Data.Days[0].Facts.Day], state.Unit)
+		running := b.show(count.Running[day-b.Data.Days[0].Facts.Day], unit)
 		total := fmt.Sprintf(`IF(%[1]s<=%[2]s,0,SUMIFS(%[3]s,d_date,">"&%[2]s,d_date,"<="&%[1]s))`, block.cell(0, row), workName(work, "last"), countName(work, count, "units"))
-		own := block.cell(2, row)
 		switch yesterday := b.Plan.AsOf - 1; {
 		case day < yesterday:
 			soFar.set(i, total, running)
-			own = block.cell(1, row)
-		case day == yesterday: // where the two lines join
+		case day == yesterday:
 			soFar.set(i, total, running)
 			ahead.set(i, block.cell(1, row), running)
 		default:
 			ahead.set(i, total, running)
 		}
-		target.set(i, from("L"), b.show(count.Due.Target, state.Unit))
-		low.set(i, own, running)
-		spread.set(i, "", 0)
-		if at := int(day - b.Plan.AsOf); at >= 0 && at < len(count.Curves[2]) {
-			early, late := b.show(count.Curves[0][at], state.Unit), b.show(count.Curves[2][at], state.Unit)
-			issued := func(which int) string {
-				return fmt.Sprintf("'%s'!%s%d", curvesSheet, column(b.at.works[w].counts[c].curve+which), 2+at)
-			}
-			low.set(i, fmt.Sprintf("IF(%s,%s,%s+%s)", askAt, own, issued(2), shiftAt), late)
-			spread.set(i, fmt.Sprintf("IF(%s,0,%s-%s)", askAt, issued(0), issued(2)), early-late)
+		target.set(i, b.workCell(w, "L"), b.show(count.Due.Target, unit))
+	}
+	return []chartColumn{{head: "day", look: date, values: daysFrom(first, rows)}, soFar, ahead, target}
+}
+
+// likely are the columns of a work's band: its lower edge, and its width. Before
+// the morning it lies closed on the total, from then on it stands on the issued
+// curves, moved by what was counted since.
+func (b *book) likely(block *chartBlock, w int, first planner.Day) []chartColumn {
+	work := b.Data.Works[w]
+	c := ownCount(work)
+	count, unit, rows := work.Counts[c], work.State.Unit, len(block.columns[0].values)
+	askAt, shiftAt := "$"+column(block.column+1)+"$2", "$"+column(block.column+2)+"$2"
+	low, width := newColumn("late", rows), newColumn("likely", rows)
+	for i := range rows {
+		day, row := first+planner.Day(i), chartHead+1+i
+		total := 2
+		if day < b.Plan.AsOf {
+			total = 1
 		}
+		own := block.cell(total, row)
+		low.set(i, own, block.columns[total].values[i])
+		width.set(i, "", 0)
+		at := int(day - b.Plan.AsOf)
+		if at < 0 || at >= len(count.Curves[2]) {
+			continue
+		}
+		early, late := b.show(count.Curves[0][at], unit), b.show(count.Curves[2][at], unit)
+		issued := func(which int) string {
+			return fmt.Sprintf("'%s'!%s%d", curvesSheet, column(b.at.works[w].counts[c].curve+which), 2+at)
+		}
+		low.set(i, fmt.Sprintf("IF(%s,%s,%s+%s)", askAt, own, issued(2), shiftAt), late)
+		width.set(i, fmt.Sprintf("IF(%s,0,%s-%s)", askAt, issued(0), issued(2)), early-late)
 	}
-	block.columns = []chartColumn{dates, soFar, ahead, target}
-	drawn := []curve{block.curve(1, thick), block.curve(2, onward), block.curve(3, dotted)}
-	if count.Due.SpreadKnown && state.Settings.Counts != planner.ByDays {
-		block.columns = append(block.columns, low, spread)
-		drawn = append([]curve{block.curve(4, unseen), block.curve(5, band)}, drawn...)
-	}
-	b.drawn(block, drawing{dates: dates.values, datesAt: block.cellsAt(0), curves: drawn, alt: b.workWords(block, count, state)})
+	return []chartColumn{low, width}
 }
 
 // newColumn is a column of empty cells.
