@@ -71,3 +71,31 @@ func TestSeasonCurves(t *testing.T) {
 		t.Error("a total that counts nothing has curves")
 	}
 }
+
+// A running total is always named with its base, in the site's unit: 10 °C is
+// 50 °F, 12.78 °C is 55.00 °F; what does not stand on degrees has none.
+func TestCounted(t *testing.T) {
+	over := func(baseC float64) planner.Counting {
+		c := planner.Counting{Counts: planner.ByDegreeDays}
+		c.Thresholds.LowerC = baseC
+		return c
+	}
+	for _, row := range []struct {
+		units    planner.Units
+		unit     planner.Unit
+		counting planner.Counting
+		want     string
+	}{
+		{planner.Celsius, planner.DegreeDays, over(10), "°C-days base 10"},
+		{planner.Fahrenheit, planner.DegreeDays, over(10), "°F-days base 50"},
+		{planner.Fahrenheit, planner.DegreeDays, over(12.78), "°F-days base 55"},
+		{planner.Celsius, planner.DegreeDays, over(-1.5), "°C-days base -1.5"},
+		{planner.Celsius, planner.DegreeDays, over(0), "°C-days base 0"},
+		{planner.Fahrenheit, planner.GrowthDays, planner.Counting{Counts: planner.ByGrowthDays}, "growth days"},
+		{planner.Celsius, planner.NitrogenGM2, planner.Counting{Counts: planner.ByNitrogen}, "g N/m²"},
+	} {
+		if got := row.units.Counted(row.unit, row.counting); got != row.want {
+			t.Errorf("%q, want %q", got, row.want)
+		}
+	}
+}

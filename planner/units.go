@@ -73,6 +73,16 @@ func (u Units) Show(value float64, unit Unit) (shown float64, name string) {
 	return value, string(unit)
 }
 
+// Counted is the name of a running total's unit as the site shows it, of degree
+// days with their base: "°C-days base 10".
+func (u Units) Counted(unit Unit, counting Counting) string {
+	_, name := u.Show(0, unit)
+	if counting.Counts == ByDegreeDays {
+		name += " base " + number(u.Temperature(counting.Thresholds.LowerC))
+	}
+	return name
+}
+
 // number writes a value with as few digits as it needs, at most two decimals;
 // what rounds to nothing is "0", without a sign.
 func number(value float64) string {

@@ -9,7 +9,6 @@ import (
 	"gonum.org/v1/plot/plotter"
 	"gonum.org/v1/plot/vg"
 
-	"swardbook/bot/briefing"
 	"swardbook/bot/reply"
 	"swardbook/planner"
 )
@@ -27,15 +26,6 @@ func own(data planner.SheetData, work planner.WorkID) (count planner.SheetCount,
 	return planner.SheetCount{}, false
 }
 
-// counted is the unit of a running total as the site shows it, with its base.
-func counted(unit planner.Unit, counting planner.Counting, units planner.Units) string {
-	_, name := units.Show(0, unit)
-	if base := briefing.Base(counting, units); base != "" {
-		name += " " + base
-	}
-	return name
-}
-
 // Running draws a work's running total with its band to the target as it
 // stands, and as it would be. ok is false when the work is not started in
 // either.
@@ -46,7 +36,7 @@ func Running(state planner.WorkState, asOf planner.Day, units planner.Units, sta
 		return reply.Picture{}, false, nil
 	}
 	show := func(value float64) float64 { shown, _ := units.Show(value, state.Unit); return shown }
-	unit := counted(state.Unit, state.Settings.Counting, units)
+	unit := units.Counted(state.Unit, state.Settings.Counting)
 	// From the day of the pass, on which the count stands at nothing.
 	from, to := min(before.Due.Since, after.Due.Since)-1, asOf+7
 	for _, due := range []planner.DueFacts{before.Due, after.Due} {
@@ -104,7 +94,7 @@ func points(first, from, to planner.Day, values []float64, show func(float64) fl
 func Season(plan planner.Plan, season planner.Season) (picture reply.Picture, ok bool, err error) {
 	units, state := plan.Site.Units, season.State
 	show := func(value float64) float64 { shown, _ := units.Show(value, state.Unit); return shown }
-	unit := counted(state.Unit, state.Settings.Counting, units)
+	unit := units.Counted(state.Unit, state.Settings.Counting)
 	c := newCanvas(state.Total.Name+": season so far", unit, true)
 	draw := func(name string, start, end planner.Day, ink color.Color, thick float64, dash []vg.Length) (float64, error) {
 		curve, err := season.Curve(plan, start, end)
@@ -171,7 +161,11 @@ func Means(record planner.Record, means planner.Means, units planner.Units) (pic
 	c.line("each day", line, middle, thickness(len(line)), nil)
 	c.line("on average", level(first, last, units.Difference(means.DifferenceC)), dark, 2.4, dashes)
 	c.line("", level(first, last, 0), black, 0.8, nil)
-	alt := fmt.Sprintf("High/low mean less 24-hour mean of %s, %s to %s: %+.2f %s on average, the largest %+.2f on %s.", briefing.Days(means.Days), first, last,
+	days := fmt.Sprintf("%d days", means.Days)
+	if means.Days == 1 {
+		days = "1 day"
+	}
+	alt := fmt.Sprintf("High/low mean less 24-hour mean of %s, %s to %s: %+.2f %s on average, the largest %+.2f on %s.", days, first, last,
 		units.Difference(means.DifferenceC), units.Degree(), units.Difference(means.LargestC), means.LargestDay.Short())
 	picture, err = c.picture("means.png", alt)
 	return picture, err == nil, err

@@ -101,15 +101,6 @@ func (b *book) chartsPage(p *page) error {
 	return nil
 }
 
-// counted is the unit of a running total as the site shows it, with its base.
-func (b *book) counted(unit planner.Unit, counting planner.Counting) string {
-	_, name := b.units.Show(0, unit)
-	if counting.Counts == planner.ByDegreeDays {
-		name += " base " + strconv.FormatFloat(math.Round(100*b.units.Temperature(counting.Thresholds.LowerC))/100+0, 'f', -1, 64)
-	}
-	return name
-}
-
 // drawSeasons draws the season totals so far beside past years.
 func (b *book) drawSeasons() {
 	if len(b.Seasons) == 0 {
@@ -137,7 +128,7 @@ func (b *book) drawSeason(curves planner.SeasonCurves) {
 		}
 		return out
 	}
-	block := b.block(state.Total.Name+": season so far", b.counted(state.Unit, state.Settings.Counting))
+	block := b.block(state.Total.Name+": season so far", b.units.Counted(state.Unit, state.Settings.Counting))
 	dates := daysFrom(state.Start, len(curves.This))
 	last := len(dates) - 1
 	var drawn []curve
@@ -247,7 +238,7 @@ func (b *book) drawWork(w int) {
 		b.undrawn("%s %s: no day to draw.", state.Surface.Name, state.Work.Name)
 		return
 	}
-	block := b.block(state.Surface.Name+" "+state.Work.Name, b.counted(state.Unit, state.Settings.Counting))
+	block := b.block(state.Surface.Name+" "+state.Work.Name, b.units.Counted(state.Unit, state.Settings.Counting))
 	from := func(col string) string { return b.workCell(w, col) }
 	// Once the issued curves no longer tell the dates, the band closes.
 	ask := fmt.Sprintf("AND(ISTEXT(%[1]s),%[1]s=%[2]q)", from("N"), askTheBot)
