@@ -86,7 +86,7 @@ func (b *Book) Plan(ctx context.Context, site Site, asOf, today Day) (Plan, erro
 	return Plan{
 		Site: site, AsOf: asOf, Record: record,
 		Surfaces: setup.SurfacesOf(site.ID), Works: setup.WorksOf(site.ID), Totals: setup.TotalsOf(site.ID),
-		Closed:  setup.ClosedOf(site.ID),
+		Dropped: setup.DroppedOf(site.ID), Closed: setup.ClosedOf(site.ID),
 		Log:     filter(log, func(e Entry) bool { return e.Day < asOf || e.Day == asOf && asOf == today }),
 		Outlook: b.ahead.Outlook(record, hand, asOf), Hand: hand, Rain: rain,
 	}, nil

@@ -86,18 +86,19 @@ func (p Plan) ClosedOn(work WorkID, day Day) (Closed, bool) {
 // ClosedNote says that a due date is closed, and the open days either side.
 type ClosedNote struct {
 	Why    string
-	Before Passage // the last open day before, not earlier than the plan's morning
+	Before Passage // the last open day before on which it may be done already
 	After  Passage // the first open day after
 }
 
-// closedNote looks for open days either side of a date, a year at most.
-func (p Plan) closedNote(work WorkID, date Day) *ClosedNote {
+// closedNote looks for open days either side of a date, from the earliest day on
+// which the work may be done to a year after.
+func (p Plan) closedNote(work WorkID, date, earliest Day) *ClosedNote {
 	closed, ok := p.ClosedOn(work, date)
 	if !ok {
 		return nil
 	}
 	note := &ClosedNote{Why: closed.Name}
-	for day := date - 1; day >= p.AsOf; day-- {
+	for day := date - 1; day >= earliest; day-- {
 		if _, closed := p.ClosedOn(work, day); !closed {
 			note.Before = Passage{day, true}
 			break

@@ -72,6 +72,9 @@ type DueFacts struct {
 	// path, and last its last day: a work whose station is dead is overdue all
 	// the same.
 	filled, last float64
+	// allowed is the first day that the least days between two passes allow; 0
+	// without them.
+	allowed Day
 }
 
 // Date is the date that is told: the middle one, or the later day to which the
@@ -124,18 +127,23 @@ func (p Plan) evaluateWork(work Work) (WorkState, error) {
 		state.Status, state.Resumes = Resting, state.Settings.Season.next(p.AsOf)
 		return state, nil
 	}
-	done := p.passesOf(work.ID, state.Settings)
-	last, behind, started := p.countStart(state, done)
+	done := p.passesOf(work)
+	passes, started := roundsOf(surface, done)
+	if state.Settings.Counts == ByNitrogen {
+		if passes, started = p.feedRounds(surface, passes); !started {
+			return state, nil
+		}
+	}
 	if !started {
 		return state, nil
 	}
-	state.LastDone, state.Behind = last, behind
+	state.LastDone, state.Behind = passes.Since, passes.Behind
 	state.Rain = p.rainOn(state)
 	for _, basis := range measure.Bases() {
-		state.Bases = append(state.Bases, p.dueOn(state, measure, basis, last))
+		state.Bases = append(state.Bases, p.dueOn(state, measure, basis, passes))
 	}
 	if n := len(done); n > 0 && done[n-1].Result == Doubtful && state.Settings.Counts != ByNitrogen {
-		if before, _, ok := wholeSince(surface, done[:n-1]); ok {
+		if before, ok := roundsOf(surface, done[:n-1]); ok {
 			facts := p.dueOn(state, measure, state.Own, before)
 			state.Doubted = &facts
 		}
@@ -145,9 +153,19 @@ func (p Plan) evaluateWork(work Work) (WorkState, error) {
 	return state, nil
 }
 
-// dueOn counts the work on a basis from the day after the last pass and says
-// when it falls due.
-func (p Plan) dueOn(state WorkState, measure Measure, basis Basis, last Day) DueFacts {
+// feedRounds is where a work stands that counts by nitrogen: since the newest
+// feed of the surface, by whichever work; the least days run from its own.
+func (p Plan) feedRounds(surface Surface, own rounds) (rounds, bool) {
+	feeds := p.feeds(surface, p.balanceSince(surface))
+	if len(feeds) == 0 {
+		return rounds{}, false
+	}
+	return rounds{Since: feeds[len(feeds)-1].Day, Last: own.Last}, true
+}
+
+// dueOn counts the work on a basis from the day after its passes and says when
+// it falls due.
+func (p Plan) dueOn(state WorkState, measure Measure, basis Basis, passes rounds) DueFacts {
 	c := counter{plan: p, measure: measure, basis: basis}
 	target := state.Settings.Target
 	if state.Settings.Counts == ByNitrogen {
@@ -155,10 +173,10 @@ func (p Plan) dueOn(state WorkState, measure Measure, basis Basis, last Day) Due
 		c.less = releasedOn(feeds)
 		target = c.leftAfterLast(feeds) - state.Settings.Target
 	}
-	facts := c.due(last+1, target)
-	if gap := state.Settings.Limits.LeastDays; gap > 0 && facts.Middle.Known {
-		if allowed := last + Day(gap); allowed > facts.Middle.Day {
-			facts.Held = Passage{allowed, true}
+	facts := c.due(passes.Since+1, target)
+	if gap := state.Settings.Limits.LeastDays; gap > 0 && passes.Last > DayMin && facts.Middle.Known {
+		if facts.allowed = passes.Last + Day(gap); facts.allowed > facts.Middle.Day {
+			facts.Held = Passage{facts.allowed, true}
 		}
 	}
 	return facts
@@ -176,7 +194,7 @@ func (p Plan) flagDate(state *WorkState) {
 	}
 	told := Passage{max(date.Day, p.AsOf), true}
 	state.RestsThen = !state.Settings.Season.On(told.Day)
-	state.Closed = p.closedNote(state.Work.ID, told.Day)
+	state.Closed = p.closedNote(state.Work.ID, told.Day, max(p.AsOf, facts.allowed))
 	if state.Status == Overdue {
 		yesterday := p
 		yesterday.AsOf--
@@ -200,19 +218,6 @@ func ownBasis(measure Measure, chosen Basis, record Record) Basis {
 	default:
 		return Midrange
 	}
-}
-
-// countStart is the day of the pass that the count stands on, and the parts
-// that are behind.
-func (p Plan) countStart(state WorkState, done []donePass) (last Day, behind []string, ok bool) {
-	if state.Settings.Counts != ByNitrogen {
-		return wholeSince(state.Surface, done)
-	}
-	feeds := p.feeds(state.Surface, p.balanceSince(state.Surface))
-	if len(feeds) == 0 {
-		return 0, nil, false
-	}
-	return feeds[len(feeds)-1].Day, nil, true
 }
 
 // due counts from the day since and finds the dates.

@@ -20,9 +20,10 @@ type IntervalSum struct {
 // PastIntervals returns how the work's intervals really ran, oldest first: the
 // days from one pass to the next, and what they came to in degree days (by the
 // work's own method, else from the mean above 0 °C) and in growth days of its
-// surface, on both means. Lost passes are left out; a surface done in parts is
-// done once all of them are, as of the first; a count starts the day after a
-// pass and runs through the day of the next.
+// surface, on both means. Lost passes are left out, and so are the times over
+// which the work rested; a surface done in parts is done once all of them are, as
+// of the first; a count starts the day after a pass, or after it was watered in,
+// and runs through the day of the next; of today nothing is known yet.
 func PastIntervals(plan Plan, work Work) ([]Interval, error) {
 	surface, ok := plan.Surface(work.Surface)
 	if !ok {
@@ -42,13 +43,19 @@ func PastIntervals(plan Plan, work Work) ([]Interval, error) {
 	}
 	kinds := []Counts{ByDegreeDays, ByGrowthDays}
 	var intervals []Interval
-	days := wholeDays(plan.Log, work.ID, surface)
-	for i := 1; i < len(days); i++ {
-		from, to := days[i-1], days[i]
-		interval := Interval{From: from, To: to, Days: int(to - from)}
+	done := wholePasses(plan.Log, work, surface)
+	for i := 1; i < len(done); i++ {
+		from, to := done[i-1], done[i]
+		if work.onSince(to.done) > from.done {
+			continue
+		}
+		interval := Interval{From: from.done, To: to.done, Days: int(to.done - from.done)}
 		for j, measure := range measures {
 			for _, basis := range measure.Bases() {
-				sum := counter{plan: plan, measure: measure, basis: basis}.past(from+1, to+1).sum
+				sum := counter{plan: plan, measure: measure, basis: basis}.past(from.counts+1, to.done+1).sum
+				if to.done >= plan.AsOf {
+					sum.Days, sum.Missing = sum.Days+1, sum.Missing+1 // the day is not over
+				}
 				interval.Sums = append(interval.Sums, IntervalSum{kinds[j], measure.Unit(), basis, sum})
 			}
 		}
@@ -57,21 +64,28 @@ func PastIntervals(plan Plan, work Work) ([]Interval, error) {
 	return intervals, nil
 }
 
-// wholeDays are the days as of which the whole surface was done, in order, each
-// once.
-func wholeDays(log []Entry, work WorkID, surface Surface) (days []Day) {
-	var done []donePass
+// wholePass is the day on which the whole surface was done, as of the first of
+// its parts, and the day after which it counts.
+type wholePass struct{ done, counts Day }
+
+// wholePasses are the rounds that were ended, in order, one a day.
+func wholePasses(log []Entry, work Work, surface Surface) (whole []wholePass) {
+	var done, counts []donePass
 	for _, entry := range log {
-		pass, has := entry.Of(work)
+		pass, has := entry.Of(work.ID)
 		if !has || entry.Result == Lost {
 			continue
 		}
 		done = append(done, donePass{entry.Day, pass.Part, entry.Result})
-		if since, _, ok := wholeSince(surface, done); ok && (len(days) == 0 || since > days[len(days)-1]) {
-			days = append(days, since)
+		counts = append(counts, donePass{countsFrom(work.Settings.On(entry.Day), entry), pass.Part, entry.Result})
+		onDay, ok := roundsOf(surface, done)
+		if !ok || len(onDay.Behind) > 0 || len(whole) > 0 && onDay.Since <= whole[len(whole)-1].done {
+			continue
 		}
+		from, _ := roundsOf(surface, counts)
+		whole = append(whole, wholePass{onDay.Since, from.Since})
 	}
-	return days
+	return whole
 }
 
 // MeanInterval is the mean of the newest intervals, at most the number asked

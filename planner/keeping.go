@@ -6,13 +6,14 @@ import (
 	"time"
 )
 
-// Setup is everything a team has set up that is not archived, each list in the
-// order in which it was added.
+// Setup is everything a team has set up that is not archived (but for Dropped),
+// each list in the order in which it was added.
 type Setup struct {
 	Sites    []Site
 	Stations []Station
 	Surfaces []Surface
 	Works    []Work
+	Dropped  []Work // works that were dropped, of surfaces that were not
 	Totals   []Total
 	Closed   []Closed
 	Posts    []Post

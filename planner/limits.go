@@ -65,8 +65,11 @@ type Origin struct {
 // that is done in parts, what its most treated part has had.
 type SeasonUse struct {
 	Since Day
-	Times int     // passes since then, lost ones left out
-	Given float64 // the sum of their rates of one kind, g N/m², g/m² or mL/m²
+	Times int // passes since then, lost ones left out
+	// Given is the sum of what they gave: nitrogen (g N/m²) of a work that counts
+	// by it, else of the product, by the kind of the newest rate (g/m² or mL/m²;
+	// g N/m² where that is all that was said).
+	Given float64
 }
 
 // seasonUse counts the passes of the work since the season's start: its own,
@@ -81,22 +84,42 @@ func (p Plan) seasonUse(work Work, settings WorkSettings) SeasonUse {
 	if len(parts) == 0 {
 		parts = []Part{{}}
 	}
+	amount := p.amountOf(work, settings)
 	for _, part := range parts {
-		times, given := p.usedOn(part, work, use.Since)
+		times, given := p.usedOn(part, work, use.Since, amount)
 		use.Times, use.Given = max(use.Times, times), max(use.Given, given)
 	}
 	return use
 }
 
+// amountOf says how much of what a season's most is of a pass gave.
+func (p Plan) amountOf(work Work, settings WorkSettings) func(Pass) float64 {
+	if settings.Counts == ByNitrogen {
+		return func(pass Pass) float64 { return pass.NitrogenGM2 }
+	}
+	var kind RateKind
+	for _, entry := range p.Log {
+		if pass, ok := entry.Of(work.ID); ok && pass.Rate.Value > 0 && entry.Result != Lost {
+			kind = pass.Rate.Kind
+		}
+	}
+	return func(pass Pass) float64 {
+		if pass.Rate.Kind != kind {
+			return 0
+		}
+		return pass.Rate.Value
+	}
+}
+
 // usedOn counts what one part of the surface has had since the day.
-func (p Plan) usedOn(part Part, work Work, since Day) (times int, given float64) {
+func (p Plan) usedOn(part Part, work Work, since Day, amount func(Pass) float64) (times int, given float64) {
 	for _, entry := range p.Log {
 		pass, ok := entry.Of(work.ID)
 		if !ok || entry.Day < since || entry.Result == Lost || pass.Part != 0 && pass.Part != part.ID {
 			continue
 		}
 		times++
-		given += pass.Rate.Value
+		given += amount(pass)
 	}
 	return times, given
 }

@@ -1,5 +1,7 @@
 package planner
 
+import "slices"
+
 // Feed is nitrogen given to a surface on a day, by its share of the area.
 type Feed struct {
 	Day      Day
@@ -19,11 +21,12 @@ func (f Feed) released(day Day) float64 {
 }
 
 // feeds lists the nitrogen given to the surface by any of its works, by day,
-// from the day since on. Lost passes are left out.
+// from the day since on, those of works dropped since too. Lost passes are left
+// out.
 func (p Plan) feeds(surface Surface, since Day) []Feed {
 	onSurface := map[WorkID]bool{}
-	for _, work := range p.WorksOn(surface.ID) {
-		onSurface[work.ID] = true
+	for _, work := range slices.Concat(p.Works, p.Dropped) {
+		onSurface[work.ID] = work.Surface == surface.ID
 	}
 	var feeds []Feed
 	for _, entry := range p.Log {
@@ -34,7 +37,7 @@ func (p Plan) feeds(surface Surface, since Day) []Feed {
 			if !onSurface[pass.Work] || pass.NitrogenGM2 <= 0 {
 				continue
 			}
-			given := pass.NitrogenGM2 * surface.ShareOf(pass.Part)
+			given := pass.NitrogenGM2 * pass.shareOf(surface)
 			feeds = append(feeds, Feed{entry.Day, given * (1 - pass.SlowShare), given * pass.SlowShare, pass.SlowWeeks})
 		}
 	}
@@ -128,13 +131,13 @@ func (p Plan) nitrogen(surface Surface) (state NitrogenState, ok bool) {
 	return state, true
 }
 
-// balanceSince is the day from which the surface's feeds count: the start of
-// the season of a work that counts by nitrogen and starts empty, else always.
+// balanceSince is the day from which the surface's feeds count: that on which a
+// work that counts by nitrogen and starts empty was last on again, else always.
 func (p Plan) balanceSince(surface Surface) Day {
 	since := DayMin
 	for _, work := range p.WorksOn(surface.ID) {
 		if settings := work.Settings.On(p.AsOf); settings.Counts == ByNitrogen && settings.Season.StartsEmpty {
-			since = max(since, settings.Season.Start(p.AsOf))
+			since = max(since, work.onSince(p.AsOf))
 		}
 	}
 	return since

@@ -240,6 +240,7 @@ type Pass struct {
 	NitrogenGM2 float64 `json:"nitrogen_g_m2,omitempty"`
 	Rate        Rate    `json:"rate,omitzero"`        // as it was said
 	Part        PartID  `json:"part,omitempty"`       // the part done; 0 for the whole surface
+	Share       float64 `json:"share,omitempty"`      // of the part in the area when it was logged; 0 when not said
 	SlowShare   float64 `json:"slow_share,omitempty"` // of the nitrogen, 0 to 1
 	SlowWeeks   float64 `json:"slow_weeks,omitempty"` // over which the slow share comes
 }

@@ -33,6 +33,15 @@ func (s Surface) ShareOf(id PartID) float64 {
 	return 1
 }
 
+// shareOf is the share of the surface's area that the pass went over: as it was
+// when it was logged, for the lead may cut the parts anew.
+func (p Pass) shareOf(surface Surface) float64 {
+	if p.Share > 0 {
+		return p.Share
+	}
+	return surface.ShareOf(p.Part)
+}
+
 // PartName is the part's name; "" for the whole surface.
 func (s Surface) PartName(id PartID) string {
 	for _, part := range s.Parts {
@@ -95,30 +104,60 @@ type donePass struct {
 }
 
 // passesOf lists the passes of the work that count: not lost, and, but for a
-// nitrogen balance, of this season only.
-func (p Plan) passesOf(work WorkID, settings WorkSettings) []donePass {
-	since := settings.Season.Start(p.AsOf)
+// nitrogen balance, since it was last on.
+func (p Plan) passesOf(work Work) []donePass {
+	settings := work.Settings.On(p.AsOf)
+	since := work.onSince(p.AsOf)
 	var done []donePass
 	for _, entry := range p.Log {
-		pass, ok := entry.Of(work)
+		pass, ok := entry.Of(work.ID)
 		if !ok || entry.Result == Lost || entry.Day < since {
 			continue
 		}
-		day := entry.Day
-		if settings.WateredIn && entry.Watered > day {
-			day = entry.Watered
-		}
-		done = append(done, donePass{day, pass.Part, entry.Result})
+		done = append(done, donePass{countsFrom(settings, entry), pass.Part, entry.Result})
 	}
 	return done
 }
 
-// wholeSince returns the day from which the whole surface counts: the earliest
-// of its parts' newest passes. Parts never done are left out. behind names the
-// parts that are still to be done of a round that others began: a round ends
-// with the last part, or with a pass over the whole. Passes of parts that were
-// dropped do not count.
-func wholeSince(surface Surface, done []donePass) (since Day, behind []string, ok bool) {
+// countsFrom is the day after which the entry's passes count: that on which it
+// was done, or watered in where the work waits for that.
+func countsFrom(settings WorkSettings, entry Entry) Day {
+	if settings.WateredIn {
+		return max(entry.Day, entry.Watered)
+	}
+	return entry.Day
+}
+
+// onSince is the first day since which the work is on without a rest: the start
+// of its season, or the day on which the lead ended its rest.
+func (w Work) onSince(asOf Day) Day {
+	since := w.Settings.On(asOf).Season.Start(asOf)
+	for i := 1; i < len(w.Settings); i++ {
+		row := w.Settings[i]
+		replaced := i+1 < len(w.Settings) && w.Settings[i+1].Day == row.Day
+		if row.Day <= asOf && !replaced && !row.Value.Season.Resting && w.Settings.On(row.Day-1).Season.Resting {
+			since = max(since, row.Day)
+		}
+	}
+	return since
+}
+
+// rounds is how far the passes of a work have gone over a surface.
+type rounds struct {
+	// Since is the day from which the whole surface counts: the earliest of its
+	// parts' newest passes, parts never done left out.
+	Since Day
+	// Last is the newest pass over any of what is to be done next: the parts
+	// behind, or else the whole.
+	Last Day
+	// Behind names the parts that are still to be done of a round that others
+	// began: a round ends with the last part, or with a pass over the whole.
+	Behind []string
+}
+
+// roundsOf goes through the passes; ok is false when there is none. Passes of
+// parts that were dropped do not count.
+func roundsOf(surface Surface, done []donePass) (r rounds, ok bool) {
 	parts := surface.ActiveParts()
 	if len(parts) == 0 {
 		parts = []Part{{}}
@@ -126,29 +165,29 @@ func wholeSince(surface Surface, done []donePass) (since Day, behind []string, o
 	newest, left := map[PartID]Day{}, []Part(nil)
 	for _, pass := range done {
 		if pass.Part != 0 && !slices.ContainsFunc(parts, func(part Part) bool { return part.ID == pass.Part }) {
-			continue // of a part that was dropped
+			continue
 		}
 		if len(left) == 0 {
 			left = parts
 		}
-		left = filter(left, func(part Part) bool {
-			return pass.Part != 0 && pass.Part != part.ID
-		})
+		left = filter(left, func(part Part) bool { return pass.Part != 0 && pass.Part != part.ID })
 		for _, part := range parts {
-			if pass.Part == 0 || pass.Part == part.ID {
-				if day, known := newest[part.ID]; !known || pass.Day > day {
-					newest[part.ID] = pass.Day
-				}
+			if day, known := newest[part.ID]; (pass.Part == 0 || pass.Part == part.ID) && (!known || pass.Day > day) {
+				newest[part.ID] = pass.Day
 			}
 		}
 	}
-	for _, day := range newest {
-		if !ok || day < since {
-			since, ok = day, true
+	r.Last = DayMin
+	for part, day := range newest {
+		if !ok || day < r.Since {
+			r.Since, ok = day, true
+		}
+		if len(left) == 0 || slices.ContainsFunc(left, func(one Part) bool { return one.ID == part }) {
+			r.Last = max(r.Last, day)
 		}
 	}
 	for _, part := range left {
-		behind = append(behind, part.Name)
+		r.Behind = append(r.Behind, part.Name)
 	}
-	return since, behind, ok
+	return r, ok
 }

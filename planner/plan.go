@@ -47,6 +47,7 @@ type Plan struct {
 	Record   Record
 	Surfaces []Surface
 	Works    []Work // of all surfaces
+	Dropped  []Work // works of the surfaces that were dropped: what they gave stays given
 	Totals   []Total
 	Closed   []Closed
 	Log      []Entry // by day, undone entries left out

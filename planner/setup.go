@@ -2,6 +2,7 @@ package planner
 
 import (
 	"path"
+	"slices"
 	"strings"
 	"unicode"
 )
@@ -62,6 +63,13 @@ func (s Setup) WorksOf(site SiteID) []Work {
 		works = append(works, s.WorksOn(surface.ID)...)
 	}
 	return works
+}
+
+// DroppedOf returns the works of the site's surfaces that were dropped.
+func (s Setup) DroppedOf(site SiteID) []Work {
+	return filter(s.Dropped, func(work Work) bool {
+		return slices.ContainsFunc(s.Surfaces, func(surface Surface) bool { return surface.Site == site && surface.ID == work.Surface })
+	})
 }
 
 // TotalsOf returns the site's season totals.

@@ -14,6 +14,7 @@ type Tomorrow struct {
 	// FrostShare is the share of members with a low below 0 °C, WhiteFrostShare
 	// that with a low at which grass can be white while the air is above 0 °C.
 	FrostShare, WhiteFrostShare float64
+	Years                       int // past years among the members
 	SpreadKnown                 bool
 	HoursBelowZero              float64  // on the path
 	HeatIndexC                  Optional // of the high, when humidity is known
@@ -36,7 +37,7 @@ func NextDay(plan Plan) (Tomorrow, error) {
 		return Tomorrow{}, err
 	}
 	day := plan.AsOf + 1
-	out := Tomorrow{Day: day, Facts: plan.Outlook.at(plan.Outlook.Path, day), SpreadKnown: plan.Outlook.SpreadKnown(), Closed: closedOnDay(plan.Closed, day)}
+	out := Tomorrow{Day: day, Facts: plan.Outlook.at(plan.Outlook.Path, day), SpreadKnown: plan.Outlook.SpreadKnown(), Years: plan.Outlook.Years, Closed: closedOnDay(plan.Closed, day)}
 	for _, member := range plan.Outlook.Members {
 		facts := plan.Outlook.at(member, day)
 		if facts.HasExtremes && facts.LowC < 0 {

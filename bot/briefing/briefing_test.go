@@ -136,7 +136,7 @@ func TestCorrectionLine(t *testing.T) {
 // The evening says frost and heat, and never that a day is good for anything.
 func TestEvening(t *testing.T) {
 	plan := planner.Plan{Site: planner.Site{Name: "Quillmere", Units: planner.Celsius}, AsOf: june(10)}
-	cold := planner.Tomorrow{Day: june(11), Facts: planner.DayFacts{HasExtremes: true, HighC: 9, LowC: -2}, HoursBelowZero: 4.2, FrostShare: 0.3, SpreadKnown: true}
+	cold := planner.Tomorrow{Day: june(11), Facts: planner.DayFacts{HasExtremes: true, HighC: 9, LowC: -2}, HoursBelowZero: 4.2, FrostShare: 0.3, SpreadKnown: true, Years: 30}
 	for _, row := range []struct {
 		name     string
 		tomorrow planner.Tomorrow
@@ -145,8 +145,10 @@ func TestEvening(t *testing.T) {
 	}{
 		{"frost", cold, []string{"about 4 hours below 0 °C (3 of 10 years)", "off frozen turf", "Nothing falls due"}, []string{"Heat", "good"}},
 		{"nothing known", planner.Tomorrow{Day: june(11)}, []string{"Nothing is known of tomorrow's weather"}, []string{"Frost", "Heat"}},
-		{"white frost", planner.Tomorrow{Day: june(11), Facts: planner.DayFacts{HasExtremes: true, HighC: 9, LowC: 2}, WhiteFrostShare: 0.6, SpreadKnown: true},
+		{"white frost", planner.Tomorrow{Day: june(11), Facts: planner.DayFacts{HasExtremes: true, HighC: 9, LowC: 2}, WhiteFrostShare: 0.6, SpreadKnown: true, Years: 10},
 			[]string{"Frost possible (6 of 10 years)"}, []string{"below 0 °C ("}},
+		{"frost in one of few years", planner.Tomorrow{Day: june(11), Facts: planner.DayFacts{HasExtremes: true, HighC: 9, LowC: 2}, WhiteFrostShare: 2. / 3, SpreadKnown: true, Years: 3},
+			[]string{"Frost possible (2 of 3 years)"}, nil},
 		{"heat", planner.Tomorrow{Day: june(11), Facts: planner.DayFacts{HasExtremes: true, HighC: 35, LowC: 20}, HeatBand: "danger",
 			HeatIndexC: planner.Optional{Value: 41, Known: true}, HumidityPercent: planner.Optional{Value: 50, Known: true}, RainMM: planner.Optional{Value: 4, Known: true}},
 			[]string{"41.0 °C in shade: danger", "employer", "humidity", "rain"}, []string{"Frost", "wind"}},

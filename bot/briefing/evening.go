@@ -76,7 +76,8 @@ func chance(t planner.Tomorrow, share float64) string {
 	if !t.SpreadKnown || t.Facts.ExtremesFrom == planner.FromHand {
 		return ""
 	}
-	return fmt.Sprintf(" (%.0f of 10 years)", 10*share)
+	years := min(t.Years, 10)
+	return fmt.Sprintf(" (%.0f of %d years)", float64(years)*share, years)
 }
 
 func hours(h float64) string {

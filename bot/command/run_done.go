@@ -126,7 +126,7 @@ func (v visit) fill(entry *planner.Entry) error {
 	}
 	if result, given := v.Values.Text("result"); given {
 		entry.Result = planner.Result(strings.TrimPrefix(result, "good"))
-		entry.RainCounts = entry.Result == planner.Good
+		entry.RainCounts = false // said anew below, where it rained
 	}
 	entry.Note = textOr(v.Values, "note", entry.Note)
 	if err := v.fillPasses(entry.Passes); err != nil {
@@ -173,7 +173,8 @@ func (v visit) fillPasses(passes []planner.Pass) error {
 			if err != nil {
 				return err
 			}
-			passes[i].Part = known
+			_, surface, _ := v.workOf(passes[i].Work)
+			passes[i].Part, passes[i].Share = known, surface.ShareOf(known)
 		}
 	}
 	return nil
@@ -210,9 +211,9 @@ func (v visit) partOf(id planner.WorkID, name string) (planner.PartID, error) {
 	return 0, problem.WithHint("It has: %s.", strings.Join(names, ", "))
 }
 
-// workOf finds a work and its surface by the work's id.
+// workOf finds a work, dropped ones too, and its surface by the work's id.
 func (v visit) workOf(id planner.WorkID) (planner.Work, planner.Surface, bool) {
-	for _, work := range v.setup.Works {
+	for _, work := range slices.Concat(v.setup.Works, v.setup.Dropped) {
 		if work.ID != id {
 			continue
 		}

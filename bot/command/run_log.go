@@ -96,8 +96,8 @@ func (v visit) entryLines(entry planner.Entry, titles map[planner.WorkID]string)
 	var lines []string
 	for _, pass := range entry.Passes {
 		title, ok := titles[pass.Work]
-		if _, _, kept := v.workOf(pass.Work); !kept && v.allWorks() {
-			title, ok = "a work that was dropped", true
+		if work, surface, known := v.workOf(pass.Work); known && work.Archived && v.allWorks() {
+			title, ok = surface.Name+" "+work.Name+" (dropped)", true
 		}
 		if !ok {
 			continue
@@ -250,6 +250,9 @@ func (d Desk) runLogAmend(ctx context.Context, req Request) (reply.Reply, error)
 	plan, before, err := v.evaluate(ctx)
 	if err != nil {
 		return reply.Reply{}, err
+	}
+	if result, given := v.Values.Text("result"); given && result == "good" {
+		entry.RainCounts = rainedOn(plan, entry)
 	}
 	r, err := v.meaning(plan, before, entry)
 	if err != nil {

@@ -19,10 +19,10 @@ func (entries) list(ctx context.Context, on session, team int64, where string, a
 	_, err := collect(ctx, on, func(rows *sql.Rows) (pass planner.Pass, err error) {
 		var entry planner.EntryID
 		err = rows.Scan(&entry, &pass.Work, &pass.NitrogenGM2, &pass.Rate.Kind, &pass.Rate.Value, &pass.Rate.NPercent,
-			&pass.Part, &pass.SlowShare, &pass.SlowWeeks)
+			&pass.Part, &pass.Share, &pass.SlowShare, &pass.SlowWeeks)
 		passes[entry] = append(passes[entry], pass)
 		return pass, err
-	}, `SELECT entry.id, work, nitrogen_g_m2, rate_kind, rate_value, n_percent, part, slow_share, slow_weeks FROM entry JOIN entry_pass
+	}, `SELECT entry.id, work, nitrogen_g_m2, rate_kind, rate_value, n_percent, part, share, slow_share, slow_weeks FROM entry JOIN entry_pass
 		ON entry_pass.team = entry.team AND entry_pass.entry = entry.id
 		WHERE entry.team = ? AND `+where+` ORDER BY entry.id, entry_pass.place`, args...)
 	if err != nil {
@@ -81,9 +81,9 @@ func (entries) write(ctx context.Context, s saving, before, after planner.Entry)
 			return err
 		}
 		_, err := s.on.ExecContext(ctx, `INSERT INTO entry_pass (team, entry, place, work, nitrogen_g_m2,
-			rate_kind, rate_value, n_percent, part, slow_share, slow_weeks) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
+			rate_kind, rate_value, n_percent, part, share, slow_share, slow_weeks) VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)`,
 			s.team, after.ID, place, pass.Work, pass.NitrogenGM2, pass.Rate.Kind, pass.Rate.Value, pass.Rate.NPercent,
-			pass.Part, pass.SlowShare, pass.SlowWeeks)
+			pass.Part, pass.Share, pass.SlowShare, pass.SlowWeeks)
 		if err != nil {
 			return err
 		}

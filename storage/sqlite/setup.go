@@ -11,11 +11,12 @@ import (
 const (
 	notArchived = `archived = 0`
 	siteOpen    = notArchived + ` AND (team, site) IN (SELECT team, id FROM site WHERE archived = 0)`
-	surfaceOpen = notArchived + ` AND (team, surface) IN (SELECT team, id FROM surface WHERE ` + siteOpen + `)`
+	onOpen      = `(team, surface) IN (SELECT team, id FROM surface WHERE ` + siteOpen + `)`
+	surfaceOpen = notArchived + ` AND ` + onOpen
 )
 
 // Setup returns all that is set up and not archived, each list in the order in
-// which it was added. What is under an archived site or surface is left out
+// which it was added, and the works that were dropped. What is under an archived site or surface is left out
 // with it, and comes back with it.
 func (t *Team) Setup(ctx context.Context) (planner.Setup, error) {
 	var setup planner.Setup
@@ -30,6 +31,9 @@ func (t *Team) Setup(ctx context.Context) (planner.Setup, error) {
 			return err
 		}
 		if setup.Works, err = (works{}).list(ctx, conn, t.id, surfaceOpen); err != nil {
+			return err
+		}
+		if setup.Dropped, err = (works{}).list(ctx, conn, t.id, `archived = 1 AND `+onOpen); err != nil {
 			return err
 		}
 		if setup.Totals, err = (totals{}).list(ctx, conn, t.id, siteOpen); err != nil {

@@ -72,7 +72,7 @@ func testSetup(t *testing.T, newTeam func(string) Store) {
 	want(t, "the saved closed days", save(t, store, second.closed), second.closed)
 	entry := newEntry(second.site.ID, lateJune, mow.ID, second.work.ID)
 	entry.Result, entry.Clock, entry.Watered, entry.RainCounts = planner.Doubtful, "06:10", lateJune+1, true
-	entry.Passes[1] = planner.Pass{Work: second.work.ID, NitrogenGM2: 2.94, Part: 1, SlowShare: 0.4, SlowWeeks: 8.5,
+	entry.Passes[1] = planner.Pass{Work: second.work.ID, NitrogenGM2: 2.94, Part: 1, Share: 0.625, SlowShare: 0.4, SlowWeeks: 8.5,
 		Rate: planner.Rate{Kind: planner.MassRate, Value: 14, NPercent: 21}}
 	entry = save(t, store, entry)
 	want(t, "the log", log(t, store, second.site.ID), []planner.Entry{entry})
@@ -154,7 +154,7 @@ func testArchived(t *testing.T, newTeam func(string) Store) {
 	save(t, store, total)
 	save(t, store, closed)
 	want(t, "Setup without what is under them", setup(t, store),
-		planner.Setup{Sites: whole.Sites, Surfaces: whole.Surfaces})
+		planner.Setup{Sites: whole.Sites, Surfaces: whole.Surfaces, Dropped: []planner.Work{work}})
 }
 
 func testNames(t *testing.T, newTeam func(string) Store) {

@@ -53,7 +53,7 @@ type Repeat struct{ Line, First int }
 //  2. Setup returns what was saved, every field of it, in the order added; the
 //     suite fails when a noun has a field that it sets no value in.
 //  3. What is archived is not in Setup, nor what is under an archived site or
-//     surface; it comes back with it.
+//     surface; it comes back with it. Works that were dropped stand apart.
 //  4. A name is unique under its parent among what is not archived, ignoring
 //     case and taking a space for a hyphen; a Taken problem keeps nothing.
 //  5. A parent that is missing or archived, and an id that is not the team's,

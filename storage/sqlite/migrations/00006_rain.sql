@@ -1,5 +1,5 @@
--- Rain that a station's gauge caught, and what was said when it fell too soon
--- after a pass.
+-- Rain that a station's gauge caught, what was said when it fell too soon after a
+-- pass, and how much of a surface a part was.
 
 -- +goose Up
 
@@ -43,6 +43,10 @@ CREATE TABLE import_same_too (
 INSERT INTO import_same_too SELECT team, import, kind, first_key, last_key FROM import_same;
 DROP TABLE import_same;
 ALTER TABLE import_same_too RENAME TO import_same;
+
+-- The share of the surface's area that a pass over a part went over, as it was
+-- when it was logged; 0 when it was not said.
+ALTER TABLE entry_pass ADD COLUMN share REAL NOT NULL DEFAULT 0;
 
 -- Whoever logged it said that it counts although it rained.
 ALTER TABLE entry ADD COLUMN rain_counts INTEGER NOT NULL DEFAULT 0 CHECK (rain_counts IN (0, 1));
