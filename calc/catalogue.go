@@ -190,7 +190,7 @@ func weatherFormulas() []Formula {
 		{
 			ID: "heat-index", Title: "Heat index",
 			Words:  "How hot the air feels in shade, from temperature and relative humidity: a simple formula below 80 °F, a regression above. Full sun adds up to 15 °F. Classes: caution from 80 °F (27 °C), extreme caution 90 (32), danger 103 (39), extreme danger 125 (52).",
-			Source: "US National Weather Service, heat index equation page; classes second-hand", Status: StatusPrinted,
+			Source: "US National Weather Service, heat index equation page; its classes as others print them", Status: StatusPrinted,
 		},
 		{
 			ID: "hours-below", Title: "Hours below a temperature",
@@ -230,7 +230,7 @@ func passageFormulas() []Formula {
 		{
 			ID: "first-passage", Title: "Day a total reaches its target",
 			Words:  "Add the days one by one. The first day on which the total is at or above the target, both rounded to 6 decimals, is the day.",
-			Source: "rule of the published growth-regulator trials; the rounding is our own", Status: StatusAbstract,
+			Source: "common practice; the rounding is our own", Status: StatusCommonPractice,
 		},
 		{
 			ID: "nearest-rank", Title: "Early, middle and late date",

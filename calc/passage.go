@@ -15,8 +15,8 @@ import (
 // never moves a date, here or in a spreadsheet's cells. A total or a target that
 // is not finite has not been reached.
 //
-// Source: that the day counts on which the sum passes the threshold is the rule
-// of the published growth-regulator trials; the rounding is this program's own.
+// Source: that the day counts on which the sum passes the target is common
+// practice; the rounding is this program's own.
 func Reached(total, target float64) bool {
 	if !isFinite(total) || !isFinite(target) {
 		return false
