@@ -190,7 +190,7 @@ func (m *maker) works() {
 	for i := range uint64(4) {
 		counting := pairs[(4*m.number+i)%uint64(len(pairs))]
 		counting.Thresholds.LowerC = m.typed(-2, 14)
-		counting.Thresholds.UpperC = counting.Thresholds.LowerC + m.typed(1, 20)
+		counting.Thresholds.UpperC = m.typed(counting.Thresholds.LowerC+1, 20)
 		if m.in(2) { // as a work stands that never said how
 			if counting.Method == calc.MethodMean {
 				counting.Method = ""
