@@ -1,6 +1,7 @@
 package planner
 
 import (
+	"math"
 	"slices"
 
 	"swardbook/calc"
@@ -57,13 +58,14 @@ func (m degreeDays) units(day, next DayFacts, basis Basis) (float64, Standing, e
 		units, err := calc.DegreeDaysFromMean(meanC, m.thresholds)
 		return units, standing, err
 	case m.method == calc.MethodDegreeHours && day.HoursC == nil && day.HasExtremes:
-		units, err := calc.DegreeDaysSingleSine(day.HighC, day.LowC, m.thresholds)
+		units, err := calc.DegreeDaysSingleSine(m.settled(day.HighC), m.settled(day.LowC), m.thresholds)
 		return units, StandIn, err
 	case m.method == calc.MethodDegreeHours && day.HoursC != nil, m.method != calc.MethodDegreeHours && day.HasExtremes:
 		units, err := m.own(day, next, basis)
 		return units, Own, err
 	case day.HasHourly:
-		units, err := calc.DegreeDaysSingleSine(day.HourlyC, day.HourlyC, m.thresholds)
+		meanC := m.settled(day.HourlyC)
+		units, err := calc.DegreeDaysSingleSine(meanC, meanC, m.thresholds)
 		return units, StandIn, err
 	}
 	return 0, Nothing, nil
@@ -75,6 +77,7 @@ func (m degreeDays) own(day, next DayFacts, basis Basis) (float64, error) {
 	if next.HasExtremes {
 		nextLowC = next.LowC
 	}
+	day.HighC, day.LowC, nextLowC = m.settled(day.HighC), m.settled(day.LowC), m.settled(nextLowC)
 	switch m.method {
 	case calc.MethodMean:
 		meanC, _ := meanOrOther(day, basis)
@@ -94,6 +97,22 @@ func (m degreeDays) own(day, next DayFacts, basis Basis) (float64, error) {
 	default:
 		return calc.DegreeDaysFromHours(day.HoursC, m.thresholds)
 	}
+}
+
+// alike is how near two temperatures are taken as one, °C: far below what any
+// thermometer tells apart, far above what adding and converting rounds off.
+const alike = 1e-9
+
+// settled is the temperature, or the threshold that it is but for rounding: what
+// was warmed, converted or put on a line may miss the threshold that it reads
+// as, and the vertical cutoff counts a whole day or none there.
+func (m degreeDays) settled(c float64) float64 {
+	for _, thresholdC := range []float64{m.thresholds.LowerC, m.thresholds.UpperC} {
+		if math.Abs(c-thresholdC) < alike {
+			return thresholdC
+		}
+	}
+	return c
 }
 
 func (m degreeDays) Bases() []Basis {
