@@ -266,7 +266,7 @@ func trials(p planner.Plan) []trial {
 			change: byTurf(0, 1, func(turf *planner.Turf, u planner.Units) {
 				turf.Curve.OptimumC, turf.Curve.WidthC = u.TemperatureC(unit(18, 62)), u.DifferenceC(unit(7, 9.5))
 			})},
-		{name: "another ceiling", typed: []typing{into("in_s1_t2_ceiling", 2.5)}, asks: []planner.WorkID{byNitrogen},
+		{name: "another ceiling", typed: []typing{into("in_s1_t2_ceiling", 2.5)}, asks: []planner.WorkID{byNitrogen}, mayAsk: []planner.WorkID{byGrowth},
 			change: byTurf(0, 1, func(turf *planner.Turf, _ planner.Units) { turf.CeilingGM2 = 2.5 })},
 		{name: "what a feed gave at once", typed: []typing{inRow("log_quick", 1, 2.25), inRow("log_quick", 0, 1)},
 			change: together(byFeed(0, split(2.25, 0)), byFeed(1, split(1, 0.4)))},
