@@ -78,7 +78,7 @@ func edited(units planner.Units, gap bool) planner.Plan {
 		}
 	}
 	days := func() (days []planner.DayFacts) {
-		for day := start; day < p.AsOf+150; day++ {
+		for day := start; day < p.AsOf+110; day++ {
 			days = append(days, m.day(day, bothMeans))
 		}
 		return days
@@ -323,6 +323,7 @@ func TestEditsInLibreOffice(t *testing.T) {
 	if slowPlans() == 0 {
 		t.Skip("types edits in LibreOffice with SWARDBOOK_SLOW=1")
 	}
+	t.Parallel()
 	type step struct {
 		Target string   `json:"target"`
 		Edits  []typing `json:"edits"`

@@ -35,6 +35,7 @@ func (c gridCell) number() (value float64, ok bool) {
 // grid is a workbook's cells by sheet and by name, the sheets in order.
 type grid struct {
 	sheets []string
+	part   map[string]string // the part that holds a sheet
 	cells  map[string]map[string]gridCell
 	order  map[string][]string // the names of a sheet's cells as they stand in the file
 	names  map[string]string   // what defined names refer to
@@ -125,7 +126,7 @@ func gridOf(t testing.TB, content []byte) grid {
 		}
 		return text
 	}
-	g := grid{cells: map[string]map[string]gridCell{}, order: map[string][]string{}, names: map[string]string{}, dates: dateStyles(all["xl/styles.xml"])}
+	g := grid{part: map[string]string{}, cells: map[string]map[string]gridCell{}, order: map[string][]string{}, names: map[string]string{}, dates: dateStyles(all["xl/styles.xml"])}
 	for _, name := range book.Names {
 		g.names[name.Name] = name.Text
 	}
@@ -146,6 +147,7 @@ func gridOf(t testing.TB, content []byte) grid {
 		}
 		decode(target[sheet.ID], &page)
 		g.sheets = append(g.sheets, sheet.Name)
+		g.part[sheet.Name] = target[sheet.ID]
 		g.cells[sheet.Name] = make(map[string]gridCell, len(page.Cells))
 		for _, cell := range page.Cells {
 			read := gridCell{formula: cell.Formula, style: cell.Style}
