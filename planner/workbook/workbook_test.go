@@ -3,9 +3,6 @@ package workbook_test
 import (
 	"bytes"
 	"fmt"
-	"os"
-	"os/exec"
-	"path/filepath"
 	"strings"
 	"testing"
 
@@ -64,46 +61,30 @@ func TestCellTextComputes(t *testing.T) {
 	}
 }
 
-// What a user typed is never a formula; ids and names are where a returned
-// sheet is read from.
-func TestMannersOfTheBook(t *testing.T) {
-	plan := randomPlan(3)
-	file := open(t, build(t, plan))
-	names := map[string]bool{}
-	for _, name := range file.GetDefinedName() {
-		names[name.Name] = true
-		if strings.Contains(name.RefersTo, "#REF") {
-			t.Errorf("%s refers to %s", name.Name, name.RefersTo)
+// Ids and names are where a returned sheet is read from.
+func TestWhatNamesTheBook(t *testing.T) {
+	content := build(t, edited(planner.Celsius, false))
+	file, g := open(t, content), gridOf(t, content)
+	for name, refers := range g.names {
+		if strings.Contains(refers, "#REF") {
+			t.Errorf("%s refers to %s", name, refers)
 		}
 	}
-	for _, want := range []string{"wb_id", "wb_asof", "d_date", "in_w4_base", "in_w4_target", "in_w4_last", "in_w4_gap", "in_s1_t1_optimum", "log_date"} {
-		if !names[want] {
+	for _, want := range []string{"wb_id", "wb_asof", "d_date", "d_high", "d_low", "d_mean", "in_w1_base", "in_w1_target", "in_w1_last", "in_w1_gap", "in_w2_upper",
+		"in_s1_t2_optimum", "in_s1_t2_width", "in_s1_t2_ceiling", "log_date", "log_quick", "log_slow", "log_days"} {
+		if g.names[want] == "" {
 			t.Errorf("there is no name %s", want)
 		}
 	}
-	if props, err := file.GetDocProps(); err != nil || props.Identifier != "swardbook-sheet-7-form-1" {
+	const id = "swardbook-sheet-7-form-1"
+	if sheet, cell := g.named(t, "wb_id"); g.at(sheet, cell).text != id {
+		t.Errorf("wb_id holds %q", g.at(sheet, cell).text)
+	}
+	if props, err := file.GetDocProps(); err != nil || props.Identifier != id {
 		t.Errorf("identifier %v, %v", props, err)
 	}
-	if props, err := file.GetCustomProps(); err != nil || len(props) != 1 || props[0].Value != "swardbook-sheet-7-form-1" {
+	if props, err := file.GetCustomProps(); err != nil || len(props) != 1 || props[0].Value != id {
 		t.Errorf("custom properties %v, %v", props, err)
-	}
-	for _, sheet := range file.GetSheetList() {
-		rows, err := file.GetRows(sheet)
-		if err != nil {
-			t.Fatal(err)
-		}
-		for r := range rows {
-			for c, text := range rows[r] {
-				cell, _ := excelize.CoordinatesToCellName(c+1, r+1)
-				formula, err := file.GetCellFormula(sheet, cell)
-				if err != nil || formula != "" && (strings.Contains(formula, "greens") || formula == "1+1") {
-					t.Errorf("%s!%s: %q, %v", sheet, cell, formula, err)
-				}
-				if formula != "" && strings.HasPrefix(text, "=1+1") {
-					t.Errorf("%s!%s holds a note as a formula", sheet, cell)
-				}
-			}
-		}
 	}
 }
 
@@ -120,116 +101,5 @@ func TestPoorPlans(t *testing.T) {
 	plan.Record.Facts, plan.Outlook.Path, plan.Outlook.Members, plan.Outlook.Start = nil, nil, nil, plan.AsOf
 	if content := build(t, plan); !bytes.HasPrefix(content, []byte("PK")) {
 		t.Error("no book of a plan without weather")
-	}
-}
-
-// openpyxl never recalculates: it must see every number of the first sheet.
-func TestReaderThatNeverRecalculates(t *testing.T) {
-	if slowPlans() == 0 {
-		t.Skip("reads with openpyxl with SWARDBOOK_SLOW=1")
-	}
-	path := filepath.Join(t.TempDir(), "book.xlsx")
-	if err := os.WriteFile(path, build(t, randomPlan(2)), 0o644); err != nil {
-		t.Fatal(err)
-	}
-	const script = `
-import openpyxl, sys
-live = openpyxl.load_workbook(sys.argv[1]).worksheets[0]
-read = openpyxl.load_workbook(sys.argv[1], data_only=True, read_only=True).worksheets[0]
-seen = 0
-for formulas, values in zip(live.iter_rows(), read.iter_rows()):
-    for f, v in zip(formulas, values):
-        if isinstance(f.value, str) and f.value.startswith("="):
-            seen += v.value is not None and not (isinstance(v.value, str) and v.value.startswith("="))
-            if v.value is None and "falls" not in f.value and f.column_letter in "AB": print("empty", f.coordinate)
-print("seen", seen)`
-	said, err := exec.Command("/usr/bin/python3", "-c", script, path).CombinedOutput()
-	var seen int
-	if _, scan := fmt.Sscanf(string(said), "seen %d", &seen); err != nil || scan != nil || seen < 60 {
-		t.Errorf("%v: %s", err, said)
-	}
-}
-
-// A season's sheet with 12 works beside a bare writer of the same cells.
-func BenchmarkBuild(b *testing.B) {
-	plan := randomPlan(2)
-	for i := range 6 {
-		work := plan.Works[i]
-		work.ID += 6
-		plan.Works = append(plan.Works, work)
-		plan.Log = append(plan.Log, planner.Entry{Day: plan.AsOf - 1, Passes: []planner.Pass{{Work: work.ID, NitrogenGM2: 1}}})
-	}
-	input := inputOf(b, plan, 8)
-	content, err := workbook.Build(input)
-	if err != nil {
-		b.Fatal(err)
-	}
-	b.Run("sheet", func(b *testing.B) {
-		b.ReportAllocs()
-		for range b.N {
-			if _, err := workbook.Build(input); err != nil {
-				b.Fatal(err)
-			}
-		}
-	})
-	cells := bareCells(b, content)
-	b.Run("bare", func(b *testing.B) {
-		b.ReportAllocs()
-		for range b.N {
-			writeBare(b, cells)
-		}
-	})
-}
-
-// bareCells are the cells of the book, sheet by sheet.
-func bareCells(b *testing.B, content []byte) map[string][][]any {
-	file := open(b, content)
-	cells := map[string][][]any{}
-	for _, sheet := range file.GetSheetList() {
-		rows, err := file.GetRows(sheet, excelize.Options{RawCellValue: true})
-		if err != nil {
-			b.Fatal(err)
-		}
-		for r := range rows {
-			var row []any
-			for c, text := range rows[r] {
-				name, _ := excelize.CoordinatesToCellName(c+1, r+1)
-				formula, _ := file.GetCellFormula(sheet, name)
-				style, _ := file.GetCellStyle(sheet, name)
-				cell := excelize.Cell{Formula: formula, StyleID: min(style, 0), Value: text}
-				var number float64
-				if _, err := fmt.Sscan(text, &number); err == nil {
-					cell.Value = number
-				}
-				row = append(row, cell)
-			}
-			cells[sheet] = append(cells[sheet], row)
-		}
-	}
-	return cells
-}
-
-func writeBare(b *testing.B, cells map[string][][]any) {
-	file := excelize.NewFile()
-	defer file.Close()
-	for sheet, rows := range cells {
-		if _, err := file.NewSheet(sheet); err != nil {
-			b.Fatal(err)
-		}
-		stream, err := file.NewStreamWriter(sheet)
-		if err != nil {
-			b.Fatal(err)
-		}
-		for r, row := range rows {
-			if err := stream.SetRow(fmt.Sprintf("A%d", r+1), row); err != nil {
-				b.Fatal(err)
-			}
-		}
-		if err := stream.Flush(); err != nil {
-			b.Fatal(err)
-		}
-	}
-	if _, err := file.WriteToBuffer(); err != nil {
-		b.Fatal(err)
 	}
 }
