@@ -229,7 +229,7 @@ func (b *book) manners(p *page) error {
 	}
 	site := strings.ReplaceAll(b.Plan.Site.Name, "&", "&&")
 	err := b.file.SetHeaderFooter(p.name, &excelize.HeaderFooterOptions{
-		OddHeader: fmt.Sprintf("&L%s&C%s&R%s", site, p.name, b.Plan.AsOf),
+		OddHeader: fmt.Sprintf("&L%s&C%s&R%s", headerCut(site), p.name, b.Plan.AsOf),
 		OddFooter: fmt.Sprintf("&LSheet %d, days ahead issued %s&RPage &P of &N", b.ID, b.Outlook()),
 	})
 	if err != nil {
@@ -243,6 +243,21 @@ func (b *book) manners(p *page) error {
 	return b.file.ProtectSheet(p.name, &excelize.SheetProtectionOptions{
 		SelectLockedCells: true, SelectUnlockedCells: true, FormatColumns: true, FormatRows: true, AutoFilter: true,
 	})
+}
+
+// headerCut keeps what fits beside the rest into the 255 characters of a header;
+// a doubled & is not torn apart.
+func headerCut(text string) string {
+	const longest = 100
+	runes := []rune(text)
+	if len(runes) <= longest {
+		return text
+	}
+	cut := string(runes[:longest])
+	if signs := len(cut) - len(strings.TrimRight(cut, "&")); signs%2 == 1 {
+		cut = cut[:len(cut)-1]
+	}
+	return cut
 }
 
 // Outlook is the day on which the days ahead were issued.
