@@ -63,8 +63,8 @@ func (b *book) makeStyles() error {
 		inNumber: input("0.0"), inTwo: input("0.0##"), inDate: input(dateFormat),
 	}
 	b.look = make(map[style]int, everything)
-	for look, definition := range looks {
-		id, err := b.file.NewStyle(definition)
+	for look := range everything { // in order: the same book has the same styles
+		id, err := b.file.NewStyle(looks[look])
 		if err != nil {
 			return err
 		}
