@@ -97,8 +97,9 @@ func gridOf(t testing.TB, content []byte) grid {
 			ID   string `xml:"http://schemas.openxmlformats.org/officeDocument/2006/relationships id,attr"`
 		} `xml:"sheets>sheet"`
 		Names []struct {
-			Name string `xml:"name,attr"`
-			Text string `xml:",chardata"`
+			Name  string `xml:"name,attr"`
+			Scope string `xml:"localSheetId,attr"` // of a name of one sheet
+			Text  string `xml:",chardata"`
 		} `xml:"definedNames>definedName"`
 	}
 	var links struct {
@@ -124,11 +125,11 @@ func gridOf(t testing.TB, content []byte) grid {
 		for _, run := range r.Runs {
 			text += run.Text
 		}
-		return text
+		return strings.ReplaceAll(text, "_x005F_", "_") // how a file spells a text that looks like an escape
 	}
 	g := grid{part: map[string]string{}, cells: map[string]map[string]gridCell{}, order: map[string][]string{}, names: map[string]string{}, dates: dateStyles(all["xl/styles.xml"])}
 	for _, name := range book.Names {
-		g.names[name.Name] = name.Text
+		g.names[name.Name+name.Scope] = name.Text
 	}
 	target := map[string]string{}
 	for _, link := range links.All {
