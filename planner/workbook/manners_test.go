@@ -334,18 +334,20 @@ var (
 // No formula needs a newer program, a language, a clock or a wider cell.
 func TestFormulasAreOrdinary(t *testing.T) {
 	var inputs []workbook.Input
-	for number := range uint64(24) { // all methods and cutoffs
+	for number := range uint64(6) { // all methods and cutoffs
 		inputs = append(inputs, randomInput(t, number))
 	}
 	inputs = append(inputs, inputOf(t, nastyPlan(), 8), seasonInput(t, 200))
-	checked := map[string]bool{}
+	checked, alike := map[string]bool{}, map[string]bool{}
 	for _, input := range inputs {
 		g := gridOf(t, written(t, input))
 		for _, sheet := range g.sheets {
 			for _, name := range g.order[sheet] {
 				formula := g.at(sheet, name).formula
-				if formula == "" {
+				if without := withoutDigits(formula); formula == "" || alike[without] {
 					continue
+				} else {
+					alike[without] = true
 				}
 				if fault := unusual(formula, checked); fault != "" {
 					t.Fatalf("%s!%s: %s in %s", sheet, name, fault, formula)
@@ -358,6 +360,16 @@ func TestFormulasAreOrdinary(t *testing.T) {
 			t.Errorf("no formula has %s: what was walked?", common)
 		}
 	}
+}
+
+// withoutDigits is the same for the formulas of two rows.
+func withoutDigits(formula string) string {
+	return strings.Map(func(r rune) rune {
+		if r >= '0' && r <= '9' {
+			return -1
+		}
+		return r
+	}, formula)
 }
 
 // unusual says what is unusual in a formula; "" when nothing is.
