@@ -166,17 +166,17 @@ func seeCounted(p planner.Plan, work planner.SheetWork, see func(string, bool)) 
 		see("done before the record", due.Since < p.Record.Facts[0].Day)
 		see("beyond the sheet", !due.Path.Known)
 		from, to := due.Since, p.AsOf-1
-		see("past 29 February", holds(from, to, time.February, 29))
+		see("past 29 February", dateIn(from, to, time.February, 29))
 		see("past a year's end", from <= to && from.Year() < to.Year())
 		if told := due.Date(); told.Known {
-			see("29 February ahead", holds(p.AsOf, told.Day, time.February, 29))
+			see("29 February ahead", dateIn(p.AsOf, told.Day, time.February, 29))
 			see("a year's end ahead", told.Day > p.AsOf && p.AsOf.Year() < told.Day.Year())
 		}
 	}
 }
 
-// holds reports whether the month and day lie among the days.
-func holds(from, to planner.Day, month time.Month, date int) bool {
+// dateIn reports whether the month and day lie among the days.
+func dateIn(from, to planner.Day, month time.Month, date int) bool {
 	for day := from; day <= to; day++ {
 		if _, m, d := day.Date(); m == month && d == date {
 			return true

@@ -11,6 +11,8 @@ import (
 	"slices"
 	"testing"
 
+	"github.com/xuri/excelize/v2"
+
 	"swardbook/calc"
 	"swardbook/planner"
 )
@@ -45,15 +47,15 @@ func serial(day planner.Day) int { return int(day) + 25569 }
 // The works of the edited plans. None is named after what it does: a row is
 // found by its number.
 const (
-	byMean     = planner.WorkID(1) // degree days of the mean
-	bySine     = planner.WorkID(2) // single sine under an upper limit
-	byGrowth   = planner.WorkID(3)
-	byNitrogen = planner.WorkID(4)
-	byDays     = planner.WorkID(5)
-	byTwoSines = planner.WorkID(6) // double sine; its count starts after the gap
+	meanWork     = planner.WorkID(1) // degree days of the mean
+	sineWork     = planner.WorkID(2) // single sine under an upper limit
+	growthWork   = planner.WorkID(3)
+	feedWork     = planner.WorkID(4)
+	daysWork     = planner.WorkID(5)
+	twoSinesWork = planner.WorkID(6) // double sine; its count starts after the gap
 )
 
-var byWeather = []planner.WorkID{byMean, bySine, byGrowth, byNitrogen, byTwoSines}
+var byWeather = []planner.WorkID{meanWork, sineWork, growthWork, feedWork, twoSinesWork}
 
 // edited is a plan whose sheet is edited: every measure, ten members. With gap
 // five days of the record are missing.
@@ -63,7 +65,7 @@ func edited(units planner.Units, gap bool) planner.Plan {
 	p.AsOf = planner.DayOf(2024, 6, 11)
 	p.Site = planner.Site{ID: 1, Name: "Quillmere", Lat: 40, Zone: "Europe/Dublin", Units: units}
 	for day := p.AsOf - 120; day < p.AsOf; day++ {
-		p.Record.Facts = append(p.Record.Facts, m.day(day, bothMeans))
+		p.Record.Facts = append(p.Record.Facts, weatherOn(m.Rand, day))
 	}
 	for _, day := range []planner.Day{p.AsOf - 6, p.AsOf + 5} { // these are edited: they have all
 		if day < p.AsOf {
@@ -79,7 +81,7 @@ func edited(units planner.Units, gap bool) planner.Plan {
 	}
 	days := func() (days []planner.DayFacts) {
 		for day := start; day < p.AsOf+110; day++ {
-			days = append(days, m.day(day, bothMeans))
+			days = append(days, weatherOn(m.Rand, day))
 		}
 		return days
 	}
@@ -100,18 +102,18 @@ func edited(units planner.Units, gap bool) planner.Plan {
 		p.Works = append(p.Works, planner.Work{ID: id, Surface: surface, Name: "work " + string(rune('a'+int(id))),
 			Settings: planner.Always(planner.WorkSettings{Counting: counting, Target: target, Basis: basis})})
 	}
-	work(byMean, 1, 300, planner.Hourly, degrees(calc.MethodMean, 0, 0, ""))
-	work(bySine, 2, 240, "", degrees(calc.MethodSingleSine, 5, 20, calc.CutoffHorizontal))
-	work(byGrowth, 1, 14, planner.Midrange, planner.Counting{Counts: planner.ByGrowthDays})
-	work(byNitrogen, 1, 0.2, planner.Hourly, planner.Counting{Counts: planner.ByNitrogen})
-	work(byDays, 2, 30, "", planner.Counting{Counts: planner.ByDays})
-	work(byTwoSines, 2, 120, "", degrees(calc.MethodDoubleSine, 5, 0, ""))
-	for id, ago := range map[planner.WorkID]planner.Day{byMean: 25, bySine: 35, byGrowth: 20, byDays: 18, byTwoSines: 4} {
+	work(meanWork, 1, 300, planner.Hourly, degrees(calc.MethodMean, 0, 0, ""))
+	work(sineWork, 2, 240, "", degrees(calc.MethodSingleSine, 5, 20, calc.CutoffHorizontal))
+	work(growthWork, 1, 14, planner.Midrange, planner.Counting{Counts: planner.ByGrowthDays})
+	work(feedWork, 1, 0.2, planner.Hourly, planner.Counting{Counts: planner.ByNitrogen})
+	work(daysWork, 2, 30, "", planner.Counting{Counts: planner.ByDays})
+	work(twoSinesWork, 2, 120, "", degrees(calc.MethodDoubleSine, 5, 0, ""))
+	for id, ago := range map[planner.WorkID]planner.Day{meanWork: 25, sineWork: 35, growthWork: 20, daysWork: 18, twoSinesWork: 4} {
 		p.Log = append(p.Log, planner.Entry{ID: planner.EntryID(id), Site: 1, Day: p.AsOf - ago, Passes: []planner.Pass{{Work: id}}})
 	}
 	feed := func(ago planner.Day, gM2, slow, weeks float64) {
 		p.Log = append(p.Log, planner.Entry{ID: planner.EntryID(100 - ago), Site: 1, Day: p.AsOf - ago,
-			Passes: []planner.Pass{{Work: byNitrogen, NitrogenGM2: gM2, SlowShare: slow, SlowWeeks: weeks}}})
+			Passes: []planner.Pass{{Work: feedWork, NitrogenGM2: gM2, SlowShare: slow, SlowWeeks: weeks}}})
 	}
 	feed(30, 1.6, 0.25, 8)
 	feed(15, 1.5, 0, 0)
@@ -159,7 +161,7 @@ func pass(p *planner.Plan, id planner.WorkID, before int, change func(*planner.E
 	slices.SortFunc(p.Log, func(a, b planner.Entry) int { return int(a.Day - b.Day) })
 }
 
-func moved(id planner.WorkID, by planner.Day) func(*planner.Plan) []planner.Edit {
+func movedBy(id planner.WorkID, by planner.Day) func(*planner.Plan) []planner.Edit {
 	return func(p *planner.Plan) []planner.Edit {
 		pass(p, id, 0, func(entry *planner.Entry, _ *planner.Pass) { entry.Day += by })
 		return nil
@@ -198,7 +200,7 @@ func byTurf(surface, turf int, change func(*planner.Turf, planner.Units)) func(*
 
 func byFeed(before int, change func(*planner.Entry, *planner.Pass)) func(*planner.Plan) []planner.Edit {
 	return func(p *planner.Plan) []planner.Edit {
-		pass(p, byNitrogen, before, change)
+		pass(p, feedWork, before, change)
 		return nil
 	}
 }
@@ -239,17 +241,17 @@ func trials(p planner.Plan) []trial {
 	warm := []typing{onDay("d_high", now+2, unit(33.5, 92.5)), onDay("d_low", now+2, unit(21, 70)), onDay("d_mean", now+2, nil)}
 	return []trial{
 		{name: "nothing", change: together()},
-		{name: "another target", typed: []typing{ofWork(byMean, "target", unit(400, 777))}, change: setTarget(byMean, unit(400, 777), planner.DegreeDays)},
-		{name: "a target that is reached already", typed: []typing{ofWork(byMean, "target", 100)}, change: setTarget(byMean, 100, planner.DegreeDays)},
-		{name: "targets of other measures", typed: []typing{ofWork(byGrowth, "target", 9.5), ofWork(byNitrogen, "target", 0), ofWork(byDays, "target", 45)},
-			change: together(setTarget(byGrowth, 9.5, planner.GrowthDays), setTarget(byNitrogen, 0, planner.NitrogenGM2), setTarget(byDays, 45, planner.Days))},
-		{name: "a later last date", typed: []typing{ofWork(byMean, "last", serial(now-19))}, change: moved(byMean, 6)},
-		{name: "an earlier last date", typed: []typing{ofWork(byMean, "last", serial(now-33)), ofWork(byDays, "last", serial(now-20))}, change: together(moved(byMean, -8), moved(byDays, -2))},
-		{name: "a last date ahead", typed: []typing{ofWork(byMean, "last", serial(now+3)), ofWork(byDays, "last", serial(now+1))},
-			change: together(moved(byMean, 28), moved(byDays, 19)), mayAsk: []planner.WorkID{byMean, byDays}},
-		{name: "least days between", typed: []typing{ofWork(byMean, "gap", 80), ofWork(byGrowth, "gap", 3)},
+		{name: "another target", typed: []typing{ofWork(meanWork, "target", unit(400, 777))}, change: setTarget(meanWork, unit(400, 777), planner.DegreeDays)},
+		{name: "a target that is reached already", typed: []typing{ofWork(meanWork, "target", 100)}, change: setTarget(meanWork, 100, planner.DegreeDays)},
+		{name: "targets of other measures", typed: []typing{ofWork(growthWork, "target", 9.5), ofWork(feedWork, "target", 0), ofWork(daysWork, "target", 45)},
+			change: together(setTarget(growthWork, 9.5, planner.GrowthDays), setTarget(feedWork, 0, planner.NitrogenGM2), setTarget(daysWork, 45, planner.Days))},
+		{name: "a later last date", typed: []typing{ofWork(meanWork, "last", serial(now-19))}, change: movedBy(meanWork, 6)},
+		{name: "an earlier last date", typed: []typing{ofWork(meanWork, "last", serial(now-33)), ofWork(daysWork, "last", serial(now-20))}, change: together(movedBy(meanWork, -8), movedBy(daysWork, -2))},
+		{name: "a last date ahead", typed: []typing{ofWork(meanWork, "last", serial(now+3)), ofWork(daysWork, "last", serial(now+1))},
+			change: together(movedBy(meanWork, 28), movedBy(daysWork, 19)), mayAsk: []planner.WorkID{meanWork, daysWork}},
+		{name: "least days between", typed: []typing{ofWork(meanWork, "gap", 80), ofWork(growthWork, "gap", 3)},
 			change: func(*planner.Plan) []planner.Edit {
-				return []planner.Edit{planner.SetLimits{Work: byMean, Limits: planner.Limits{LeastDays: 80}}, planner.SetLimits{Work: byGrowth, Limits: planner.Limits{LeastDays: 3}}}
+				return []planner.Edit{planner.SetLimits{Work: meanWork, Limits: planner.Limits{LeastDays: 80}}, planner.SetLimits{Work: growthWork, Limits: planner.Limits{LeastDays: 3}}}
 			}},
 		{name: "a warm day ahead", typed: warm, change: setDay(now+2, unit(33.5, 92.5), unit(21, 70)), asks: byWeather},
 		{name: "a past day's mean", typed: []typing{onDay("d_mean", now-6, unit(18.2, 66.5))}, asks: byWeather,
@@ -258,35 +260,35 @@ func trials(p planner.Plan) []trial {
 			change: byRecord(now-6, func(f *planner.DayFacts, _ planner.Units) { f.HasHourly, f.HourlyC = false, 0 })},
 		{name: "a past day's high and low cleared", typed: []typing{onDay("d_high", now-6, nil), onDay("d_low", now-6, nil)}, asks: byWeather,
 			change: byRecord(now-6, func(f *planner.DayFacts, _ planner.Units) { f.HasExtremes, f.HighC, f.LowC = false, 0, 0 })},
-		{name: "another base", typed: []typing{ofWork(byMean, "base", unit(4, 50))}, asks: []planner.WorkID{byMean},
-			change: bySettings(byMean, func(s *planner.WorkSettings, u planner.Units) { s.Thresholds.LowerC = u.TemperatureC(unit(4, 50)) })},
-		{name: "another upper limit", typed: []typing{ofWork(bySine, "upper", unit(16, 64))}, asks: []planner.WorkID{bySine},
-			change: bySettings(bySine, func(s *planner.WorkSettings, u planner.Units) { s.Thresholds.UpperC = u.TemperatureC(unit(16, 64)) })},
-		{name: "another optimum and width", typed: []typing{into("in_s1_t2_optimum", unit(18, 62)), into("in_s1_t2_width", unit(7, 9.5))}, asks: []planner.WorkID{byGrowth, byNitrogen},
+		{name: "another base", typed: []typing{ofWork(meanWork, "base", unit(4, 50))}, asks: []planner.WorkID{meanWork},
+			change: bySettings(meanWork, func(s *planner.WorkSettings, u planner.Units) { s.Thresholds.LowerC = u.TemperatureC(unit(4, 50)) })},
+		{name: "another upper limit", typed: []typing{ofWork(sineWork, "upper", unit(16, 64))}, asks: []planner.WorkID{sineWork},
+			change: bySettings(sineWork, func(s *planner.WorkSettings, u planner.Units) { s.Thresholds.UpperC = u.TemperatureC(unit(16, 64)) })},
+		{name: "another optimum and width", typed: []typing{into("in_s1_t2_optimum", unit(18, 62)), into("in_s1_t2_width", unit(7, 9.5))}, asks: []planner.WorkID{growthWork, feedWork},
 			change: byTurf(0, 1, func(turf *planner.Turf, u planner.Units) {
 				turf.Curve.OptimumC, turf.Curve.WidthC = u.TemperatureC(unit(18, 62)), u.DifferenceC(unit(7, 9.5))
 			})},
-		{name: "another ceiling", typed: []typing{into("in_s1_t2_ceiling", 2.5)}, asks: []planner.WorkID{byNitrogen}, mayAsk: []planner.WorkID{byGrowth},
+		{name: "another ceiling", typed: []typing{into("in_s1_t2_ceiling", 2.5)}, asks: []planner.WorkID{feedWork}, mayAsk: []planner.WorkID{growthWork},
 			change: byTurf(0, 1, func(turf *planner.Turf, _ planner.Units) { turf.CeilingGM2 = 2.5 })},
 		{name: "what a feed gave at once", typed: []typing{inRow("log_quick", 1, 2.25), inRow("log_quick", 0, 1)},
 			change: together(byFeed(0, split(2.25, 0)), byFeed(1, split(1, 0.4)))},
-		{name: "what a feed gives slowly", typed: []typing{inRow("log_slow", 0, 1.1)}, asks: []planner.WorkID{byNitrogen}, change: byFeed(1, split(1.2, 1.1))},
+		{name: "what a feed gives slowly", typed: []typing{inRow("log_slow", 0, 1.1)}, asks: []planner.WorkID{feedWork}, change: byFeed(1, split(1.2, 1.1))},
 		{name: "the newest feed's date", typed: []typing{inRow("log_date", 1, serial(now-11))},
 			change: byFeed(0, func(entry *planner.Entry, _ *planner.Pass) { entry.Day += 4 })},
 		{name: "rows put in among the days", typed: []typing{rows("insert", "d_date", typing{"day": serial(now - 8)}), rows("insert", "d_date", typing{"day": serial(now + 8)}),
-			ofWork(byMean, "target", unit(400, 777))}, change: setTarget(byMean, unit(400, 777), planner.DegreeDays)},
+			ofWork(meanWork, "target", unit(400, 777))}, change: setTarget(meanWork, unit(400, 777), planner.DegreeDays)},
 		{name: "rows put in above the works", typed: []typing{rows("insert", "in_w1_target", nil), rows("insert", "in_w3_target", nil),
-			ofWork(bySine, "target", 150)}, change: setTarget(bySine, 150, planner.DegreeDays)},
+			ofWork(sineWork, "target", 150)}, change: setTarget(sineWork, 150, planner.DegreeDays)},
 		{name: "a past day's row deleted", typed: []typing{rows("delete", "d_date", typing{"day": serial(now - 3)})}, without: []planner.Day{now - 3}, change: together(),
-			asks: append([]planner.WorkID{byDays}, byWeather...)},
+			asks: append([]planner.WorkID{daysWork}, byWeather...)},
 		{name: "the row of a day ahead deleted", typed: []typing{rows("delete", "d_date", typing{"day": serial(now + 3)})}, without: []planner.Day{now + 3}, change: together(),
-			asks: append([]planner.WorkID{byDays}, byWeather...)},
-		{name: "many at once, saved between", typed: []typing{ofWork(byMean, "target", 260), ofWork(byMean, "gap", 20), inRow("log_quick", 1, 1.9), ofWork(byGrowth, "last", serial(now-16))},
-			change: together(setTarget(byMean, 260, planner.DegreeDays), byFeed(0, split(1.9, 0)), moved(byGrowth, 4),
-				bySettings(byMean, func(s *planner.WorkSettings, _ planner.Units) { s.Limits.LeastDays = 20 })),
-			then: &trial{name: "then more", typed: append([]typing{rows("insert", "d_date", typing{"day": serial(now + 1)}), ofWork(bySine, "base", unit(7, 45))}, warm...), asks: byWeather,
+			asks: append([]planner.WorkID{daysWork}, byWeather...)},
+		{name: "many at once, saved between", typed: []typing{ofWork(meanWork, "target", 260), ofWork(meanWork, "gap", 20), inRow("log_quick", 1, 1.9), ofWork(growthWork, "last", serial(now-16))},
+			change: together(setTarget(meanWork, 260, planner.DegreeDays), byFeed(0, split(1.9, 0)), movedBy(growthWork, 4),
+				bySettings(meanWork, func(s *planner.WorkSettings, _ planner.Units) { s.Limits.LeastDays = 20 })),
+			then: &trial{name: "then more", typed: append([]typing{rows("insert", "d_date", typing{"day": serial(now + 1)}), ofWork(sineWork, "base", unit(7, 45))}, warm...), asks: byWeather,
 				change: together(setDay(now+2, unit(33.5, 92.5), unit(21, 70)),
-					bySettings(bySine, func(s *planner.WorkSettings, u planner.Units) { s.Thresholds.LowerC = u.TemperatureC(unit(7, 45)) }))}},
+					bySettings(sineWork, func(s *planner.WorkSettings, u planner.Units) { s.Thresholds.LowerC = u.TemperatureC(unit(7, 45)) }))}},
 	}
 }
 
@@ -294,21 +296,106 @@ func trials(p planner.Plan) []trial {
 // record: the dates of all works but two rest on members in the past too.
 func gapTrials(p planner.Plan) []trial {
 	now := p.AsOf
-	gone := []planner.WorkID{byMean, bySine, byGrowth, byNitrogen}
+	gone := []planner.WorkID{meanWork, sineWork, growthWork, feedWork}
 	return []trial{
 		{name: "nothing", change: together()},
-		{name: "targets", typed: []typing{ofWork(byMean, "target", 400), ofWork(byTwoSines, "target", 150), ofWork(byNitrogen, "target", 0)}, asks: []planner.WorkID{byMean, byNitrogen},
-			change: together(setTarget(byMean, 400, planner.DegreeDays), setTarget(byTwoSines, 150, planner.DegreeDays), setTarget(byNitrogen, 0, planner.NitrogenGM2))},
-		{name: "a last date", typed: []typing{ofWork(byMean, "last", serial(now-19)), ofWork(byTwoSines, "last", serial(now-5))}, asks: []planner.WorkID{byMean}, change: together(moved(byMean, 6), moved(byTwoSines, -1))},
-		{name: "a last date after the gap", typed: []typing{ofWork(byMean, "last", serial(now-2))}, mayAsk: []planner.WorkID{byMean}, change: moved(byMean, 23)},
-		{name: "least days between", typed: []typing{ofWork(byMean, "gap", 80)},
-			change: bySettings(byMean, func(s *planner.WorkSettings, _ planner.Units) { s.Limits.LeastDays = 80 })},
-		{name: "another base", typed: []typing{ofWork(byMean, "base", 4)}, asks: []planner.WorkID{byMean},
-			change: bySettings(byMean, func(s *planner.WorkSettings, _ planner.Units) { s.Thresholds.LowerC = 4 })},
+		{name: "targets", typed: []typing{ofWork(meanWork, "target", 400), ofWork(twoSinesWork, "target", 150), ofWork(feedWork, "target", 0)}, asks: []planner.WorkID{meanWork, feedWork},
+			change: together(setTarget(meanWork, 400, planner.DegreeDays), setTarget(twoSinesWork, 150, planner.DegreeDays), setTarget(feedWork, 0, planner.NitrogenGM2))},
+		{name: "a last date", typed: []typing{ofWork(meanWork, "last", serial(now-19)), ofWork(twoSinesWork, "last", serial(now-5))}, asks: []planner.WorkID{meanWork}, change: together(movedBy(meanWork, 6), movedBy(twoSinesWork, -1))},
+		{name: "a last date after the gap", typed: []typing{ofWork(meanWork, "last", serial(now-2))}, mayAsk: []planner.WorkID{meanWork}, change: movedBy(meanWork, 23)},
+		{name: "least days between", typed: []typing{ofWork(meanWork, "gap", 80)},
+			change: bySettings(meanWork, func(s *planner.WorkSettings, _ planner.Units) { s.Limits.LeastDays = 80 })},
+		{name: "another base", typed: []typing{ofWork(meanWork, "base", 4)}, asks: []planner.WorkID{meanWork},
+			change: bySettings(meanWork, func(s *planner.WorkSettings, _ planner.Units) { s.Thresholds.LowerC = 4 })},
 		{name: "a warm day ahead", typed: []typing{onDay("d_high", now+2, 33.5), onDay("d_low", now+2, 21), onDay("d_mean", now+2, nil)}, change: setDay(now+2, 33.5, 21), asks: byWeather},
 		{name: "rows put in", typed: []typing{rows("insert", "d_date", typing{"day": serial(now - 10)}), rows("insert", "in_w2_target", nil)}, change: together()},
-		{name: "many, saved between", typed: []typing{ofWork(byDays, "target", 45)}, change: setTarget(byDays, 45, planner.Days),
-			then: &trial{name: "then more", typed: []typing{ofWork(byGrowth, "target", 20)}, change: setTarget(byGrowth, 20, planner.GrowthDays), mayAsk: gone, asks: []planner.WorkID{byGrowth}}},
+		{name: "many, saved between", typed: []typing{ofWork(daysWork, "target", 45)}, change: setTarget(daysWork, 45, planner.Days),
+			then: &trial{name: "then more", typed: []typing{ofWork(growthWork, "target", 20)}, change: setTarget(growthWork, 20, planner.GrowthDays), mayAsk: gone, asks: []planner.WorkID{growthWork}}},
+	}
+}
+
+// job is what is typed into one workbook, step by step, as testdata/edit.py
+// takes it: after each step the book is saved, closed and opened again.
+type job struct {
+	Source string `json:"source"`
+	Steps  []step `json:"steps"`
+}
+
+type step struct {
+	Target string   `json:"target"`
+	Edits  []typing `json:"edits"`
+}
+
+// typeAll does the jobs in one LibreOffice.
+func typeAll(t *testing.T, dir string, jobs []job) {
+	t.Helper()
+	text, err := json.Marshal(jobs)
+	if err != nil {
+		t.Fatal(err)
+	}
+	list := filepath.Join(dir, "jobs.json")
+	if err := os.WriteFile(list, text, 0o644); err != nil {
+		t.Fatal(err)
+	}
+	if said, err := exec.Command("/usr/bin/python3", "testdata/edit.py", list).CombinedOutput(); err != nil {
+		t.Fatalf("%v: %s", err, said)
+	}
+}
+
+// typed is a workbook after edits typed through LibreOffice.
+func typed(t *testing.T, book []byte, edits []map[string]any) *excelize.File {
+	t.Helper()
+	dir := t.TempDir()
+	in, out := filepath.Join(dir, "in.xlsx"), filepath.Join(dir, "out.xlsx")
+	if err := os.WriteFile(in, book, 0o644); err != nil {
+		t.Fatal(err)
+	}
+	var all []typing
+	for _, edit := range edits {
+		all = append(all, edit)
+	}
+	typeAll(t, dir, []job{{in, []step{{out, all}}}})
+	content, err := os.ReadFile(out)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return open(t, content)
+}
+
+// A sheet that was edited and saved by LibreOffice still says which it is, takes
+// the same inputs only, and holds what was typed.
+func TestWhatAnOfficeSavesBack(t *testing.T) {
+	if slowPlans() == 0 {
+		t.Skip("types edits in LibreOffice with SWARDBOOK_SLOW=1")
+	}
+	t.Parallel()
+	book := build(t, edited(planner.Celsius, false))
+	file := typed(t, book, []map[string]any{{"name": "in_w1_target", "value": 412.5}, {"sheet": "days", "cell": "B9", "value": 24.5}, {"sheet": "days", "insert": 20}})
+	const id = "swardbook-sheet-7-form-1"
+	if props, err := file.GetCustomProps(); err != nil || len(props) != 1 || props[0].Value != id {
+		t.Errorf("custom properties %v, %v", props, err)
+	}
+	read := func(name string) string {
+		sheet, cell := gridOf(t, book).named(t, name)
+		text, err := file.GetCellValue(sheet, cell, excelize.Options{RawCellValue: true})
+		if err != nil {
+			t.Fatal(err)
+		}
+		return text
+	}
+	if got := read("wb_id"); got != id {
+		t.Errorf("the id reads %q", got)
+	}
+	if got := read("in_w1_target"); got != "412.5" {
+		t.Errorf("the target reads %q", got)
+	}
+	if got, err := file.GetCellValue("days", "B9"); err != nil || got != "24.5" {
+		t.Errorf("the high reads %q, %v", got, err)
+	}
+	for _, sheet := range []string{"days", "works and log"} {
+		if rules, err := file.GetDataValidations(sheet); err != nil || len(rules) == 0 || !rules[0].ShowErrorMessage {
+			t.Errorf("%s takes anything: %v", sheet, err)
+		}
 	}
 }
 
@@ -319,14 +406,6 @@ func TestEditsInLibreOffice(t *testing.T) {
 		t.Skip("types edits in LibreOffice with SWARDBOOK_SLOW=1")
 	}
 	t.Parallel()
-	type step struct {
-		Target string   `json:"target"`
-		Edits  []typing `json:"edits"`
-	}
-	type job struct {
-		Source string `json:"source"`
-		Steps  []step `json:"steps"`
-	}
 	dir := t.TempDir()
 	var jobs []job
 	sets := []struct {
@@ -347,24 +426,14 @@ func TestEditsInLibreOffice(t *testing.T) {
 			t.Fatal(err)
 		}
 		for j := range set.trials {
-			typed := job{Source: source}
+			one := job{Source: source}
 			for k, trial := 0, &set.trials[j]; trial != nil; k, trial = k+1, trial.then {
-				typed.Steps = append(typed.Steps, step{saved(i, j, k), append([]typing{}, trial.typed...)})
+				one.Steps = append(one.Steps, step{saved(i, j, k), append([]typing{}, trial.typed...)})
 			}
-			jobs = append(jobs, typed)
+			jobs = append(jobs, one)
 		}
 	}
-	text, err := json.Marshal(jobs)
-	if err != nil {
-		t.Fatal(err)
-	}
-	list := filepath.Join(dir, "jobs.json")
-	if err := os.WriteFile(list, text, 0o644); err != nil {
-		t.Fatal(err)
-	}
-	if said, err := exec.Command("/usr/bin/python3", "testdata/edit.py", list).CombinedOutput(); err != nil {
-		t.Fatalf("%v: %s", err, said)
-	}
+	typeAll(t, dir, jobs)
 	for i, set := range sets {
 		issued := inputOf(t, set.plan(), 1).Data
 		for j := range set.trials {
@@ -446,7 +515,7 @@ func heldTo(t *testing.T, g grid, plan planner.Plan, work planner.SheetWork, c i
 	const sheet = "works and log"
 	state, due := work.State, work.Counts[c].Due
 	_, cell := g.named(t, fmt.Sprintf("in_w%d_target", state.Work.ID))
-	row, heads := rowOf(cell)+c, g.rowThat(t, sheet, "surface")
+	row, heads := rowNumber(cell)+c, g.rowThat(t, sheet, "surface")
 	read := func(head string) gridCell {
 		return g.at(sheet, fmt.Sprintf("%s%d", g.headed(t, sheet, heads, head), row))
 	}

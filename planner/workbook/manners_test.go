@@ -218,7 +218,7 @@ func nastyPlan() planner.Plan {
 		plan.Works[i].Name = texts[i+2]
 	}
 	for i, text := range texts {
-		plan.Log = append(plan.Log, planner.Entry{ID: planner.EntryID(500 + i), Site: 1, Day: plan.AsOf - 1, By: texts[len(texts)-1-i], Note: text, Passes: []planner.Pass{{Work: byDays}}})
+		plan.Log = append(plan.Log, planner.Entry{ID: planner.EntryID(500 + i), Site: 1, Day: plan.AsOf - 1, By: texts[len(texts)-1-i], Note: text, Passes: []planner.Pass{{Work: daysWork}}})
 	}
 	for i, text := range texts[:6] {
 		plan.Closed = append(plan.Closed, planner.Closed{ID: planner.ClosedID(i + 1), Site: 1, Name: text, From: plan.AsOf, To: plan.AsOf + 3})

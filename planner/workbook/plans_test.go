@@ -19,12 +19,14 @@ type maker struct {
 	plan   planner.Plan
 }
 
+func (m *maker) plain() bool { return m.number%4 == 0 }
+
 // in says yes once in so many times.
 func (m *maker) in(times int) bool { return m.IntN(times) == 0 }
 
 // randomPlan is an invented plan: what it holds comes from the number. The
 // methods and cutoffs go round with the number, so that a run of plans has all
-// of them.
+// of them. Every fourth is plain: in °C, both means, no long gap.
 func randomPlan(number uint64) planner.Plan {
 	m := &maker{Rand: rand.New(rand.NewPCG(number, 5)), number: number}
 	m.site()
@@ -40,7 +42,7 @@ func randomPlan(number uint64) planner.Plan {
 // February, one in six shortly after a year's end.
 func (m *maker) site() {
 	m.plan.Site = planner.Site{ID: 1, Name: "Quillmere & Co", Lat: 40, Zone: "Europe/Dublin", Units: planner.Celsius}
-	if m.in(2) {
+	if m.IntN(3) > 0 && !m.plain() {
 		m.plan.Site.Units = planner.Fahrenheit
 	}
 	if m.in(3) {
@@ -71,6 +73,11 @@ const (
 	extremesOnly
 )
 
+// weatherOn is an invented day in °C.
+func weatherOn(r *rand.Rand, day planner.Day) planner.DayFacts {
+	return (&maker{Rand: r}).day(day, bothMeans)
+}
+
 // day is an invented day; now and then one mean is not known.
 func (m *maker) day(day planner.Day, has means) planner.DayFacts {
 	low := m.typed(-6, 26)
@@ -97,10 +104,13 @@ func (m *maker) day(day planner.Day, has means) planner.DayFacts {
 func (m *maker) weather() {
 	p := &m.plan
 	has := bothMeans
-	if m.in(4) {
+	if m.in(3) && !m.plain() {
 		has = []means{hourlyOnly, extremesOnly}[m.IntN(2)]
 	}
 	length := 60 + m.IntN(100)
+	if m.plain() {
+		length = 120
+	}
 	for day := p.AsOf - planner.Day(length); day < p.AsOf; day++ {
 		p.Record.Facts = append(p.Record.Facts, m.day(day, has))
 	}
@@ -110,16 +120,16 @@ func (m *maker) weather() {
 		}
 	}
 	if m.in(2) {
-		lose(length-2-m.IntN(50), 1+m.IntN(3))
+		lose(length-5-m.IntN(50), 1+m.IntN(3))
 	}
-	if m.in(3) {
+	if m.in(2) && !m.plain() {
 		lose(length-5-m.IntN(45), 4+m.IntN(5))
 	}
-	if m.in(6) {
+	if m.in(6) && !m.plain() {
 		lose(length-1, 1)
 	}
 	reach := length
-	if m.in(4) { // works may have been done before the station stood
+	if m.in(3) && !m.plain() { // works may have been done before the station stood
 		reach += 40
 	}
 	start := p.AsOf

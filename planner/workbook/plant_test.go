@@ -126,7 +126,7 @@ func TestPlantedFaultsAreCaught(t *testing.T) {
 	}
 	t.Parallel()
 	plan := edited(planner.Celsius, false)
-	plan.Works = slices.DeleteFunc(plan.Works, func(work planner.Work) bool { return work.ID > byNitrogen || work.ID == byGrowth })
+	plan.Works = slices.DeleteFunc(plan.Works, func(work planner.Work) bool { return work.ID > feedWork || work.ID == growthWork })
 	plan.Outlook.Path, plan.Outlook.Members = plan.Outlook.Path[:50], plan.Outlook.Members[:3]
 	for i := range plan.Outlook.Members {
 		plan.Outlook.Members[i] = plan.Outlook.Members[i][:50]

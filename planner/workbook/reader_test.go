@@ -5,7 +5,6 @@ import (
 	"bytes"
 	"encoding/xml"
 	"errors"
-	"fmt"
 	"io"
 	"os"
 	"strconv"
@@ -213,10 +212,10 @@ func open(t testing.TB, content []byte) *excelize.File {
 	return file
 }
 
-// columnOf is the letters of a cell's name, rowOf its number.
+// columnOf is the letters of a cell's name, rowNumber its number.
 func columnOf(cell string) string { return strings.TrimRight(cell, "0123456789") }
 
-func rowOf(cell string) int {
+func rowNumber(cell string) int {
 	row, _ := strconv.Atoi(strings.TrimLeft(cell, "ABCDEFGHIJKLMNOPQRSTUVWXYZ"))
 	return row
 }
@@ -225,7 +224,7 @@ func rowOf(cell string) int {
 func (g grid) headed(t testing.TB, sheet string, row int, head string) string {
 	t.Helper()
 	for _, name := range g.order[sheet] {
-		if rowOf(name) == row && g.at(sheet, name).text == head {
+		if rowNumber(name) == row && g.at(sheet, name).text == head {
 			return columnOf(name)
 		}
 	}
@@ -238,7 +237,7 @@ func (g grid) rowThat(t testing.TB, sheet, reads string) int {
 	t.Helper()
 	for _, name := range g.order[sheet] {
 		if columnOf(name) == "A" && g.at(sheet, name).text == reads {
-			return rowOf(name)
+			return rowNumber(name)
 		}
 	}
 	t.Fatalf("no row of %s begins with %q", sheet, reads)
@@ -275,6 +274,6 @@ func TestReaderOfTheTests(t *testing.T) {
 		}
 	}
 	if sheet, cell := g.named(t, "one"); sheet != "Sheet1" || cell != "A1" {
-		t.Error(fmt.Sprintf("the name stands at %s!%s", sheet, cell))
+		t.Errorf("the name stands at %s!%s", sheet, cell)
 	}
 }

@@ -12,6 +12,10 @@ LibreOffice does all jobs. The edits:
 {"name": NAME, ..., "rows": "insert"}  puts an empty row above that cell's
 {"name": NAME, ..., "rows": "delete"}  deletes that cell's row
 
+{"sheet": S, "cell": C, "value": V}    types into a cell
+{"sheet": S, "insert": ROW}            puts an empty row there, rows from 0
+{"sheet": S, "delete": ROW}            deletes the row
+
 V is a number; null clears the cell. A locked cell, or one that does not hold
 afterwards what was typed, ends everything.
 """
@@ -49,16 +53,25 @@ def put(cell, value, edit):
         raise SystemExit("not taken: %s" % edit)
 
 
-def do(book, edit):
-    cell = find(book, edit)
-    if "rows" not in edit:
-        return put(cell, edit["value"], edit)
-    at, sheet = cell.CellAddress.Row, cell.Spreadsheet
+def change_rows(sheet, at, insert):
     sheet.unprotect("")
-    if edit["rows"] == "insert":
+    if insert:
         sheet.Rows.insertByIndex(at, 1)
     else:
         sheet.Rows.removeByIndex(at, 1)
+
+
+def do(book, edit):
+    if "sheet" in edit:
+        sheet = book.Sheets.getByName(edit["sheet"])
+        if "cell" not in edit:
+            return change_rows(sheet, edit["insert" if "insert" in edit else "delete"], "insert" in edit)
+        cell = sheet.getCellRangeByName(edit["cell"])
+    else:
+        cell = find(book, edit)
+        if "rows" in edit:
+            return change_rows(cell.Spreadsheet, cell.CellAddress.Row, edit["rows"] == "insert")
+    put(cell, edit["value"], edit)
 
 
 def run(desktop, jobs):
