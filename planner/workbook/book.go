@@ -28,8 +28,9 @@ type Input struct {
 }
 
 // Build writes the workbook: the week, the days' arithmetic, works and log, the
-// two means compared, nitrogen, the issued curves, notes. Text that users typed is written as text and never as a
-// formula. Weeks outside 1 to 8 are brought inside.
+// two means compared, nitrogen, the issued curves and inputs, notes. Text that
+// users typed is written as text and never as a formula. Weeks outside 1 to 8
+// are brought inside.
 func Build(in Input) (content []byte, err error) {
 	in.Weeks = min(max(in.Weeks, 1), 8)
 	b := &book{Input: in, file: excelize.NewFile(), units: in.Plan.Site.Units, refs: map[string]string{}}
@@ -48,15 +49,18 @@ func Build(in Input) (content []byte, err error) {
 	parts := []struct {
 		name  string
 		write func(*page) error
-	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {meansSheet, b.means}, {nitrogenSheet, b.nitrogen}, {curvesSheet, b.curves}, {notesSheet, b.notes}}
+	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {meansSheet, b.means}, {nitrogenSheet, b.nitrogen},
+		{curvesSheet, b.curves}, {issuedSheet, b.issued}, {notesSheet, b.notes}}
 	for _, part := range parts[1:] {
 		if _, err := b.file.NewSheet(part.name); err != nil {
 			return nil, fmt.Errorf("add the sheet %s: %w", part.name, err)
 		}
 	}
 	// Now, while the sheets are empty: later these would read all of them back.
-	if err := b.file.SetSheetVisible(curvesSheet, false); err != nil {
-		return nil, fmt.Errorf("hide the curves: %w", err)
+	for _, name := range []string{curvesSheet, issuedSheet} {
+		if err := b.file.SetSheetVisible(name, false); err != nil {
+			return nil, fmt.Errorf("hide the sheet %s: %w", name, err)
+		}
 	}
 	b.file.SetActiveSheet(0)
 	for _, part := range parts {
@@ -82,6 +86,7 @@ const (
 	meansSheet    = "means compared"
 	nitrogenSheet = "nitrogen"
 	curvesSheet   = "curves"
+	issuedSheet   = "as issued"
 	notesSheet    = "notes"
 )
 
@@ -163,12 +168,14 @@ func (b *book) write(name string, fill func(*page) error) error {
 
 // dimension is the range of a sheet's cells, which some readers trust.
 func (b *book) dimension(name string) string {
+	_, _, _, keyEnd := b.keyColumns()
 	last := map[string][2]int{
-		weekSheet:     {b.weekColumns(), weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
+		weekSheet:     {keyEnd, weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
 		daysSheet:     {b.at.columns, daysHead + len(b.Data.Days)},
-		worksSheet:    {len(workColumns()), b.at.worksEnd},
+		worksSheet:    {len(b.workColumns()), b.at.worksEnd},
 		meansSheet:    {6, meansHead + len(b.bothMeans())},
-		nitrogenSheet: {9, 4 + 2*len(b.Evaluation.Nitrogen)},
+		nitrogenSheet: {12, 6 + 2*len(b.Data.Nitrogen)},
+		issuedSheet:   {3, issuedHead + len(b.at.issued)},
 		curvesSheet:   {1 + 3*b.at.counts, 1 + b.ahead()},
 		notesSheet:    {4, len(calc.Catalogue()) + 20},
 	}[name]
@@ -221,20 +228,6 @@ func (b *book) manners(p *page) error {
 
 // Outlook is the day on which the days ahead were issued.
 func (in Input) Outlook() planner.Day { return in.Evaluation.Outlook.AsOf }
-
-// number lets an input take numbers between the two.
-func (p *page) number(cells string, lowest, highest float64, prompt string) error {
-	rule := excelize.NewDataValidation(true)
-	rule.SetSqref(cells)
-	plain := func(value float64) string { return fmt.Sprintf("%.6g", value) }
-	if err := rule.SetRange(plain(lowest), plain(highest), excelize.DataValidationTypeDecimal, excelize.DataValidationOperatorBetween); err != nil {
-		return err
-	}
-	rule.SetInput("Input", prompt)
-	rule.SetError(excelize.DataValidationErrorStyleStop, "This cannot be", fmt.Sprintf("Give a number from %g to %g.", lowest, highest))
-	p.rules = append(p.rules, rule)
-	return nil
-}
 
 // identify sets the names and the ids that travel with the file.
 func (b *book) identify() error {
