@@ -138,10 +138,13 @@ func (p *page) add(cells ...any) (int, error) {
 }
 
 // tall writes a row with room to write by hand.
-func (p *page) tall(cells ...any) (int, error) {
-	const points = 34
+func (p *page) tall(cells ...any) (int, error) { return p.rowOf(1, cells...) }
+
+// rowOf writes a tall row with room for so many lines of text.
+func (p *page) rowOf(lines int, cells ...any) (int, error) {
+	const points, ofLine = 34, 14
 	p.row++
-	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells, excelize.RowOpts{Height: points})
+	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells, excelize.RowOpts{Height: min(max(points, float64(ofLine*lines)), excelize.MaxRowHeight)})
 }
 
 func (b *book) write(name string, fill func(*page) error) error {
@@ -204,8 +207,14 @@ func (b *book) manners(p *page) error {
 		high = 1
 	case daysSheet:
 		wide = (b.at.columns + perPage - 1) / perPage
+	case worksSheet:
+		wide = (printedColumns + perPage - 1) / perPage
 	}
 	if err := b.file.SetPageLayout(p.name, &excelize.PageLayoutOptions{Size: &size, Orientation: &orientation, FitToWidth: &wide, FitToHeight: &high}); err != nil {
+		return err
+	}
+	edge, top, line := 0.4, 0.75, 0.35 // inches: the week shall be read from a wall
+	if err := b.file.SetPageMargins(p.name, &excelize.PageLayoutMarginsOptions{Left: &edge, Right: &edge, Top: &top, Bottom: &top, Header: &line, Footer: &line}); err != nil {
 		return err
 	}
 	site := strings.ReplaceAll(b.Plan.Site.Name, "&", "&&")
@@ -237,8 +246,13 @@ func (b *book) identify() error {
 			return fmt.Errorf("%s: %w", name, err)
 		}
 	}
-	for sheet, rows := range map[string]string{daysSheet: fmt.Sprintf("$A:$A,'%s'!$%d:$%d", daysSheet, daysHead, daysHead), curvesSheet: "$1:$1"} {
-		err := b.file.SetDefinedName(&excelize.DefinedName{Name: "_xlnm.Print_Titles", RefersTo: fmt.Sprintf("'%s'!%s", sheet, rows), Scope: sheet})
+	for _, print := range []struct{ name, sheet, cells string }{
+		{"_xlnm.Print_Titles", daysSheet, fmt.Sprintf("$A:$A,'%s'!$%d:$%d", daysSheet, daysHead, daysHead)},
+		{"_xlnm.Print_Titles", curvesSheet, "$1:$1"},
+		{"_xlnm.Print_Titles", worksSheet, "$A:$B"},
+		{"_xlnm.Print_Area", worksSheet, fmt.Sprintf("$A$1:$%s$%d", column(printedColumns), b.at.worksEnd)}, // without what is as issued
+	} {
+		err := b.file.SetDefinedName(&excelize.DefinedName{Name: print.name, RefersTo: fmt.Sprintf("'%s'!%s", print.sheet, print.cells), Scope: print.sheet})
 		if err != nil {
 			return err
 		}

@@ -46,7 +46,7 @@ func (b *book) balance(nitrogen planner.SheetNitrogen, i, r int) []any {
 	of := func(format string) string { return fmt.Sprintf(format, id) }
 	cell := func(col string) string { return fmt.Sprintf("%s%d", col, r) }
 	before := fmt.Sprintf("IF(ISNUMBER(%[1]s),%[1]s+1<MIN(d_date),FALSE)", cell("B"))
-	used := fmt.Sprintf(`IF(AND(%[1]s,OR(%[2]s<>%[3]s,%[4]s)),"%[5]s",IF(%[1]s,%[6]s,0)+SUMPRODUCT((d_date>%[2]s)*(d_date<wb_asof)*(LEFT(d_from,7)<>"missing")*%[7]s))`,
+	used := fmt.Sprintf(`IFERROR(IF(AND(%[1]s,OR(%[2]s<>%[3]s,%[4]s)),"%[5]s",IF(%[1]s,%[6]s,0)+SUMPRODUCT((d_date>%[2]s)*(d_date<wb_asof)*(LEFT(d_from,7)<>"missing")*%[7]s)),"%[5]s")`,
 		before, cell("B"), cell("K"), b.turfChanged(state.Surface), askTheBot, cell("J"), usedName(state.Surface, facts.Basis))
 	return []any{
 		b.value(plainText, state.Surface.Name),

@@ -2,7 +2,9 @@ package workbook
 
 import (
 	"fmt"
+	"slices"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/xuri/excelize/v2"
 
@@ -28,11 +30,13 @@ func ownCount(work planner.SheetWork) int {
 
 // week writes the sheet that is pinned up: key numbers, then a row a day.
 func (b *book) week(p *page) error {
-	wides := append([]float64{17, 8, 8, 11, 9}, make([]float64, b.fallsColumn()-6)...)
-	for i, wide := range append(wides, 21, 21, 12, 7, 18) {
-		if wide == 0 {
-			wide = 10.5
-		}
+	const narrow, wordy = 10.5, 21
+	wides := append([]float64{17, 8, 8, 11, 9}, slices.Repeat([]float64{narrow}, b.fallsColumn()-6)...)
+	wides = append(wides, wordy, wordy, 12, 7, 18)
+	if _, _, product, last := b.keyColumns(); last == product { // few columns: the key numbers are wider
+		wides = append(wides, wordy, wordy, wordy)[:last]
+	}
+	for i, wide := range wides {
 		if err := p.SetColWidth(i+1, i+1, wide); err != nil {
 			return err
 		}
@@ -57,7 +61,8 @@ func (b *book) week(p *page) error {
 	}
 	first := p.row + 1
 	for i := range 7 * b.Weeks {
-		if _, err := p.tall(b.weekRow(p.row+1, i)...); err != nil {
+		cells, longest := b.weekRow(p.row+1, i)
+		if _, err := p.rowOf((longest+wordy-1)/wordy, cells...); err != nil {
 			return err
 		}
 	}
@@ -76,7 +81,7 @@ func (b *book) week(p *page) error {
 // the unit, how it stands and the product begin, and the last one.
 func (b *book) keyColumns() (unit, stands, product, last int) {
 	stands = max(b.fallsColumn(), 9)
-	return 8, stands, stands + 1, max(b.weekColumns(), stands+1)
+	return 8, stands, stands + 2, max(b.weekColumns(), stands+2)
 }
 
 // keyRows write a row for each work.
@@ -109,7 +114,7 @@ func (b *book) keyRows(p *page) error {
 		if err != nil {
 			return err
 		}
-		for _, span := range [][2]int{{unit, standing - 1}, {product, last}} {
+		for _, span := range [][2]int{{unit, standing - 1}, {standing, product - 1}, {product, last}} {
 			if span[0] == span[1] {
 				continue
 			}
@@ -245,8 +250,8 @@ func (b *book) weekHeads() []string {
 	return append(heads, "falls due", "product", "closed", "done", "notes")
 }
 
-// weekRow is one day of the week.
-func (b *book) weekRow(row, i int) []any {
+// weekRow is one day of the week, and the length of its longest words.
+func (b *book) weekRow(row, i int) (cells []any, longest int) {
 	day := b.Plan.AsOf + planner.Day(i)
 	at := 0
 	if len(b.Data.Days) > 0 {
@@ -263,7 +268,7 @@ func (b *book) weekRow(row, i int) []any {
 	}
 	t := b.units.Temperature
 	mid, hasMid := facts.Mean(planner.Midrange)
-	cells := []any{b.value(date, serial(day)),
+	cells = []any{b.value(date, serial(day)),
 		b.live(oneDecimal, lookup("d_high"), orBlank(t(facts.HighC), facts.HasExtremes)),
 		b.live(oneDecimal, lookup("d_low"), orBlank(t(facts.LowC), facts.HasExtremes)),
 		b.live(oneDecimal, lookup("d_mean"), orBlank(t(facts.HourlyC), facts.HasHourly)),
@@ -294,7 +299,11 @@ func (b *book) weekRow(row, i int) []any {
 	}
 	falls := b.onDay(row, i, day, "AF", workWords)
 	product := b.onDay(row, i, day, "AG", b.productWords)
-	return append(cells, falls, product, b.value(plainText, b.closedOn(day)), b.value(room, "☐"), b.value(room, ""))
+	closed := b.value(plainText, b.closedOn(day))
+	for _, words := range []excelize.Cell{falls, product} {
+		longest = max(longest, utf8.RuneCountInString(fmt.Sprint(words.Value)))
+	}
+	return append(cells, falls, product, closed, b.value(room, "☐"), b.value(room, "")), longest
 }
 
 // longestFormula is what a spreadsheet program takes as one formula.

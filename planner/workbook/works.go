@@ -9,6 +9,9 @@ import (
 	"swardbook/planner"
 )
 
+// printedColumns are A to Z: those after them keep what is as issued.
+const printedColumns = 26
+
 // workColumns are the heads of the works, A to AG.
 func (b *book) workColumns() []string {
 	area := b.units.Amounts(planner.MassRate).Area
@@ -24,6 +27,9 @@ const askTheBot = "ask the bot"
 // works writes the works, the grass and the log: the inputs.
 func (b *book) works(p *page) error {
 	if err := p.SetColWidth(1, len(b.workColumns()), 13); err != nil {
+		return err
+	}
+	if err := p.SetPanes(&excelize.Panes{Freeze: true, XSplit: 2, TopLeftCell: "C1", ActivePane: "topRight"}); err != nil {
 		return err
 	}
 	if _, err := p.add(b.value(title, "Works and log")); err != nil {
@@ -240,7 +246,7 @@ func (b *book) throughText(w, c int, cell func(string) string) string {
 	if b.at.works[w].hours != "" {
 		ask = fmt.Sprintf("OR(%s,wb_changed,%s)", ask, b.changed(workName(work, "base"), workName(work, "upper")))
 	}
-	return fmt.Sprintf(`IF(%s,"%s",SUMIFS(%s,d_date,">"&%s,d_date,"<"&wb_asof))`, ask, askTheBot, countName(work, work.Counts[c], "units"), cell("I"))
+	return fmt.Sprintf(`IFERROR(IF(%[1]s,"%[2]s",SUMIFS(%[3]s,d_date,">"&%[4]s,d_date,"<"&wb_asof)),"%[2]s")`, ask, askTheBot, countName(work, work.Counts[c], "units"), cell("I"))
 }
 
 // targetText is the target of the count: the input, or, of a work that counts
@@ -260,7 +266,7 @@ func (b *book) targetText(work planner.SheetWork, count planner.SheetCount, cell
 		}
 	}
 	before := fmt.Sprintf("%s+1<MIN(d_date)", first)
-	return fmt.Sprintf(`IF(AND(%[1]s,OR(%[2]s<>%.0[3]f,%[4]s)),"%[5]s",SUMIFS(log_quick,log_surface,%[6]d)+%[7]s-IF(%[1]s,%[8]s,0)-SUMIFS(%[9]s,d_date,">"&%[2]s,d_date,"<="&%[10]s)-%[11]s)`,
+	return fmt.Sprintf(`IFERROR(IF(AND(%[1]s,OR(%[2]s<>%.0[3]f,%[4]s)),"%[5]s",SUMIFS(log_quick,log_surface,%[6]d)+%[7]s-IF(%[1]s,%[8]s,0)-SUMIFS(%[9]s,d_date,">"&%[2]s,d_date,"<="&%[10]s)-%[11]s),"%[5]s")`,
 		before, first, serial(since), b.turfChanged(surface), askTheBot, surface.ID, slowThroughText(surface.ID, cell("I")), cell("AE"),
 		usedName(surface, count.Due.Basis), cell("I"), cell("H"))
 }
