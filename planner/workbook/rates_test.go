@@ -7,14 +7,16 @@ import (
 )
 
 // withRates gives the plan's surfaces an area and its passes rates of every
-// kind; one surface has no area where the last pass of its first work has none.
+// kind, and none.
 func withRates(plan planner.Plan) planner.Plan {
 	rates := []planner.Rate{
 		{Kind: planner.VolumeRate, Value: 0.12}, {Kind: planner.MassRate, Value: 14, NPercent: 21}, {},
 		{Kind: planner.MassRate, Value: 2.25}, {Kind: planner.VolumeRate, Value: 0.0307}, {Kind: planner.NutrientRate, Value: 1.5},
 	}
 	plan.Surfaces = append([]planner.Surface(nil), plan.Surfaces...)
-	plan.Surfaces[0].AreaM2, plan.Surfaces[1].AreaM2 = 5520, 11000
+	for i := range plan.Surfaces {
+		plan.Surfaces[i].AreaM2 = 5520 * float64(i+1)
+	}
 	var log []planner.Entry
 	for _, entry := range plan.Log {
 		entry.Passes = append([]planner.Pass(nil), entry.Passes...)
@@ -34,7 +36,7 @@ func TestLibreOfficeComputesAmounts(t *testing.T) {
 	if slowPlans() == 0 {
 		t.Skip("recalculates in LibreOffice with SWARDBOOK_SLOW=1")
 	}
-	var books [][]byte
+	books := [][]byte{build(t, standingPlan()), build(t, withRates(withGap(editedPlan())))}
 	for number := uint64(100); number < 112; number++ {
 		books = append(books, build(t, withRates(randomPlan(number))))
 	}
@@ -42,7 +44,7 @@ func TestLibreOfficeComputesAmounts(t *testing.T) {
 		faults, _ := differences(t, books[i], computed)
 		for j, fault := range faults {
 			if j < 6 {
-				t.Errorf("plan %d: %s", 100+i, fault)
+				t.Errorf("book %d: %s", i, fault)
 			}
 		}
 	}

@@ -159,10 +159,29 @@ func (b *book) keyRow(state planner.WorkState) (numbers []any, unit string, take
 		}
 		return numbers, unit, b.live(plainText, b.rateText(work, row), b.rateWords(work))
 	}
-	for range 6 {
-		numbers = append(numbers, b.value(plainText, ""))
+	blank := b.value(plainText, "")
+	numbers = append(numbers, blank, blank)
+	if facts, started := state.OwnFacts(); started && facts.Date().Known && state.Status != planner.Full {
+		// Last done before the sheet's days: the date is as issued.
+		numbers = append(numbers, b.value(strong, serial(facts.Date().Day)), b.value(whole, float64(facts.Date().Day-b.Plan.AsOf)))
+	} else {
+		numbers = append(numbers, blank, blank)
 	}
-	return numbers, "", b.value(plainText, "")
+	return append(numbers, blank, blank), "", blank
+}
+
+// leftOut are the rows of the key numbers of works that are due and whose
+// count begins before the days of the sheet.
+func (b *book) leftOut() (rows []int, names string) {
+	for i, state := range b.Evaluation.Works {
+		facts, started := state.OwnFacts()
+		counted := slices.ContainsFunc(b.Data.Works, func(work planner.SheetWork) bool { return work.State.Work.ID == state.Work.ID })
+		if date := facts.Date(); started && !counted && date.Known && date.Day <= b.Plan.AsOf && state.Status != planner.Full {
+			rows = append(rows, weekHead+1+i)
+			names += state.Surface.Name + " " + state.Work.Name + "; "
+		}
+	}
+	return rows, names
 }
 
 // stands says how the work stood on the morning, and what is in the way of its
@@ -298,6 +317,16 @@ func (b *book) weekRow(row, i int) (cells []any, longest int) {
 		cells = append(cells, b.live(oneDecimal, lookup(countName(work, count, "units")), orBlank(units, inside)))
 	}
 	falls := b.onDay(row, i, day, "AF", workWords)
+	if rows, names := b.leftOut(); i == 0 && len(rows) > 0 {
+		text := `""`
+		if falls.Formula != "" {
+			text = falls.Formula
+		}
+		for _, row := range rows {
+			text += fmt.Sprintf(`&$A$%d&"; "`, row)
+		}
+		falls = b.live(plainText, text, fmt.Sprint(falls.Value)+names)
+	}
 	product := b.onDay(row, i, day, "AG", b.productWords)
 	closed := b.value(plainText, b.closedOn(day))
 	for _, words := range []excelize.Cell{falls, product} {
