@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/xuri/excelize/v2"
 
@@ -137,14 +138,32 @@ func (p *page) add(cells ...any) (int, error) {
 	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells)
 }
 
-// tall writes a row with room to write by hand.
-func (p *page) tall(cells ...any) (int, error) { return p.rowOf(1, cells...) }
+// Heights of rows, in points.
+const (
+	handHeight = 34 // room to write by hand
+	lineHeight = 14
+)
 
-// rowOf writes a tall row with room for so many lines of text.
-func (p *page) rowOf(lines int, cells ...any) (int, error) {
-	const points, ofLine = 34, 14
+// tall writes a row with room to write by hand.
+func (p *page) tall(cells ...any) (int, error) { return p.high(handHeight, cells...) }
+
+// wrapped writes a row in which the text of its cells has room in columns so
+// wide, in letters; at least so high.
+func (p *page) wrapped(least float64, wide int, cells ...any) (int, error) {
+	lines := 1
+	for _, cell := range cells {
+		if cell, ok := cell.(excelize.Cell); ok {
+			if text, ok := cell.Value.(string); ok {
+				lines = max(lines, (utf8.RuneCountInString(text)+wide-1)/wide)
+			}
+		}
+	}
+	return p.high(min(max(least, float64(lineHeight*lines)), excelize.MaxRowHeight), cells...)
+}
+
+func (p *page) high(points float64, cells ...any) (int, error) {
 	p.row++
-	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells, excelize.RowOpts{Height: min(max(points, float64(ofLine*lines)), excelize.MaxRowHeight)})
+	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells, excelize.RowOpts{Height: points})
 }
 
 func (b *book) write(name string, fill func(*page) error) error {

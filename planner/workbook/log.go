@@ -12,7 +12,7 @@ func (b *book) grass(p *page) error {
 		return err
 	}
 	area := b.units.Amounts(planner.MassRate).Area
-	if _, err := p.add(b.heads("surface", "from", "optimum", "width", "most nitrogen a month, g/m²", "area, "+area)...); err != nil {
+	if _, err := p.wrapped(lineHeight, workWide, b.heads("surface", "from", "optimum", "width", "most nitrogen a month, g/m²", "area, "+area)...); err != nil {
 		return err
 	}
 	first := p.row + 1
@@ -61,7 +61,7 @@ func (b *book) log(p *page) error {
 		if over <= 0 { // nothing comes slowly without weeks
 			over, slow = 1, 0
 		}
-		if _, err := p.add(b.value(whole, float64(feed.surface.ID)), b.value(plainText, feed.surface.Name), b.value(inDate, serial(feed.Day)),
+		if _, err := p.wrapped(lineHeight, workWide, b.value(whole, float64(feed.surface.ID)), b.value(plainText, feed.surface.Name), b.value(inDate, serial(feed.Day)),
 			b.value(inTwo, feed.QuickGM2), b.value(inTwo, slow), b.value(inNumber, over)); err != nil {
 			return err
 		}
@@ -92,7 +92,7 @@ func (b *book) log(p *page) error {
 		return err
 	}
 	for _, entry := range b.passes() {
-		if _, err := p.add(b.value(date, serial(entry.Day)), b.value(plainText, b.what(entry)), b.value(plainText, entry.By), b.value(plainText, entry.Note),
+		if _, err := p.wrapped(lineHeight, workWide-2, b.value(date, serial(entry.Day)), b.value(plainText, b.what(entry)), b.value(plainText, entry.By), b.value(plainText, entry.Note),
 			b.value(plainText, b.each(entry, b.given)), b.value(plainText, b.each(entry, b.took))); err != nil {
 			return err
 		}

@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"slices"
 	"strings"
-	"unicode/utf8"
 
 	"github.com/xuri/excelize/v2"
 
@@ -61,8 +60,7 @@ func (b *book) week(p *page) error {
 	}
 	first := p.row + 1
 	for i := range 7 * b.Weeks {
-		cells, longest := b.weekRow(p.row+1, i)
-		if _, err := p.rowOf((longest+wordy-1)/wordy, cells...); err != nil {
+		if _, err := p.wrapped(handHeight, wordy, b.weekRow(p.row+1, i)...); err != nil {
 			return err
 		}
 	}
@@ -269,8 +267,8 @@ func (b *book) weekHeads() []string {
 	return append(heads, "falls due", "product", "closed", "done", "notes")
 }
 
-// weekRow is one day of the week, and the length of its longest words.
-func (b *book) weekRow(row, i int) (cells []any, longest int) {
+// weekRow is one day of the week.
+func (b *book) weekRow(row, i int) []any {
 	day := b.Plan.AsOf + planner.Day(i)
 	at := 0
 	if len(b.Data.Days) > 0 {
@@ -287,7 +285,7 @@ func (b *book) weekRow(row, i int) (cells []any, longest int) {
 	}
 	t := b.units.Temperature
 	mid, hasMid := facts.Mean(planner.Midrange)
-	cells = []any{b.value(date, serial(day)),
+	cells := []any{b.value(date, serial(day)),
 		b.live(oneDecimal, lookup("d_high"), orBlank(t(facts.HighC), facts.HasExtremes)),
 		b.live(oneDecimal, lookup("d_low"), orBlank(t(facts.LowC), facts.HasExtremes)),
 		b.live(oneDecimal, lookup("d_mean"), orBlank(t(facts.HourlyC), facts.HasHourly)),
@@ -328,11 +326,7 @@ func (b *book) weekRow(row, i int) (cells []any, longest int) {
 		falls = b.live(plainText, text, fmt.Sprint(falls.Value)+names)
 	}
 	product := b.onDay(row, i, day, "AG", b.productWords)
-	closed := b.value(plainText, b.closedOn(day))
-	for _, words := range []excelize.Cell{falls, product} {
-		longest = max(longest, utf8.RuneCountInString(fmt.Sprint(words.Value)))
-	}
-	return append(cells, falls, product, closed, b.value(room, "☐"), b.value(room, "")), longest
+	return append(cells, falls, product, b.value(plainText, b.closedOn(day)), b.value(room, "☐"), b.value(room, ""))
 }
 
 // longestFormula is what a spreadsheet program takes as one formula.

@@ -12,6 +12,9 @@ import (
 // printedColumns are A to Z: those after them keep what is as issued.
 const printedColumns = 26
 
+// workWide is how wide its columns are, in letters.
+const workWide = 13
+
 // workColumns are the heads of the works, A to AG.
 func (b *book) workColumns() []string {
 	area := b.units.Amounts(planner.MassRate).Area
@@ -26,7 +29,7 @@ const askTheBot = "ask the bot"
 
 // works writes the works, the grass and the log: the inputs.
 func (b *book) works(p *page) error {
-	if err := p.SetColWidth(1, len(b.workColumns()), 13); err != nil {
+	if err := p.SetColWidth(1, len(b.workColumns()), workWide); err != nil {
 		return err
 	}
 	if err := p.SetPanes(&excelize.Panes{Freeze: true, XSplit: 2, TopLeftCell: "C1", ActivePane: "topRight"}); err != nil {
@@ -35,7 +38,7 @@ func (b *book) works(p *page) error {
 	if _, err := p.add(b.value(title, "Works and log")); err != nil {
 		return err
 	}
-	if _, err := p.add(b.value(small, "as of"), b.value(date, serial(b.Plan.AsOf)), b.value(small, "weather as issued"), b.value(oneDecimal, b.weatherMark()),
+	if _, err := p.add(b.value(small, "as of"), b.value(date, serial(b.Plan.AsOf)), b.value(small, "weather, as a mark"), b.value(oneDecimal, b.weatherMark()),
 		b.value(small, "weather changed"), b.live(small, fmt.Sprintf("IFERROR(ABS(%s-wb_weather)>0.0000001,TRUE)", weatherMarkText()), false)); err != nil {
 		return err
 	}
@@ -48,7 +51,7 @@ func (b *book) works(p *page) error {
 	}
 	for w := range b.Data.Works {
 		for c := range b.Data.Works[w].Counts {
-			if _, err := p.add(b.workRow(w, c)...); err != nil {
+			if _, err := p.wrapped(lineHeight, 2*workWide, b.workRow(w, c)...); err != nil {
 				return err
 			}
 		}
