@@ -2,6 +2,8 @@ package planner
 
 import (
 	"context"
+	"encoding/json"
+	"fmt"
 	"slices"
 	"time"
 
@@ -21,12 +23,46 @@ type Sheet struct {
 	By     string
 	Inputs []byte // the plan's inputs as issued, JSON
 	Engine int    // of the outlook
+	// Outlook is what the sheet computes on; its id is 0 for a sheet that was
+	// kept without.
+	Outlook IssuedOutlook
+}
+
+// OutlookID names days ahead as issued for good.
+type OutlookID int64
+
+// IssuedOutlook is the days ahead as they were issued.
+type IssuedOutlook struct {
+	ID       OutlookID
+	AsOf     Day
+	Issued   time.Time // of the first that was issued with the same path
+	Revision int64     // of the weather record
+	Sources  string    // where the days come from, in words
+	Typed    int       // days typed by hand
+	Years    int       // past years among the members
+	Seed     int64     // of an engine that draws by chance; 0 for one that does not
+	Engine   int
+	Start    Day    // of the path
+	Path     []byte // JSON of the days, in order
+}
+
+// Issue is the outlook as it is kept: its path, the revision of the record it
+// stands on, and where the days come from in words.
+func (o Outlook) Issue(at time.Time, revision int64, sources string) (IssuedOutlook, error) {
+	path, err := json.Marshal(o.Path)
+	if err != nil {
+		return IssuedOutlook{}, fmt.Errorf("write the days ahead: %w", err)
+	}
+	return IssuedOutlook{AsOf: o.AsOf, Issued: at, Revision: revision, Sources: sources,
+		Typed: o.Typed, Years: o.Years, Engine: o.Engine, Start: o.Start, Path: path}, nil
 }
 
 // SheetKeeper keeps the issued sheets of one team.
 type SheetKeeper interface {
-	// KeepSheet keeps a new sheet and returns it with its id. A site that is
-	// not there is a NotFound problem.
+	// KeepSheet keeps a new sheet and returns it with its id, and its outlook
+	// when that has a path: the same site, day, revision, engine and path are
+	// kept once and come back with the id, time and words of the first. A site
+	// that is not there is a NotFound problem.
 	KeepSheet(ctx context.Context, sheet Sheet) (Sheet, error)
 	// Sheet returns the issued sheet, or a NotFound problem.
 	Sheet(ctx context.Context, id SheetID) (Sheet, error)

@@ -199,7 +199,7 @@ func (b *book) dimension(name string) string {
 		nitrogenSheet: {12, 6 + 2*len(b.Data.Nitrogen)},
 		issuedSheet:   {3, issuedHead + len(b.at.issued)},
 		curvesSheet:   {1 + 3*b.at.counts, 1 + b.ahead()},
-		notesSheet:    {4, len(calc.Catalogue()) + 20},
+		notesSheet:    {4, len(calc.Catalogue()) + 24},
 	}[name]
 	cell, _ := excelize.CoordinatesToCellName(max(last[0], 1), max(last[1], 1))
 	return "A1:" + cell

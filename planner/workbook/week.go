@@ -7,7 +7,6 @@ import (
 
 	"github.com/xuri/excelize/v2"
 
-	"swardbook/calc"
 	"swardbook/planner"
 )
 
@@ -369,45 +368,4 @@ func (b *book) closedOn(day planner.Day) string {
 		}
 	}
 	return strings.Join(names, "; ")
-}
-
-// notes writes what the words mean, and the formulas with their sources.
-func (b *book) notes(p *page) error {
-	for i, wide := range []float64{26, 70, 44, 70} {
-		if err := p.SetColWidth(i+1, i+1, wide); err != nil {
-			return err
-		}
-	}
-	if _, err := p.add(b.value(title, "Notes")); err != nil {
-		return err
-	}
-	id := fmt.Sprintf("swardbook-sheet-%d-form-%d", b.ID, Form)
-	for _, line := range [][2]string{
-		{"sheet", id},
-		{"path", "The days ahead that this sheet computes on: typed days first, then the mean of past years."},
-		{"likely", "Early to late: eight years in ten fell between them. They stand on curves issued with the sheet; when a day, a base or a curve is edited only the bot can tell them."},
-		{"days ahead", b.Ahead},
-		{"beyond this sheet", "The total does not reach its target on the days of this sheet."},
-		{"growth", "Growth potential knows temperature only: not water, shade, wear or disease."},
-		{"cautions", b.Caution},
-		{"", "Swardbook plans dates; it prescribes no product and no rate."},
-	} {
-		if _, err := p.add(b.value(wrapped, line[0]), b.value(wrapped, line[1])); err != nil {
-			return err
-		}
-	}
-	if _, err := p.add(); err != nil {
-		return err
-	}
-	if _, err := p.add(b.heads("formula", "in words", "source", "in the cells")...); err != nil {
-		return err
-	}
-	for _, formula := range calc.Catalogue() {
-		text, _ := CellText(formula.ID)
-		if _, err := p.add(b.value(wrapped, formula.Title), b.value(wrapped, formula.Words),
-			b.value(wrapped, formula.Source+" ("+string(formula.Status)+")"), b.value(wrapped, text)); err != nil {
-			return err
-		}
-	}
-	return nil
 }

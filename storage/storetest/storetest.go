@@ -19,6 +19,7 @@ import (
 type Store interface {
 	planner.Keeper
 	planner.Recorder
+	planner.SheetKeeper
 	// Import stages the rows of the file in their order, readings first, and
 	// merges those that are taken.
 	Import(ctx context.Context, stamp planner.Stamp, station planner.StationID, file File) (Imported, error)
@@ -80,6 +81,9 @@ type Repeat struct{ Line, First int }
 //     rule, or another zone, all days.
 //  18. Writers at the same time lose nothing.
 //  19. A call whose context has ended keeps nothing.
+//  20. An issued sheet comes back as it was kept, times in seconds, to its own
+//     team only; outlooks of the same site, day, revision, engine and path are
+//     one, others each their own.
 func Run(t *testing.T, open func(t *testing.T) (newTeam func(name string) Store)) {
 	promises := []struct {
 		name string
@@ -104,6 +108,7 @@ func Run(t *testing.T, open func(t *testing.T) (newTeam func(name string) Store)
 		{"17 day rules", testDayRules},
 		{"18 writers", testWriters},
 		{"19 ended context", testEndedContext},
+		{"20 sheets", testSheets},
 	}
 	for _, promise := range promises {
 		t.Run(promise.name, func(t *testing.T) {
