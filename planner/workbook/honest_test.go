@@ -246,6 +246,7 @@ func TestDatesAreHonestAfterEdits(t *testing.T) {
 	if slowPlans() == 0 {
 		t.Skip("recalculates in LibreOffice with SWARDBOOK_SLOW=1")
 	}
+	t.Parallel()
 	plan := editedPlan()
 	gap := withGap(plan)
 	old := fed(plan, func(f []*planner.Entry) { f[0].Day = plan.AsOf - 127 }) // before the sheet's first day
@@ -331,6 +332,7 @@ func TestRowsPutInAndTakenOut(t *testing.T) {
 	if slowPlans() == 0 {
 		t.Skip("types edits in LibreOffice with SWARDBOOK_SLOW=1")
 	}
+	t.Parallel()
 	plan := editedPlan()
 	book := build(t, plan)
 	days := inputOf(t, plan, 1).Data.Days

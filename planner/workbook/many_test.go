@@ -49,6 +49,7 @@ func TestLargestDifferenceInLibreOffice(t *testing.T) {
 	if slowPlans() == 0 {
 		t.Skip("recalculates in LibreOffice with SWARDBOOK_SLOW=1")
 	}
+	t.Parallel()
 	var books [][]byte
 	for _, means := range [][][2]float64{
 		{{0.2, 1.2}, {7.3, 6.3}, {1.2, 0.2}, {5.3, 5.1}},

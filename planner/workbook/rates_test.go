@@ -36,6 +36,7 @@ func TestLibreOfficeComputesAmounts(t *testing.T) {
 	if slowPlans() == 0 {
 		t.Skip("recalculates in LibreOffice with SWARDBOOK_SLOW=1")
 	}
+	t.Parallel()
 	books := [][]byte{build(t, standingPlan()), build(t, withRates(withGap(editedPlan())))}
 	for number := uint64(100); number < 112; number++ {
 		books = append(books, build(t, withRates(randomPlan(number))))
