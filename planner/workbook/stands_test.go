@@ -46,6 +46,7 @@ func standingPlan() planner.Plan {
 		}), 4, 0},
 		{"half", byDay(9, nil), 10, 1},
 		{"ancient", byDay(20, nil), 500, 0},
+		{"now", byDay(5, nil), 5, 0},
 	} {
 		id := planner.WorkID(11 + i)
 		plan.Works = append(plan.Works, planner.Work{ID: id, Surface: 1, Name: work.name, Settings: planner.Always(work.settings)})
@@ -79,8 +80,9 @@ func TestHowWorksStand(t *testing.T) {
 		"full": "season's most reached", "held": "held by the 14 days between", "ends": "its season ends before",
 		"closed": "closed then: match, open " + (plan.AsOf + 3).Short() + ", again from " + (plan.AsOf + 7).Short(),
 		"half":   "not done yet: front", "ancient": "last done " + (plan.AsOf - 500).String() + ", before this sheet",
+		"now": "due today",
 	}
-	dates := map[string]any{"full": "season's most reached", "held": plan.AsOf + 4, "closed": plan.AsOf + 5, "ends": plan.AsOf + 16, "half": plan.AsOf - 1, "ancient": plan.AsOf - 480}
+	dates := map[string]any{"full": "season's most reached", "held": plan.AsOf + 4, "closed": plan.AsOf + 5, "ends": plan.AsOf + 16, "half": plan.AsOf - 1, "ancient": plan.AsOf - 480, "now": plan.AsOf}
 	seen := 0
 	for i, state := range input.Evaluation.Works {
 		row := 4 + i
@@ -100,6 +102,9 @@ func TestHowWorksStand(t *testing.T) {
 		if cells[3] != want {
 			t.Errorf("%s: the due cell is %q, want %q", state.Work.Name, cells[3], want)
 		}
+		if early, late := cells[5], cells[6]; state.Work.Name == "full" && early+late != "" {
+			t.Errorf("nothing more may be done, and it is likely from %s to %s", early, late)
+		}
 		if word, ok := words[state.Work.Name]; ok {
 			seen++
 			if !strings.Contains(said, word) {
@@ -111,7 +116,7 @@ func TestHowWorksStand(t *testing.T) {
 		t.Errorf("%d works of %d", seen, len(words))
 	}
 	today := strings.Join(rowOf(t, file, "week", 4+len(input.Evaluation.Works)+2), "|")
-	for _, name := range []string{"half", "ancient"} {
+	for _, name := range []string{"half", "ancient", "now"} {
 		if !strings.Contains(today, name+"; ") {
 			t.Errorf("%s is not due today in %q", name, today)
 		}

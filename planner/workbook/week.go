@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"slices"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/xuri/excelize/v2"
 
@@ -14,6 +15,8 @@ const (
 	weekHead     = 3
 	mostSurfaces = 3 // with a growth column in the week
 	mostCounts   = 2 // works with a degree-day column in the week
+	// Widths of columns, in letters: of days and names, and of words.
+	nameWide, wordsWide = 17, 21
 )
 
 // ownCount is the count of a work on its own mean.
@@ -28,11 +31,11 @@ func ownCount(work planner.SheetWork) int {
 
 // week writes the sheet that is pinned up: key numbers, then a row a day.
 func (b *book) week(p *page) error {
-	const narrow, wordy = 10.5, 21
-	wides := append([]float64{17, 8, 8, 11, 9}, slices.Repeat([]float64{narrow}, b.fallsColumn()-6)...)
-	wides = append(wides, wordy, wordy, 12, 7, 18)
+	const narrow = 10.5
+	wides := append([]float64{nameWide, 8, 8, 11, 9}, slices.Repeat([]float64{narrow}, b.fallsColumn()-6)...)
+	wides = append(wides, wordsWide, wordsWide, 12, 7, 18)
 	if _, _, product, last := b.keyColumns(); last == product { // few columns: the key numbers are wider
-		wides = append(wides, wordy, wordy, wordy)[:last]
+		wides = append(wides, wordsWide, wordsWide, wordsWide)[:last]
 	}
 	for i, wide := range wides {
 		if err := p.SetColWidth(i+1, i+1, wide); err != nil {
@@ -59,7 +62,7 @@ func (b *book) week(p *page) error {
 	}
 	first := p.row + 1
 	for i := range 7 * b.Weeks {
-		if _, err := p.wrapped(handHeight, wordy, b.weekRow(p.row+1, i)...); err != nil {
+		if _, err := p.wrapped(handHeight, wordsWide, b.weekRow(p.row+1, i)...); err != nil {
 			return err
 		}
 	}
@@ -103,11 +106,12 @@ func (b *book) keyRows(p *page) error {
 		rows = append(rows, wide(numbers, plainText, b.value(plainText, unitName), b.value(plainText, b.stands(state)), takes))
 	}
 	for i, cells := range rows {
-		add := p.tall
-		if i == 0 {
-			add = p.add
+		least := float64(lineHeight)
+		if i > 0 { // a name has one column, the words beside it two
+			name := fmt.Sprint(cells[0].(excelize.Cell).Value)
+			least = max(handHeight, float64(lineHeight*((utf8.RuneCountInString(name)+nameWide-1)/nameWide)))
 		}
-		row, err := add(cells...)
+		row, err := p.wrapped(least, 2*wordsWide-4, cells...)
 		if err != nil {
 			return err
 		}
@@ -145,6 +149,10 @@ func (b *book) keyRow(state planner.WorkState) (numbers []any, unit string, take
 		numbers = append(numbers, b.live(oneDecimal, from("K"), b.show(work.Counts[c].Through, state.Unit)), b.live(oneDecimal, from("L"), b.show(due.Target, state.Unit)),
 			b.live(strong, from("Q"), told), b.live(whole, from("R"), until))
 		for i, passage := range []planner.Passage{due.Early, due.Late} {
+			if state.Status == planner.Full {
+				numbers = append(numbers, b.value(plainText, ""))
+				continue
+			}
 			if !due.SpreadKnown {
 				numbers = append(numbers, b.value(plainText, "not known"))
 				continue
@@ -194,8 +202,11 @@ func (b *book) stands(state planner.WorkState) string {
 		return "not started: log the last one"
 	}
 	text := string(state.Status)
-	if state.Status == planner.Full {
+	switch state.Status {
+	case planner.Full:
 		text = seasonsMost
+	case planner.DueToday:
+		text = "due today"
 	}
 	if state.LastDone < b.firstDay() {
 		text += "; last done " + state.LastDone.String() + ", before this sheet"
