@@ -24,6 +24,10 @@ type Means struct {
 	LargestDay Day
 }
 
+// equalC is the margin, in °C, within which two sizes are equal: that of
+// floating point, as 1.2 less 0.2 is not 1 to the last bit.
+const equalC = 1e-9
+
 // CompareMeans compares the two means over the days from through to that have
 // both. With no such day only From, To and Days (0) mean anything.
 func CompareMeans(record Record, from, to Day) Means {
@@ -38,7 +42,7 @@ func CompareMeans(record Record, from, to Day) Means {
 			continue
 		}
 		difference := midrangeC - hourlyC
-		if len(differences) == 0 || math.Abs(difference) > math.Abs(means.LargestC) {
+		if len(differences) == 0 || math.Abs(difference) > math.Abs(means.LargestC)+equalC {
 			means.LargestC, means.LargestDay = difference, day
 		}
 		differences = append(differences, difference)

@@ -2,6 +2,8 @@ package planner
 
 import (
 	"context"
+	"encoding/json"
+	"fmt"
 	"slices"
 	"time"
 
@@ -21,12 +23,46 @@ type Sheet struct {
 	By     string
 	Inputs []byte // the plan's inputs as issued, JSON
 	Engine int    // of the outlook
+	// Outlook is what the sheet computes on; its id is 0 for a sheet that was
+	// kept without.
+	Outlook IssuedOutlook
+}
+
+// OutlookID names days ahead as issued for good.
+type OutlookID int64
+
+// IssuedOutlook is the days ahead as they were issued.
+type IssuedOutlook struct {
+	ID       OutlookID
+	AsOf     Day
+	Issued   time.Time // of the first that was issued with the same path
+	Revision int64     // of the weather record
+	Sources  string    // where the days come from, in words
+	Typed    int       // days typed by hand
+	Years    int       // past years among the members
+	Seed     int64     // of an engine that draws by chance; 0 for one that does not
+	Engine   int
+	Start    Day    // of the path
+	Path     []byte // JSON of the days, in order
+}
+
+// Issue is the outlook as it is kept: its path, the revision of the record it
+// stands on, and where the days come from in words.
+func (o Outlook) Issue(at time.Time, revision int64, sources string) (IssuedOutlook, error) {
+	path, err := json.Marshal(o.Path)
+	if err != nil {
+		return IssuedOutlook{}, fmt.Errorf("write the days ahead: %w", err)
+	}
+	return IssuedOutlook{AsOf: o.AsOf, Issued: at, Revision: revision, Sources: sources,
+		Typed: o.Typed, Years: o.Years, Engine: o.Engine, Start: o.Start, Path: path}, nil
 }
 
 // SheetKeeper keeps the issued sheets of one team.
 type SheetKeeper interface {
-	// KeepSheet keeps a new sheet and returns it with its id. A site that is
-	// not there is a NotFound problem.
+	// KeepSheet keeps a new sheet and returns it with its id, and its outlook
+	// when that has a path: the same site, day, revision, engine and path are
+	// kept once and come back with the id, time and words of the first. A site
+	// that is not there is a NotFound problem.
 	KeepSheet(ctx context.Context, sheet Sheet) (Sheet, error)
 	// Sheet returns the issued sheet, or a NotFound problem.
 	Sheet(ctx context.Context, id SheetID) (Sheet, error)
@@ -36,8 +72,25 @@ type SheetKeeper interface {
 // what every started work counts. All numbers come from the same counting as
 // the due dates.
 type SheetData struct {
-	Days  []SheetDay
-	Works []SheetWork // started works only
+	Days     []SheetDay
+	Works    []SheetWork     // started works only
+	Nitrogen []SheetNitrogen // of the surfaces that were fed, as in Evaluation.Nitrogen
+}
+
+// SheetNitrogen is the balance of a surface and what it is made of.
+type SheetNitrogen struct {
+	State  NitrogenState
+	Feeds  []Feed
+	Season Day        // from which feeds count as given this season
+	Uses   []SheetUse // beside State.Bases
+}
+
+// SheetUse is the nitrogen that a surface uses on one mean.
+type SheetUse struct {
+	GM2 []float64 // of each day of the sheet, along the path
+	// CarriedGM2 was used between the first feed and the sheet's first day; days
+	// missing from the record are left out.
+	CarriedGM2 float64
 }
 
 // SheetDay is one day of the sheet: the record's, with short gaps on a straight
@@ -53,7 +106,7 @@ type SheetDay struct {
 // SheetWork is one work of the sheet.
 type SheetWork struct {
 	State  WorkState
-	Feeds  []Feed // of the work's surface, when it counts by nitrogen
+	Rate   Rate // of the last pass
 	Counts []SheetCount
 	// Gap says that days since the last pass are missing from the record: early,
 	// middle and late dates then differ inside the past too.
@@ -68,7 +121,7 @@ type SheetCount struct {
 	// Through is the running total at the end of yesterday, along the path.
 	Through float64
 	// CarriedGM2 is the nitrogen used between the first feed and the sheet's
-	// first day, slow nitrogen that came taken off.
+	// first day, missing days taken from the path.
 	CarriedGM2 float64
 	// Curves are the issued running totals of the early, middle and late date,
 	// one value for each day of the sheet from the plan's morning on: of each day
@@ -78,8 +131,10 @@ type SheetCount struct {
 
 const (
 	sheetLookback = 400 // days: a work not done for longer has its sum cut off
-	sheetAhead    = 56  // least days ahead that a sheet computes on
+	sheetAhead    = 92  // least days ahead that a sheet computes on: a quarter of a year
 	sheetBeyond   = 14  // days past the last date of any work
+	sheetRoom     = 7   // days before the last pass, to move its date
+	sheetFeeds    = 120 // days back to the first feed of a balance; older ones are carried
 )
 
 // SheetOf computes the days and counts of a sheet of the plan, at least so many
@@ -92,17 +147,21 @@ func SheetOf(plan Plan, evaluation Evaluation, ahead int) (SheetData, error) {
 		if len(state.Bases) == 0 || state.LastDone < plan.AsOf-sheetLookback {
 			continue
 		}
-		data.Works = append(data.Works, SheetWork{State: state})
-		first = min(first, state.LastDone)
+		data.Works = append(data.Works, SheetWork{State: state, Rate: plan.LastRate(state.Work.ID)})
+		first = min(first, state.LastDone-sheetRoom)
 		for _, facts := range state.Bases {
-			for _, date := range []Passage{facts.Path, facts.Late, facts.Held} {
+			for _, date := range []Passage{facts.Path, facts.Late} {
 				if !date.Known {
 					end = plan.Outlook.end()
 				} else {
 					end = max(end, date.Day+1+sheetBeyond)
 				}
 			}
+			end = max(end, facts.Held.Day+1+sheetBeyond)
 		}
+	}
+	for _, state := range evaluation.Nitrogen {
+		first = min(first, max(state.Since, plan.AsOf-sheetFeeds))
 	}
 	end = min(end, max(plan.Outlook.end(), plan.AsOf+1))
 	data.Days = plan.sheetDays(first, end)
@@ -111,7 +170,26 @@ func SheetOf(plan Plan, evaluation Evaluation, ahead int) (SheetData, error) {
 			return SheetData{}, err
 		}
 	}
+	for _, state := range evaluation.Nitrogen {
+		data.Nitrogen = append(data.Nitrogen, plan.sheetNitrogen(state, first, end))
+	}
 	return data, nil
+}
+
+func (p Plan) sheetNitrogen(state NitrogenState, first, end Day) SheetNitrogen {
+	nitrogen := SheetNitrogen{State: state, Feeds: p.feeds(state.Surface, p.balanceSince(state.Surface)),
+		Season: p.Site.SeasonStart().OnOrBefore(p.AsOf)}
+	for _, facts := range state.Bases {
+		c := counter{plan: p, measure: nitrogenUse{state.Surface.Turf.On}, basis: facts.Basis}
+		past := c.past(first, p.AsOf)
+		var use SheetUse
+		for day := first; day < end; day++ {
+			use.GM2 = append(use.GM2, c.along(p.Outlook.Path, past, day))
+		}
+		use.CarriedGM2 = c.past(state.Since+1, first).sum.Total
+		nitrogen.Uses = append(nitrogen.Uses, use)
+	}
+	return nitrogen
 }
 
 // sheetDays lists the days of the sheet.
@@ -148,13 +226,14 @@ func (p Plan) fillSheetWork(work *SheetWork, first, end Day) error {
 	if err != nil {
 		return err
 	}
+	var feeds []Feed
 	if state.Settings.Counts == ByNitrogen {
-		work.Feeds = p.feeds(state.Surface, p.balanceSince(state.Surface))
+		feeds = p.feeds(state.Surface, p.balanceSince(state.Surface))
 	}
 	for _, facts := range state.Bases {
 		c := counter{plan: p, measure: measure, basis: facts.Basis}
-		if work.Feeds != nil {
-			c.less = releasedOn(work.Feeds)
+		if feeds != nil {
+			c.less = releasedOn(feeds)
 		}
 		count := SheetCount{Due: facts}
 		past := c.past(first, p.AsOf)
@@ -170,8 +249,8 @@ func (p Plan) fillSheetWork(work *SheetWork, first, end Day) error {
 			}
 			count.Units, count.Running = append(count.Units, units), append(count.Running, total)
 		}
-		if len(work.Feeds) > 0 && work.Feeds[0].Day+1 < first {
-			count.CarriedGM2 = c.throughAlongPath(work.Feeds[0].Day+1, first-1)
+		if len(feeds) > 0 && feeds[0].Day+1 < first {
+			count.CarriedGM2 = counter{plan: p, measure: measure, basis: facts.Basis}.throughAlongPath(feeds[0].Day+1, first-1)
 		}
 		count.Curves = c.sheetCurves(facts.Since, end)
 		work.Counts = append(work.Counts, count)

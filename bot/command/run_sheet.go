@@ -55,8 +55,13 @@ func (d Desk) runSheetGet(ctx context.Context, req Request) (reply.Reply, error)
 	if err != nil {
 		return reply.Reply{}, fmt.Errorf("write the sheet's inputs: %w", err)
 	}
-	stamp := v.stamp()
-	kept, err := d.Sheets.KeepSheet(ctx, planner.Sheet{Site: v.site.ID, Form: workbook.Form, AsOf: v.today, Issued: stamp.At, By: stamp.By, Inputs: inputs, Engine: plan.Outlook.Engine})
+	stamp, ahead := v.stamp(), briefing.AheadNote(plan.Outlook)
+	outlook, err := plan.Outlook.Issue(stamp.At, plan.Record.Revision, ahead)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	kept, err := d.Sheets.KeepSheet(ctx, planner.Sheet{Site: v.site.ID, Form: workbook.Form, AsOf: v.today, Issued: stamp.At, By: stamp.By,
+		Inputs: inputs, Engine: plan.Outlook.Engine, Outlook: outlook})
 	if err != nil {
 		return reply.Reply{}, err
 	}
@@ -67,8 +72,9 @@ func (d Desk) runSheetGet(ctx context.Context, req Request) (reply.Reply, error)
 	paper := textOr(v.Values, "paper", "a4")
 	content, err := workbook.Build(workbook.Input{
 		ID: kept.ID, Plan: plan, Evaluation: evaluation, Data: data, Weeks: weeks,
-		Letter: paper == "letter" || !v.Values.Has("paper") && v.site.Units == planner.Fahrenheit,
-		Ahead:  briefing.AheadNote(plan.Outlook), Caution: strings.ReplaceAll(briefing.Cautions(evaluation.Works), "\n", " "),
+		Letter:  paper == "letter" || !v.Values.Has("paper") && v.site.Units == planner.Fahrenheit,
+		Ahead:   ahead,
+		Caution: strings.ReplaceAll(briefing.Cautions(evaluation.Works), "\n", " "),
 		Seasons: seasons,
 	})
 	if err != nil {
@@ -99,10 +105,11 @@ func seasonCurves(plan planner.Plan) ([]planner.SeasonCurves, error) {
 	return all, nil
 }
 
-// sheetInputs is the plan without what the record and the set-up keep anyway.
+// sheetInputs is the plan without the record, and without the days ahead that
+// are kept beside it.
 func sheetInputs(plan planner.Plan) planner.Plan {
 	plan.Record = planner.Record{Revision: plan.Record.Revision}
-	plan.Outlook.Members, plan.Rain = nil, nil
+	plan.Outlook.Members, plan.Outlook.Path, plan.Rain = nil, nil, nil
 	return plan
 }
 

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/xuri/excelize/v2"
 
@@ -30,7 +31,8 @@ type Input struct {
 }
 
 // Build writes the workbook: the week, the days' arithmetic, works and log, the
-// two means compared, nitrogen, the charts with their cells, the issued curves, notes. Text that users typed is written as text and never as a
+// two means compared, nitrogen, the charts with their cells, the issued curves
+// and inputs, notes. Text that users typed is written as text and never as a
 // formula. Weeks outside 1 to 8 are brought inside.
 func Build(in Input) (content []byte, err error) {
 	in.Weeks = min(max(in.Weeks, 1), 8)
@@ -52,14 +54,14 @@ func Build(in Input) (content []byte, err error) {
 		name  string
 		write func(*page) error
 	}{{weekSheet, b.week}, {daysSheet, b.days}, {worksSheet, b.works}, {meansSheet, b.means}, {nitrogenSheet, b.nitrogen},
-		{chartsSheet, b.chartsPage}, {curvesSheet, b.curves}, {chartCellsSheet, b.chartCells}, {notesSheet, b.notes}}
+		{chartsSheet, b.chartsPage}, {curvesSheet, b.curves}, {issuedSheet, b.issued}, {chartCellsSheet, b.chartCells}, {notesSheet, b.notes}}
 	for _, part := range parts[1:] {
 		if _, err := b.file.NewSheet(part.name); err != nil {
 			return nil, fmt.Errorf("add the sheet %s: %w", part.name, err)
 		}
 	}
 	// Now, while the sheets are empty: later these would read all of them back.
-	for _, name := range []string{curvesSheet, chartCellsSheet} {
+	for _, name := range []string{curvesSheet, issuedSheet, chartCellsSheet} {
 		if err := b.file.SetSheetVisible(name, false); err != nil {
 			return nil, fmt.Errorf("hide the sheet %s: %w", name, err)
 		}
@@ -89,6 +91,7 @@ const (
 	nitrogenSheet   = "nitrogen"
 	chartsSheet     = "charts"
 	curvesSheet     = "curves"
+	issuedSheet     = "as issued"
 	chartCellsSheet = "chart cells"
 	notesSheet      = "notes"
 )
@@ -145,9 +148,30 @@ func (p *page) add(cells ...any) (int, error) {
 	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells)
 }
 
+// Heights of rows, in points.
+const (
+	handHeight = 34 // room to write by hand
+	lineHeight = 14
+)
+
 // tall writes a row with room to write by hand.
-func (p *page) tall(cells ...any) (int, error) {
-	const points = 34
+func (p *page) tall(cells ...any) (int, error) { return p.high(handHeight, cells...) }
+
+// wrapped writes a row in which the text of its cells has room in columns so
+// wide, in letters; at least so high.
+func (p *page) wrapped(least float64, wide int, cells ...any) (int, error) {
+	lines := 1
+	for _, cell := range cells {
+		if cell, ok := cell.(excelize.Cell); ok {
+			if text, ok := cell.Value.(string); ok {
+				lines = max(lines, (utf8.RuneCountInString(text)+wide-1)/wide)
+			}
+		}
+	}
+	return p.high(min(max(least, float64(lineHeight*lines)), excelize.MaxRowHeight), cells...)
+}
+
+func (p *page) high(points float64, cells ...any) (int, error) {
 	p.row++
 	return p.row, p.SetRow(fmt.Sprintf("A%d", p.row), cells, excelize.RowOpts{Height: points})
 }
@@ -185,14 +209,16 @@ func sheetProps(name string) *excelize.SheetPropsOptions {
 
 // dimension is the range of a sheet's cells, which some readers trust.
 func (b *book) dimension(name string) string {
+	_, _, _, keyEnd := b.keyColumns()
 	last := map[string][2]int{
-		weekSheet:       {b.weekColumns(), weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
+		weekSheet:       {keyEnd, weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
 		daysSheet:       {b.at.columns, daysHead + len(b.Data.Days)},
-		worksSheet:      {len(workColumns()), b.at.worksEnd},
+		worksSheet:      {len(b.workColumns()), b.at.worksEnd},
 		meansSheet:      {6, meansHead + len(b.bothMeans())},
-		nitrogenSheet:   {9, 4 + 2*len(b.Evaluation.Nitrogen)},
+		nitrogenSheet:   {12, 6 + 2*len(b.Data.Nitrogen)},
+		issuedSheet:     {3, issuedHead + len(b.at.issued)},
 		curvesSheet:     {1 + 3*b.at.counts, 1 + b.ahead()},
-		notesSheet:      {4, len(calc.Catalogue()) + 20},
+		notesSheet:      {4, len(calc.Catalogue()) + 24},
 		chartsSheet:     {1, 3 + len(b.without)},
 		chartCellsSheet: b.chartCellsEnd(),
 	}[name]
@@ -223,8 +249,14 @@ func (b *book) manners(p *page) error {
 		wide = (b.at.columns + perPage - 1) / perPage
 	case chartsSheet:
 		orientation, scale = "portrait", chartsPercent
+	case worksSheet:
+		wide = (printedColumns + perPage - 1) / perPage
 	}
 	if err := b.file.SetPageLayout(p.name, &excelize.PageLayoutOptions{Size: &size, Orientation: &orientation, FitToWidth: &wide, FitToHeight: &high, AdjustTo: &scale}); err != nil {
+		return err
+	}
+	edge, top, line := 0.4, 0.75, 0.35 // inches: the week shall be read from a wall
+	if err := b.file.SetPageMargins(p.name, &excelize.PageLayoutMarginsOptions{Left: &edge, Right: &edge, Top: &top, Bottom: &top, Header: &line, Footer: &line}); err != nil {
 		return err
 	}
 	site := strings.ReplaceAll(b.Plan.Site.Name, "&", "&&")
@@ -263,20 +295,6 @@ func headerCut(text string) string {
 // Outlook is the day on which the days ahead were issued.
 func (in Input) Outlook() planner.Day { return in.Evaluation.Outlook.AsOf }
 
-// number lets an input take numbers between the two.
-func (p *page) number(cells string, lowest, highest float64, prompt string) error {
-	rule := excelize.NewDataValidation(true)
-	rule.SetSqref(cells)
-	plain := func(value float64) string { return fmt.Sprintf("%.6g", value) }
-	if err := rule.SetRange(plain(lowest), plain(highest), excelize.DataValidationTypeDecimal, excelize.DataValidationOperatorBetween); err != nil {
-		return err
-	}
-	rule.SetInput("Input", prompt)
-	rule.SetError(excelize.DataValidationErrorStyleStop, "This cannot be", fmt.Sprintf("Give a number from %g to %g.", lowest, highest))
-	p.rules = append(p.rules, rule)
-	return nil
-}
-
 // identify sets the names and the ids that travel with the file.
 func (b *book) identify() error {
 	b.refs["wb_id"] = fmt.Sprintf("'%s'!$B$2", notesSheet)
@@ -285,8 +303,13 @@ func (b *book) identify() error {
 			return fmt.Errorf("%s: %w", name, err)
 		}
 	}
-	for sheet, rows := range map[string]string{daysSheet: fmt.Sprintf("$A:$A,'%s'!$%d:$%d", daysSheet, daysHead, daysHead), curvesSheet: "$1:$1"} {
-		err := b.file.SetDefinedName(&excelize.DefinedName{Name: "_xlnm.Print_Titles", RefersTo: fmt.Sprintf("'%s'!%s", sheet, rows), Scope: sheet})
+	for _, print := range []struct{ name, sheet, cells string }{
+		{"_xlnm.Print_Titles", daysSheet, fmt.Sprintf("$A:$A,'%s'!$%d:$%d", daysSheet, daysHead, daysHead)},
+		{"_xlnm.Print_Titles", curvesSheet, "$1:$1"},
+		{"_xlnm.Print_Titles", worksSheet, "$A:$B"},
+		{"_xlnm.Print_Area", worksSheet, fmt.Sprintf("$A$1:$%s$%d", column(printedColumns), b.at.worksEnd)}, // without what is as issued
+	} {
+		err := b.file.SetDefinedName(&excelize.DefinedName{Name: print.name, RefersTo: fmt.Sprintf("'%s'!%s", print.sheet, print.cells), Scope: print.sheet})
 		if err != nil {
 			return err
 		}

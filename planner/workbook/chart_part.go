@@ -19,17 +19,17 @@ import (
 
 // stroke is how a curve is drawn.
 type stroke struct {
-	kind  kind
+	kind  strokeKind
 	ink   string // RRGGBB; "" draws nothing and leaves the legend alone
 	width float64
 	dash  string // of a line: "solid", "dash", "sysDot"
 }
 
-// kind is what a curve is drawn as.
-type kind int
+// strokeKind is what a curve is drawn as.
+type strokeKind int
 
 const (
-	area kind = iota // on top of the area before it
+	area strokeKind = iota // on top of the area before it
 	bar
 	line
 )
@@ -147,11 +147,11 @@ type ser struct {
 }
 
 func (s ser) Name() string  { return words{s.nameAt, s.name}.Ref() }
-func (s ser) Dates() string { return numbers(s.drawing.datesAt, "d mmm", s.drawing.dates) }
-func (s ser) Cells() string { return numbers(s.at, "General", s.values) }
+func (s ser) Dates() string { return cached(s.drawing.datesAt, "d mmm", s.drawing.dates) }
+func (s ser) Cells() string { return cached(s.at, "General", s.values) }
 
-// numbers is the reference to cells, with the numbers that they hold.
-func numbers(at, format string, values []float64) string {
+// cached is the reference to cells, with the numbers that they hold.
+func cached(at, format string, values []float64) string {
 	out := make([]byte, 0, 200+48*len(values))
 	out = fmt.Appendf(out, `<c:numRef><c:f>%s</c:f><c:numCache><c:formatCode>%s</c:formatCode><c:ptCount val="%d"/>`, escaped(at), escaped(format), len(values))
 	for i, value := range values {

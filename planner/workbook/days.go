@@ -27,9 +27,16 @@ func (b *book) days(p *page) error {
 			return err
 		}
 	}
-	lowest, highest := b.units.Temperature(planner.LowestC), b.units.Temperature(planner.HighestC)
-	return p.number(fmt.Sprintf("B%d:D%d", b.at.firstRow, b.at.lastRow), lowest, highest,
-		"High, low and 24-hour mean of the day in "+b.units.Degree()+". Clear the 24-hour mean of a day you type.")
+	if len(b.Data.Days) == 0 {
+		return nil
+	}
+	for _, input := range []struct{ col, what string }{{"B", "High"}, {"C", "Low"}, {"D", "24-hour mean"}} {
+		if err := p.takes(input.col, b.at.firstRow, b.at.lastRow, b.temperatures(),
+			input.what+" of the day in "+b.units.Degree()+". Clear the 24-hour mean of a day you type."); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 func (b *book) dayHeads() []string {
@@ -37,13 +44,17 @@ func (b *book) dayHeads() []string {
 	for _, surface := range b.Plan.Surfaces {
 		heads = append(heads, surface.Name+" growth, 24-hour", surface.Name+" growth, high/low")
 	}
+	for _, nitrogen := range b.Data.Nitrogen {
+		name := nitrogen.State.Surface.Name
+		heads = append(heads, name+" slow nitrogen that came, g/m²")
+		for _, facts := range nitrogen.State.Bases {
+			heads = append(heads, name+" nitrogen used, "+facts.Basis.Words())
+		}
+	}
 	for i, work := range b.Data.Works {
 		name := work.State.Surface.Name + " " + work.State.Work.Name
 		if b.at.works[i].hours != "" {
 			heads = append(heads, name+" from hours, as issued")
-		}
-		if b.at.works[i].slow != "" {
-			heads = append(heads, name+" slow nitrogen that came")
 		}
 		for _, count := range work.Counts {
 			heads = append(heads, name+", "+count.Due.Basis.Words(), "running total")
@@ -91,7 +102,7 @@ func (b *book) dayRow(i int) []any {
 		b.known(inNumber, t(facts.HighC), facts.HasExtremes), b.known(inNumber, t(facts.LowC), facts.HasExtremes),
 		b.known(inNumber, t(facts.HourlyC), facts.HasHourly),
 		b.live(oneDecimal, midrangeText(row), orBlank(t(midrangeC), hasMidrange)),
-		b.value(plainText, source(day)),
+		b.value(plainText, b.source(day)),
 		b.live(oneDecimal, f(`IF(COUNT(D%[1]d)=1,D%[1]d,E%[1]d)`), orBlank(t(meanC), any1)),
 		b.live(oneDecimal, f(`IF(COUNT(E%[1]d)=1,E%[1]d,IF(COUNT(D%[1]d)=1,D%[1]d,""))`), orBlank(t(midC), any1)),
 		b.live(oneDecimal, f(`IF(COUNT(B%[1]d:C%[1]d)=2,B%[1]d,IF(COUNT(D%[1]d)=1,D%[1]d,""))`), orBlank(t(highC), any1)),
@@ -111,6 +122,9 @@ func (b *book) dayRow(i int) []any {
 			}
 			cells = append(cells, b.live(percent, text, gp))
 		}
+	}
+	for _, nitrogen := range b.Data.Nitrogen {
+		cells = append(cells, b.nitrogenCells(nitrogen, i, row)...)
 	}
 	for w := range b.Data.Works {
 		cells = append(cells, b.countCells(w, i, row)...)
@@ -143,6 +157,24 @@ func turfOn(surface planner.Surface, day planner.Day) (turf planner.Turf, at int
 	return turf, at
 }
 
+// nitrogenCells are a fed surface's cells of one day: what came of slow feeds,
+// what is used on either mean.
+func (b *book) nitrogenCells(nitrogen planner.SheetNitrogen, i, row int) []any {
+	day, surface := b.Data.Days[i].Facts.Day, nitrogen.State.Surface
+	came := 0.0
+	for _, feed := range nitrogen.Feeds {
+		came += feed.Released(day)
+	}
+	through := func(day string) string { return slowThroughText(surface.ID, day) }
+	cells := []any{b.live(twoDecimals, through(fmt.Sprintf("A%d", row))+"-"+through(fmt.Sprintf("(A%d-1)", row)), came)}
+	_, at := turfOn(surface, day)
+	for j, facts := range nitrogen.State.Bases {
+		growth := fmt.Sprintf("%s%d", b.at.growth[surface.ID][facts.Basis], row)
+		cells = append(cells, b.live(twoDecimals, nitrogenText(growth, turfName(surface, at, "ceiling"), fmt.Sprintf("A%d", row)), nitrogen.Uses[j].GM2[i]))
+	}
+	return cells
+}
+
 // countCells are a work's cells of one day.
 func (b *book) countCells(w, i, row int) []any {
 	work, place := b.Data.Works[w], b.at.works[w]
@@ -151,26 +183,17 @@ func (b *book) countCells(w, i, row int) []any {
 	if place.hours != "" {
 		cells = append(cells, b.known(twoDecimals, b.show(work.Counts[0].Units[i], work.State.Unit), day.HoursC != nil))
 	}
-	if place.slow != "" {
-		slow := 0.0
-		for _, feed := range work.Feeds {
-			slow += feed.Released(day.Day)
-		}
-		text := fmt.Sprintf("SUMPRODUCT((log_surface=%[2]d)*log_slow*((A%[1]d-log_date+log_days-ABS(A%[1]d-log_date-log_days))-(A%[1]d-1-log_date+log_days-ABS(A%[1]d-1-log_date-log_days)))/2/log_days*(A%[1]d>log_date))",
-			row, work.State.Surface.ID)
-		cells = append(cells, b.live(twoDecimals, text, slow))
-	}
 	for _, count := range work.Counts {
 		last := workName(work, "last")
 		total := fmt.Sprintf(`IF(A%[1]d<=%[2]s,0,SUMIFS(%[3]s,d_date,">"&%[2]s,d_date,"<="&A%[1]d))`, row, last, countName(work, count, "units"))
-		cells = append(cells, b.live(twoDecimals, b.unitsText(work, place, count.Due.Basis, day.Day, row), b.show(count.Units[i], work.State.Unit)),
+		cells = append(cells, b.live(twoDecimals, b.unitsText(work, place, count.Due.Basis, row), b.show(count.Units[i], work.State.Unit)),
 			b.live(twoDecimals, total, b.show(count.Running[i], work.State.Unit)))
 	}
 	return cells
 }
 
 // unitsText is the formula of the units that a day gives a work.
-func (b *book) unitsText(work planner.SheetWork, place workPlace, basis planner.Basis, day planner.Day, row int) string {
+func (b *book) unitsText(work planner.SheetWork, place workPlace, basis planner.Basis, row int) string {
 	settings := work.State.Settings
 	surface := work.State.Surface
 	mean, growth := "G", planner.Hourly
@@ -184,8 +207,8 @@ func (b *book) unitsText(work planner.SheetWork, place workPlace, basis planner.
 	case planner.ByGrowthDays:
 		return cell(b.at.growth[surface.ID][growth])
 	case planner.ByNitrogen:
-		_, at := turfOn(surface, day)
-		return nitrogenText(cell(b.at.growth[surface.ID][growth]), turfName(surface, at, "ceiling"), cell("A")) + "-" + cell(place.slow)
+		at := b.at.nitrogen[surface.ID]
+		return cell(at.used[growth]) + "-" + cell(at.slow)
 	}
 	text := degreeDayText(settings.Method, settings.Thresholds.Cutoff, dayCells{cell(mean), cell("I"), cell("J"), cell("K")},
 		workName(work, "base"), workName(work, "upper"))
@@ -195,11 +218,16 @@ func (b *book) unitsText(work planner.SheetWork, place workPlace, basis planner.
 	return text
 }
 
+// missing begins what is said of a past day that the record lacks.
+const missing = "missing"
+
 // source says where a day comes from.
-func source(day planner.SheetDay) string {
+func (b *book) source(day planner.SheetDay) string {
 	switch {
 	case day.Facts.Empty():
-		return "missing"
+		return missing
+	case day.Path && day.Facts.Day < b.Plan.AsOf:
+		return missing + ": as days ahead"
 	case day.Facts.ExtremesFrom == planner.FromHand:
 		return "typed"
 	case day.Path:

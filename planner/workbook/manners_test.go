@@ -174,6 +174,62 @@ func TestLongNamesInHeaders(t *testing.T) {
 	}
 }
 
+// Every cell that is not locked takes one kind of thing only, and says so before
+// and after, in words that the office programs can show.
+func TestInputsSayWhatTheyTake(t *testing.T) {
+	for _, input := range []workbook.Input{inputOf(t, edited(planner.Celsius, true), 1), inputOf(t, nastyPlan(), 2), randomInput(t, 1), randomInput(t, 2)} {
+		content := written(t, input)
+		g, looks := gridOf(t, content), looksOf(t, content)
+		for sheet, manners := range mannersOf(t, content, g) {
+			ruled := map[string]bool{}
+			for _, rule := range manners.Rules {
+				for _, cells := range strings.Fields(rule.Cells) {
+					for _, cell := range cellsIn(t, cells) {
+						ruled[cell] = true
+					}
+				}
+				if rule.ShowError == "" || rule.ShowPrompt == "" || rule.Error == "" || rule.Prompt == "" || rule.ErrorTitle == "" || rule.PromptTitle == "" {
+					t.Errorf("%s: the rule of %s is silent: %+v", sheet, rule.Cells, rule)
+				}
+				for text, longest := range map[string]int{rule.ErrorTitle: longestTitle, rule.PromptTitle: longestTitle, rule.Prompt: longestPrompt, rule.Error: longestError} {
+					if characters(text) > longest {
+						t.Errorf("%s: %q has %d characters of %d", sheet, text, characters(text), longest)
+					}
+				}
+			}
+			for _, name := range g.order[sheet] {
+				if cell := g.at(sheet, name); !looks[cell.style].locked && !ruled[name] {
+					t.Fatalf("%s!%s is not locked and takes anything", sheet, name)
+				}
+			}
+		}
+	}
+}
+
+// cellsIn are the names of the cells of a range.
+func cellsIn(t *testing.T, cells string) (names []string) {
+	t.Helper()
+	from, to, isRange := strings.Cut(cells, ":")
+	if !isRange {
+		to = from
+	}
+	left, top, err := excelize.CellNameToCoordinates(from)
+	if err != nil {
+		t.Fatal(err)
+	}
+	right, bottom, err := excelize.CellNameToCoordinates(to)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for column := left; column <= right; column++ {
+		for row := top; row <= bottom; row++ {
+			name, _ := excelize.CoordinatesToCellName(column, row)
+			names = append(names, name)
+		}
+	}
+	return names
+}
+
 // An unlocked cell is told by its frame too, not by its colour alone: no locked
 // cell has the frame of an input.
 func TestInputsAreFramed(t *testing.T) {

@@ -49,10 +49,11 @@ func (b *book) means(p *page) error {
 		b.live(twoDecimals, fmt.Sprintf(`IF(COUNT(%[1]s)=0,"",AVERAGE(%[1]s))`, all), difference(means.DifferenceC)),
 		b.live(twoDecimals, fmt.Sprintf(`IF(COUNT(%[1]s)=0,"",(SUMIF(%[1]s,">0")-SUMIF(%[1]s,"<0"))/COUNT(%[1]s))`, all), difference(means.AbsDifferenceC)),
 		b.live(twoDecimals, fmt.Sprintf(`IF(COUNT(%[1]s)<2,"",STDEV(%[1]s))`, all), orBlank(difference(means.SpreadC), means.HasSpread)),
-		b.value(twoDecimals, difference(means.LargestC)), b.value(date, serial(means.LargestDay))); err != nil {
+		b.live(twoDecimals, fmt.Sprintf(`IF(COUNT(%[1]s)=0,"",INDEX(%[1]s,%[2]s))`, all, largestText(all)), difference(means.LargestC)),
+		b.live(date, fmt.Sprintf(`IF(COUNT(%[1]s)=0,"",INDEX(%[3]s,%[2]s))`, all, largestText(all), fmt.Sprintf("$A$%d:$A$%d", meansHead+1, meansHead+len(days))), serial(means.LargestDay))); err != nil {
 		return err
 	}
-	if _, err := p.add(b.value(small, "The difference is the high/low mean less the 24-hour mean. The largest is as issued.")); err != nil {
+	if _, err := p.add(b.value(small, "The difference is the high/low mean less the 24-hour mean. The largest is so by size; of equal ones the earliest.")); err != nil {
 		return err
 	}
 	if _, err := p.add(b.heads("day", "24-hour mean", "high/low mean", "difference")...); err != nil {
@@ -68,42 +69,16 @@ func (b *book) means(p *page) error {
 		if _, err := p.add(b.value(date, serial(facts.Day)),
 			b.live(twoDecimals, lookup("d_mean"), b.units.Temperature(facts.HourlyC)),
 			b.live(twoDecimals, lookup(b.dayRange("E")), b.units.Temperature(midrangeC)),
-			b.live(twoDecimals, fmt.Sprintf(`IF(COUNT(B%[1]d:C%[1]d)=2,C%[1]d-B%[1]d,"")`, row), difference(midrangeC-facts.HourlyC))); err != nil {
+			b.live(twoDecimals, fmt.Sprintf(`IF(COUNT(B%[1]d:C%[1]d)=2,ROUND(C%[1]d-B%[1]d,10),"")`, row), difference(midrangeC-facts.HourlyC))); err != nil {
 			return err
 		}
 	}
 	return nil
 }
 
-// nitrogen writes the balance of every surface that was fed.
-func (b *book) nitrogen(p *page) error {
-	if err := p.SetColWidth(1, 9, 16); err != nil {
-		return err
-	}
-	if _, err := p.add(b.value(title, "Nitrogen through yesterday, g N/m²")); err != nil {
-		return err
-	}
-	if _, err := p.tall(b.heads("surface", "since", "given", "slow, still to come", "mean", "used", "left", "given this season", "set aside for the season")...); err != nil {
-		return err
-	}
-	for _, state := range b.Evaluation.Nitrogen {
-		for _, facts := range state.Bases {
-			row := p.row + 1
-			if _, err := p.add(b.value(plainText, state.Surface.Name), b.value(date, serial(state.Since)), b.value(twoDecimals, state.GivenGM2),
-				b.value(twoDecimals, state.SlowToComeGM2), b.value(plainText, facts.Basis.Words()), b.value(twoDecimals, facts.Used.Total),
-				b.live(twoDecimals, fmt.Sprintf("C%[1]d-D%[1]d-F%[1]d", row), facts.LeftGM2),
-				b.value(twoDecimals, state.SeasonGivenGM2), b.known(twoDecimals, state.BudgetGM2, state.BudgetGM2 > 0)); err != nil {
-				return err
-			}
-		}
-	}
-	for _, line := range []string{
-		"left = given - slow, still to come - used. What was given and used is as issued; the days behind it are in the sheet days.",
-		"The slow share comes in a straight line over its weeks: common practice.",
-	} {
-		if _, err := p.add(b.value(small, line)); err != nil {
-			return err
-		}
-	}
-	return nil
+// largestText is the place of the difference largest by size among the cells,
+// the first of equal ones. The cells are rounded, so that equal ones are equal.
+func largestText(cells string) string {
+	most, least := fmt.Sprintf("MATCH(MAX(%[1]s),%[1]s,0)", cells), fmt.Sprintf("MATCH(MIN(%[1]s),%[1]s,0)", cells)
+	return fmt.Sprintf("IF(MAX(%[1]s)=-MIN(%[1]s),MIN(%[2]s,%[3]s),IF(MAX(%[1]s)>-MIN(%[1]s),%[2]s,%[3]s))", cells, most, least)
 }

@@ -48,7 +48,7 @@ func (b *book) makeStyles() error {
 		return s
 	}
 	day := number(dayFormat)
-	day.Alignment.Horizontal, day.Alignment.Indent = "left", 1
+	day.Alignment.Horizontal, day.Alignment.Indent, day.Alignment.WrapText = "left", 1, true
 	key := number(dayFormat)
 	key.Font, key.Alignment = font(10, true), day.Alignment
 	looks := map[style]*excelize.Style{

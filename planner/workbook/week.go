@@ -2,11 +2,12 @@ package workbook
 
 import (
 	"fmt"
+	"slices"
 	"strings"
+	"unicode/utf8"
 
 	"github.com/xuri/excelize/v2"
 
-	"swardbook/calc"
 	"swardbook/planner"
 )
 
@@ -14,6 +15,8 @@ const (
 	weekHead     = 3
 	mostSurfaces = 3 // with a growth column in the week
 	mostCounts   = 2 // works with a degree-day column in the week
+	// Widths of columns, in letters: of days and names, and of words.
+	nameWide, wordsWide = 17, 21
 )
 
 // ownCount is the count of a work on its own mean.
@@ -28,11 +31,13 @@ func ownCount(work planner.SheetWork) int {
 
 // week writes the sheet that is pinned up: key numbers, then a row a day.
 func (b *book) week(p *page) error {
-	wides := append([]float64{20, 8, 8, 12, 9}, make([]float64, b.weekColumns()-9)...)
-	for i, wide := range append(wides, 22, 13, 7, 18) {
-		if wide == 0 {
-			wide = 12
-		}
+	const narrow = 10.5
+	wides := append([]float64{nameWide, 8, 8, 11, 9}, slices.Repeat([]float64{narrow}, b.fallsColumn()-6)...)
+	wides = append(wides, wordsWide, wordsWide, 12, 7, 18)
+	if _, _, product, last := b.keyColumns(); last == product { // few columns: the key numbers are wider
+		wides = append(wides, wordsWide, wordsWide, wordsWide)[:last]
+	}
+	for i, wide := range wides {
 		if err := p.SetColWidth(i+1, i+1, wide); err != nil {
 			return err
 		}
@@ -46,13 +51,8 @@ func (b *book) week(p *page) error {
 	if _, err := p.add(b.value(small, "Readings through "+(b.Plan.AsOf-1).Short()+". "+b.Ahead)); err != nil {
 		return err
 	}
-	if _, err := p.add(b.heads("work", "total", "target", "due", "days until", "early", "late", "how it stands", "counted in")...); err != nil {
+	if err := b.keyRows(p); err != nil {
 		return err
-	}
-	for _, state := range b.Evaluation.Works {
-		if _, err := p.tall(b.keyRow(state)...); err != nil {
-			return err
-		}
 	}
 	if _, err := p.add(); err != nil {
 		return err
@@ -60,18 +60,77 @@ func (b *book) week(p *page) error {
 	if _, err := p.tall(b.heads(b.weekHeads()...)...); err != nil {
 		return err
 	}
+	first := p.row + 1
 	for i := range 7 * b.Weeks {
-		if _, err := p.tall(b.weekRow(p.row+1, i)...); err != nil {
+		if _, err := p.wrapped(handHeight, wordsWide, b.weekRow(p.row+1, i)...); err != nil {
 			return err
 		}
+	}
+	done, notes := column(b.weekColumns()-1), column(b.weekColumns())
+	if err := p.takes(done, first, p.row, texts(20), "Tick it when it is done."); err != nil {
+		return err
+	}
+	if err := p.takes(notes, first, p.row, texts(500), "Room for notes."); err != nil {
+		return err
 	}
 	_, err := p.add(b.value(small, b.Caution))
 	return err
 }
 
-// keyRow is how one work stands, read from the sheet works and log.
-func (b *book) keyRow(state planner.WorkState) []any {
-	name := b.value(plainText, state.Surface.Name+" "+state.Work.Name)
+// keyColumns are the columns of the key numbers that are wider than one: where
+// the unit, how it stands and the product begin, and the last one.
+func (b *book) keyColumns() (unit, stands, product, last int) {
+	stands = max(b.fallsColumn(), 9)
+	return 8, stands, stands + 2, max(b.weekColumns(), stands+2)
+}
+
+// keyRows write a row for each work.
+func (b *book) keyRows(p *page) error {
+	unit, standing, product, last := b.keyColumns()
+	wide := func(cells []any, look style, texts ...any) []any {
+		for i, from := range []int{unit, standing, product} {
+			for len(cells) < from-1 {
+				cells = append(cells, b.value(look, ""))
+			}
+			cells = append(cells, texts[i])
+		}
+		for len(cells) < last {
+			cells = append(cells, b.value(look, ""))
+		}
+		return cells
+	}
+	rows := [][]any{wide(b.heads("work", "total", "target", "due", "days until", "early", "late"), head,
+		b.value(head, "counted in"), b.value(head, "how it stood that morning"), b.value(head, "product for the surface"))}
+	for _, state := range b.Evaluation.Works {
+		numbers, unitName, takes := b.keyRow(state)
+		rows = append(rows, wide(numbers, plainText, b.value(plainText, unitName), b.value(plainText, b.stands(state)), takes))
+	}
+	for i, cells := range rows {
+		least := float64(lineHeight)
+		if i > 0 { // a name has one column, the words beside it two
+			name := fmt.Sprint(cells[0].(excelize.Cell).Value)
+			least = max(handHeight, float64(lineHeight*((utf8.RuneCountInString(name)+nameWide-1)/nameWide)))
+		}
+		row, err := p.wrapped(least, 2*wordsWide-4, cells...)
+		if err != nil {
+			return err
+		}
+		for _, span := range [][2]int{{unit, standing - 1}, {standing, product - 1}, {product, last}} {
+			if span[0] == span[1] {
+				continue
+			}
+			if err := p.MergeCell(fmt.Sprintf("%s%d", column(span[0]), row), fmt.Sprintf("%s%d", column(span[1]), row)); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
+}
+
+// keyRow is how one work stands, read from the sheet works and log: its
+// numbers, what it is counted in, and what the surface takes.
+func (b *book) keyRow(state planner.WorkState) (numbers []any, unit string, takes any) {
+	numbers = []any{b.value(plainText, state.Surface.Name+" "+state.Work.Name)}
 	for w, work := range b.Data.Works {
 		if work.State.Work.ID != state.Work.ID {
 			continue
@@ -79,45 +138,109 @@ func (b *book) keyRow(state planner.WorkState) []any {
 		c := ownCount(work)
 		due, row := work.Counts[c].Due, b.at.works[w].counts[c].row
 		from := func(col string) string { return fmt.Sprintf("'%s'!%s%d", worksSheet, col, row) }
-		until := any("")
-		if told := due.Date(); told.Known {
-			until = float64(told.Day - b.Plan.AsOf)
+		told, until := any(seasonsMost), any("")
+		if date := due.Date(); state.Status != planner.Full {
+			told = passageCell(date)
+			if date.Known {
+				until = float64(date.Day - b.Plan.AsOf)
+			}
 		}
-		_, unit := b.units.Show(0, state.Unit)
-		cells := []any{name, b.live(oneDecimal, from("K"), b.show(work.Counts[c].Through, state.Unit)), b.live(oneDecimal, from("L"), b.show(due.Target, state.Unit)),
-			b.live(strong, from("Q"), passageCell(due.Date())), b.live(whole, from("R"), until)}
+		_, unit = b.units.Show(0, state.Unit)
+		numbers = append(numbers, b.live(oneDecimal, from("K"), b.show(work.Counts[c].Through, state.Unit)), b.live(oneDecimal, from("L"), b.show(due.Target, state.Unit)),
+			b.live(strong, from("Q"), told), b.live(whole, from("R"), until))
 		for i, passage := range []planner.Passage{due.Early, due.Late} {
-			if !due.SpreadKnown {
-				cells = append(cells, b.value(plainText, "not known"))
+			if state.Status == planner.Full {
+				numbers = append(numbers, b.value(plainText, ""))
 				continue
 			}
-			cells = append(cells, b.live(date, from([]string{"N", "P"}[i]), passageCell(passage)))
+			if !due.SpreadKnown {
+				numbers = append(numbers, b.value(plainText, "not known"))
+				continue
+			}
+			numbers = append(numbers, b.live(date, from([]string{"N", "P"}[i]), passageCell(passage)))
 		}
 		if due.Basis != planner.NoBasis {
 			unit += ", " + due.Basis.Words()
 		}
-		return append(cells, b.value(plainText, stands(state)), b.value(plainText, unit))
+		return numbers, unit, b.live(plainText, b.rateText(work, row), b.rateWords(work))
 	}
-	cells := []any{name}
-	for range 6 {
-		cells = append(cells, b.value(plainText, ""))
+	blank := b.value(plainText, "")
+	numbers = append(numbers, blank, blank)
+	if facts, started := state.OwnFacts(); started && facts.Date().Known && state.Status != planner.Full {
+		// Last done before the sheet's days: the date is as issued.
+		numbers = append(numbers, b.value(strong, serial(facts.Date().Day)), b.value(whole, float64(facts.Date().Day-b.Plan.AsOf)))
+	} else {
+		numbers = append(numbers, blank, blank)
 	}
-	return append(cells, b.value(plainText, stands(state)), b.value(plainText, ""))
+	return append(numbers, blank, blank), "", blank
 }
 
-// stands says how the work stood on the morning.
-func stands(state planner.WorkState) string {
-	text := string(state.Status)
-	if facts, ok := state.OwnFacts(); ok && facts.Held.Known {
-		text += "; held by the least days between"
+// leftOut are the rows of the key numbers of works that are due and whose
+// count begins before the days of the sheet.
+func (b *book) leftOut() (rows []int, names string) {
+	for i, state := range b.Evaluation.Works {
+		facts, started := state.OwnFacts()
+		counted := slices.ContainsFunc(b.Data.Works, func(work planner.SheetWork) bool { return work.State.Work.ID == state.Work.ID })
+		if date := facts.Date(); started && !counted && date.Known && date.Day <= b.Plan.AsOf && state.Status != planner.Full {
+			rows = append(rows, weekHead+1+i)
+			names += state.Surface.Name + " " + state.Work.Name + "; "
+		}
 	}
-	if state.Closed != nil {
-		text += "; closed: " + state.Closed.Why
+	return rows, names
+}
+
+// stands says how the work stood on the morning, and what is in the way of its
+// date.
+func (b *book) stands(state planner.WorkState) string {
+	facts, started := state.OwnFacts()
+	switch {
+	case state.Status == planner.Resting && state.Resumes.Known:
+		return "resting; on again " + state.Resumes.Day.Short()
+	case state.Status == planner.Resting:
+		return "resting"
+	case !started:
+		return "not started: log the last one"
+	}
+	text := string(state.Status)
+	switch state.Status {
+	case planner.Full:
+		text = seasonsMost
+	case planner.DueToday:
+		text = "due today"
+	}
+	if state.LastDone < b.firstDay() {
+		text += "; last done " + state.LastDone.String() + ", before this sheet"
+	}
+	if facts.Held.Known {
+		text += fmt.Sprintf("; held by the %d days between", state.Settings.Limits.LeastDays)
+	}
+	if state.RestsThen {
+		text += "; its season ends before"
+	}
+	if closed := state.Closed; closed != nil {
+		text += "; closed then: " + closed.Why
+		if closed.Before.Known {
+			text += ", open " + closed.Before.Day.Short()
+		}
+		if closed.After.Known {
+			text += ", again from " + closed.After.Day.Short()
+		}
 	}
 	if len(state.Behind) > 0 {
-		text += "; behind: " + strings.Join(state.Behind, ", ")
+		text += "; not done yet: " + strings.Join(state.Behind, ", ")
+	}
+	if state.Doubted != nil {
+		text += "; last pass doubtful"
 	}
 	return text
+}
+
+// firstDay is the first day of the sheet.
+func (b *book) firstDay() planner.Day {
+	if len(b.Data.Days) == 0 {
+		return b.Plan.AsOf
+	}
+	return b.Data.Days[0].Facts.Day
 }
 
 // degreeDayWorks are the places of the works with a column in the week.
@@ -136,8 +259,11 @@ func (b *book) weekSurfaces() []planner.Surface {
 	return b.Plan.Surfaces[:min(len(b.Plan.Surfaces), mostSurfaces)]
 }
 
-// weekColumns is how many columns the week has.
-func (b *book) weekColumns() int { return 9 + len(b.weekSurfaces()) + len(b.degreeDayWorks()) }
+// fallsColumn is the column of what falls due.
+func (b *book) fallsColumn() int { return 6 + len(b.weekSurfaces()) + len(b.degreeDayWorks()) }
+
+// weekColumns is how many columns the days of the week have.
+func (b *book) weekColumns() int { return b.fallsColumn() + 4 }
 
 func (b *book) weekHeads() []string {
 	heads := []string{"day", "high " + b.units.Degree(), "low " + b.units.Degree(), "24-hour mean", "high/low mean"}
@@ -148,7 +274,7 @@ func (b *book) weekHeads() []string {
 		state := b.Data.Works[w].State
 		heads = append(heads, fmt.Sprintf("%s %s, %s-days", state.Surface.Name, state.Work.Name, b.units.Degree()))
 	}
-	return append(heads, "falls due", "closed", "done", "notes")
+	return append(heads, "falls due", "product", "closed", "done", "notes")
 }
 
 // weekRow is one day of the week.
@@ -198,32 +324,47 @@ func (b *book) weekRow(row, i int) []any {
 		}
 		cells = append(cells, b.live(oneDecimal, lookup(countName(work, count, "units")), orBlank(units, inside)))
 	}
-	text, falls := b.fallsDue(row, i, day)
-	due := b.value(plainText, "")
-	if text != "" {
-		due = b.live(plainText, text, falls)
+	falls := b.onDay(row, i, day, "AF", workWords)
+	if rows, names := b.leftOut(); i == 0 && len(rows) > 0 {
+		text := `""`
+		if falls.Formula != "" {
+			text = falls.Formula
+		}
+		for _, row := range rows {
+			text += fmt.Sprintf(`&$A$%d&"; "`, row)
+		}
+		falls = b.live(plainText, text, fmt.Sprint(falls.Value)+names)
 	}
-	return append(cells, due, b.value(plainText, b.closedOn(day)), b.value(room, "☐"), b.value(room, ""))
+	product := b.onDay(row, i, day, "AG", b.productWords)
+	return append(cells, falls, product, b.value(plainText, b.closedOn(day)), b.value(room, "☐"), b.value(room, ""))
 }
 
-// fallsDue names the works due on the day, on the first day also those due
-// before. The names are read from cells, never written into the formula.
-func (b *book) fallsDue(row, i int, day planner.Day) (text, value string) {
-	var parts, names []string
-	compare := "="
+// longestFormula is what a spreadsheet program takes as one formula.
+const longestFormula = 8192
+
+// onDay joins the words of the works due on the day, on the first day also of
+// those due before. The words are read from a column of works and log, never
+// written into the formula. Of more works than a formula can name, some hundred,
+// they are as issued.
+func (b *book) onDay(row, i int, day planner.Day, col string, words func(planner.SheetWork) string) excelize.Cell {
+	var parts []string
+	said, compare := "", "="
 	if i == 0 {
 		compare = "<="
 	}
 	for w, work := range b.Data.Works {
 		c := ownCount(work)
 		at := b.at.works[w].counts[c].row
-		from := func(col string) string { return fmt.Sprintf("'%s'!%s%d", worksSheet, col, at) }
-		parts = append(parts, fmt.Sprintf(`IF(AND(ISNUMBER(%[1]s),%[1]s%[2]s$A%[3]d),%[4]s&" "&%[5]s&"; ","")`, from("Q"), compare, row, from("A"), from("B")))
-		if told := work.Counts[c].Due.Date(); told.Known && (told.Day == day || i == 0 && told.Day < day) {
-			names = append(names, work.State.Surface.Name+" "+work.State.Work.Name+"; ")
+		parts = append(parts, fmt.Sprintf(`IFERROR(IF('%[1]s'!Q%[2]d%[3]s$A%[4]d,'%[1]s'!%[5]s%[2]d,""),"")`, worksSheet, at, compare, row, col))
+		if told := work.Counts[c].Due.Date(); work.State.Status != planner.Full && told.Known && (told.Day == day || i == 0 && told.Day < day) {
+			said += words(work)
 		}
 	}
-	return strings.Join(parts, "&"), strings.Join(names, "")
+	text := strings.Join(parts, "&")
+	if text == "" || len(text) > longestFormula {
+		return b.value(plainText, said)
+	}
+	return b.live(plainText, text, said)
 }
 
 // closedOn names what closes any work on the day.
@@ -238,45 +379,4 @@ func (b *book) closedOn(day planner.Day) string {
 		}
 	}
 	return strings.Join(names, "; ")
-}
-
-// notes writes what the words mean, and the formulas with their sources.
-func (b *book) notes(p *page) error {
-	for i, wide := range []float64{26, 70, 44, 70} {
-		if err := p.SetColWidth(i+1, i+1, wide); err != nil {
-			return err
-		}
-	}
-	if _, err := p.add(b.value(title, "Notes")); err != nil {
-		return err
-	}
-	id := fmt.Sprintf("swardbook-sheet-%d-form-%d", b.ID, Form)
-	for _, line := range [][2]string{
-		{"sheet", id},
-		{"path", "The days ahead that this sheet computes on: typed days first, then the mean of past years."},
-		{"likely", "Early to late: eight years in ten fell between them. They stand on curves issued with the sheet; when a day, a base or a curve is edited only the bot can tell them."},
-		{"days ahead", b.Ahead},
-		{"beyond this sheet", "The total does not reach its target on the days of this sheet."},
-		{"growth", "Growth potential knows temperature only: not water, shade, wear or disease."},
-		{"cautions", b.Caution},
-		{"", "Swardbook plans dates; it prescribes no product and no rate."},
-	} {
-		if _, err := p.add(b.value(wrapped, line[0]), b.value(wrapped, line[1])); err != nil {
-			return err
-		}
-	}
-	if _, err := p.add(); err != nil {
-		return err
-	}
-	if _, err := p.add(b.heads("formula", "in words", "source", "in the cells")...); err != nil {
-		return err
-	}
-	for _, formula := range calc.Catalogue() {
-		text, _ := CellText(formula.ID)
-		if _, err := p.add(b.value(wrapped, formula.Title), b.value(wrapped, formula.Words),
-			b.value(wrapped, formula.Origin()), b.value(wrapped, text)); err != nil {
-			return err
-		}
-	}
-	return nil
 }

@@ -2,76 +2,128 @@ package workbook
 
 import (
 	"fmt"
-	"strings"
+	"math"
 
 	"github.com/xuri/excelize/v2"
 
 	"swardbook/planner"
 )
 
-func workColumns() []string {
+// printedColumns are A to Z: those after them keep what is as issued.
+const printedColumns = 26
+
+// workWide is how wide its columns are, in letters.
+const workWide = 13
+
+// workColumns are the heads of the works, A to AG.
+func (b *book) workColumns() []string {
+	area := b.units.Amounts(planner.MassRate).Area
 	return []string{"surface", "work", "mean", "counts by", "unit", "base", "upper limit", "target or reserve", "count starts after", "least days between",
 		"total through yesterday", "target of this count", "date on the path", "early", "middle", "late", "due", "days until",
-		"units as issued", "total as issued", "start as issued", "target as issued", "nitrogen used before the sheet"}
+		"the rate is of", "rate, the last logged", "unit of the rate", "nitrogen in it, %", "area, " + area, "product for the area", "unit", "nitrogen in that",
+		"units as issued", "total as issued", "start as issued", "target of this count as issued", "nitrogen used before the sheet", "in words", "with its product"}
 }
 
-// askTheBot is what a date cell says when only members could tell it.
+// askTheBot is what a cell says when only the bot could tell it.
 const askTheBot = "ask the bot"
 
 // works writes the works, the grass and the log: the inputs.
 func (b *book) works(p *page) error {
-	if err := p.SetColWidth(1, len(workColumns()), 13); err != nil {
+	if err := p.SetColWidth(1, len(b.workColumns()), workWide); err != nil {
+		return err
+	}
+	if err := p.SetPanes(&excelize.Panes{Freeze: true, XSplit: 2, TopLeftCell: "C1", ActivePane: "topRight"}); err != nil {
 		return err
 	}
 	if _, err := p.add(b.value(title, "Works and log")); err != nil {
 		return err
 	}
-	weather := 0.0
-	for _, day := range b.Data.Days {
-		if f := day.Facts; f.HasExtremes {
-			weather += b.units.Temperature(f.HighC) + 2*b.units.Temperature(f.LowC)
-		}
-		if f := day.Facts; f.HasHourly {
-			weather += 3 * b.units.Temperature(f.HourlyC)
-		}
-	}
-	if _, err := p.add(b.value(small, "as of"), b.value(date, serial(b.Plan.AsOf)), b.value(small, "weather as issued"), b.value(oneDecimal, weather),
-		b.value(small, "weather changed"), b.live(small, "ABS(SUM(d_high)+2*SUM(d_low)+3*SUM(d_mean)-wb_weather)>0.0000001", false)); err != nil {
+	if _, err := p.add(b.value(small, "as of"), b.value(date, serial(b.Plan.AsOf)), b.value(small, "weather, as a mark"), b.value(oneDecimal, b.weatherMark()),
+		b.value(small, "weather changed"), b.live(small, fmt.Sprintf("IFERROR(ABS(%s-wb_weather)>0.0000001,TRUE)", weatherMarkText()), false)); err != nil {
 		return err
 	}
-	if _, err := p.add(b.value(small, "Framed yellow cells are inputs. Early, middle and late ask the bot once a day, a base or a curve is changed.")); err != nil {
+	if _, err := p.add(b.value(small, "Framed yellow cells are inputs. Early, middle and late ask the bot once a day, a base or a curve is changed. "+
+		"The rate is the last one logged, or what you type: Swardbook prescribes none.")); err != nil {
 		return err
 	}
-	if _, err := p.tall(b.heads(workColumns()...)...); err != nil {
+	if _, err := p.tall(b.heads(b.workColumns()...)...); err != nil {
 		return err
 	}
 	for w := range b.Data.Works {
 		for c := range b.Data.Works[w].Counts {
-			if _, err := p.add(b.workRow(w, c)...); err != nil {
+			if _, err := p.wrapped(lineHeight, 2*workWide, b.workRow(w, c)...); err != nil {
 				return err
 			}
 		}
 	}
-	if b.at.counts > 0 {
-		first, last := worksHead+1, worksHead+b.at.counts
-		if err := p.number(fmt.Sprintf("F%d:G%d", first, last), -148, 144, "Degrees "+b.units.Degree()+"."); err != nil {
-			return err
-		}
-		if err := p.number(fmt.Sprintf("H%d:H%d", first, last), 0, 180000, "The total at which the work falls due, or the nitrogen reserve."); err != nil {
-			return err
-		}
-		if err := p.number(fmt.Sprintf("I%d:I%d", first, last), serial(0), serial(planner.DayMax), "The date after which the count starts."); err != nil {
-			return err
-		}
-		if err := p.number(fmt.Sprintf("J%d:J%d", first, last), 0, 366, "Least days between two passes."); err != nil {
-			return err
-		}
+	if err := b.workRules(p, worksHead+1, worksHead+b.at.counts); err != nil {
+		return err
 	}
 	if err := b.grass(p); err != nil {
 		return err
 	}
 	return b.log(p)
 }
+
+// workRules say what the inputs of the works take.
+func (b *book) workRules(p *page, first, last int) error {
+	for _, input := range []struct {
+		col    string
+		takes  kind
+		prompt string
+	}{
+		{"F", b.temperatures(), "The base in " + b.units.Degree() + "."},
+		{"G", b.temperatures(), "The upper limit in " + b.units.Degree() + "."},
+		{"H", numbers(0, 180000), "The total at which the work falls due, or the nitrogen reserve."},
+		{"I", dates(), "The date after which the count starts."},
+		{"J", wholes(0, 366), "Least days between two passes."},
+		{"T", numbers(0, 10000), "What is given, in the unit beside it. The label's rate is the law."},
+		{"V", numbers(0, 82), "Nitrogen of the product by mass, percent."},
+	} {
+		if err := p.takes(input.col, first, last, input.takes, input.prompt); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// weatherMark is a number that another high, low or mean of any day changes:
+// the values, and whether there is one, each weighed by its day, so that two
+// days exchanged do not go unseen. weatherMarkText is its formula.
+func (b *book) weatherMark() float64 {
+	mark := 0.0
+	for _, day := range b.Data.Days {
+		f, at := day.Facts, serial(day.Facts.Day)
+		mark += 100 * math.Sin(at)
+		if f.HasExtremes {
+			mark += b.units.Temperature(f.HighC)*math.Sin(at) + b.units.Temperature(f.LowC)*math.Sin(at+1)
+			mark += 100 * (math.Sin(at) + math.Sin(at+1))
+		}
+		if f.HasHourly {
+			mark += (b.units.Temperature(f.HourlyC) + 100) * math.Sin(at+2)
+		}
+	}
+	return mark
+}
+
+func weatherMarkText() string {
+	text := "100*SUMPRODUCT(--ISNUMBER(d_date),SIN(d_date))"
+	for _, cells := range [][2]string{{"d_high", "SIN(d_date)"}, {"d_low", "SIN(d_date+1)"}, {"d_mean", "SIN(d_date+2)"}} {
+		text += fmt.Sprintf("+SUMPRODUCT(%[1]s,%[2]s)+100*SUMPRODUCT(--ISNUMBER(%[1]s),%[2]s)", cells[0], cells[1])
+	}
+	return text
+}
+
+// unitsMark is such a number of the units that the days give a count.
+func (b *book) unitsMark(count planner.SheetCount, unit planner.Unit) float64 {
+	mark := 0.0
+	for i, units := range count.Units {
+		mark += b.show(units, unit) * (2 + math.Sin(serial(b.Data.Days[i].Facts.Day)))
+	}
+	return mark
+}
+
+func unitsMarkText(units string) string { return fmt.Sprintf("SUMPRODUCT(%s,2+SIN(d_date))", units) }
 
 // passageCell is a date, or says that it is beyond the sheet.
 func passageCell(at planner.Passage) any {
@@ -82,206 +134,184 @@ func passageCell(at planner.Passage) any {
 }
 
 func (b *book) workRow(w, c int) []any {
-	work, count, at := b.Data.Works[w], b.Data.Works[w].Counts[c], b.at.works[w].counts[c]
-	state, r, settings := work.State, at.row, work.State.Settings
+	work, count, r := b.Data.Works[w], b.Data.Works[w].Counts[c], b.at.works[w].counts[c].row
+	state := work.State
 	_, unit := b.units.Show(0, state.Unit)
 	cells := []any{b.value(plainText, state.Surface.Name), b.value(plainText, state.Work.Name), b.value(plainText, count.Due.Basis.Words()),
-		b.value(plainText, string(settings.Counts)), b.value(plainText, unit)}
-	cells = append(cells, b.inputs(work, c, r)...)
-	cells = append(cells, b.results(work, count, r)...)
-	sum := 0.0
-	for _, units := range count.Units {
-		sum += b.show(units, state.Unit)
+		b.value(plainText, string(state.Settings.Counts)), b.value(plainText, unit)}
+	cells = append(cells, b.inputs(work, c)...)
+	cells = append(cells, b.results(w, c, r)...)
+	cells = append(cells, b.amounts(work, c, r)...)
+	cells = append(cells, b.value(twoDecimals, b.unitsMark(count, state.Unit)), b.value(twoDecimals, b.show(count.Through, state.Unit)),
+		b.value(date, serial(state.LastDone)), b.value(twoDecimals, b.show(count.Due.Target, state.Unit)), b.value(twoDecimals, count.CarriedGM2))
+	return append(cells, b.words(work, r)...)
+}
+
+// workInput is one of the cells F to J of a work.
+type workInput struct {
+	name        string
+	look, shown style // as an input, and where it is repeated
+	value       float64
+	known       bool
+	fixed       string // the formula of a cell that is no input
+}
+
+func (b *book) workInputs(work planner.SheetWork) []workInput {
+	state, settings := work.State, work.State.Settings
+	cuts := settings.Thresholds.Cutoff != "" && settings.Thresholds.Cutoff != "none"
+	byDegrees := settings.Counts == planner.ByDegreeDays
+	inputs := []workInput{
+		{"base", inNumber, oneDecimal, b.units.Temperature(settings.Thresholds.LowerC), byDegrees, ""},
+		{"upper", inNumber, oneDecimal, b.units.Temperature(settings.Thresholds.UpperC), byDegrees && cuts, ""},
+		{"target", inTwo, twoDecimals, b.show(settings.Target, state.Unit), true, ""},
+		{"last", inDate, date, serial(state.LastDone), true, ""},
+		{"gap", inNumber, whole, float64(settings.Limits.LeastDays), true, ""},
 	}
-	return append(cells, b.value(twoDecimals, sum), b.value(twoDecimals, b.show(count.Through, state.Unit)), b.value(date, serial(state.LastDone)),
-		b.value(twoDecimals, b.show(settings.Target, state.Unit)), b.value(twoDecimals, count.CarriedGM2))
+	if settings.Counts == planner.ByNitrogen {
+		inputs[3].fixed = lastFeedText(state.Surface.ID)
+	}
+	return inputs
 }
 
 // inputs are the cells F to J: of a work's first count as inputs, of its second
 // repeated.
-func (b *book) inputs(work planner.SheetWork, c, r int) []any {
-	state, settings := work.State, work.State.Settings
-	cuts := settings.Thresholds.Cutoff != "" && settings.Thresholds.Cutoff != "none"
-	byDegrees := settings.Counts == planner.ByDegreeDays
-	values := []struct {
-		look  style
-		shown style
-		value float64
-		known bool
-		fixed string // the formula of a cell that is no input
-	}{
-		{inNumber, oneDecimal, b.units.Temperature(settings.Thresholds.LowerC), byDegrees, ""},
-		{inNumber, oneDecimal, b.units.Temperature(settings.Thresholds.UpperC), byDegrees && cuts, ""},
-		{inTwo, twoDecimals, b.show(settings.Target, state.Unit), true, ""},
-		{inDate, date, serial(state.LastDone), true, ""},
-		{inNumber, whole, float64(settings.Limits.LeastDays), true, ""},
-	}
-	if settings.Counts == planner.ByNitrogen {
-		values[3].fixed = fmt.Sprintf("SUMPRODUCT(MAX((log_surface=%d)*log_date))", state.Surface.ID)
-	}
-	cells := make([]any, len(values))
-	for i, v := range values {
-		name := workName(work, []string{"base", "upper", "target", "last", "gap"}[i])
+func (b *book) inputs(work planner.SheetWork, c int) []any {
+	var cells []any
+	for _, input := range b.workInputs(work) {
 		switch {
-		case !v.known:
-			cells[i] = b.value(plainText, "")
+		case !input.known:
+			cells = append(cells, b.value(plainText, ""))
 		case c > 0:
-			cells[i] = b.live(v.shown, name, v.value)
-		case v.fixed != "":
-			cells[i] = b.live(v.shown, v.fixed, v.value)
+			cells = append(cells, b.live(input.shown, workName(work, input.name), input.value))
+		case input.fixed != "":
+			cells = append(cells, b.live(input.shown, input.fixed, input.value))
 		default:
-			cells[i] = b.value(v.look, v.value)
+			cells = append(cells, b.value(input.look, input.value))
 		}
 	}
 	return cells
 }
 
 // results are the cells K to R.
-func (b *book) results(work planner.SheetWork, count planner.SheetCount, r int) []any {
+func (b *book) results(w, c, r int) []any {
+	work, count := b.Data.Works[w], b.Data.Works[w].Counts[c]
 	state, due := work.State, count.Due
-	units, total := countName(work, count, "units"), countName(work, count, "total")
 	cell := func(col string) string { return fmt.Sprintf("%s%d", col, r) }
-	target := cell("H")
-	if state.Settings.Counts == planner.ByNitrogen {
-		target = fmt.Sprintf(`SUMIFS(log_quick,log_surface,%[1]d)-%[2]s-SUMIFS(%[3]s,d_date,">"&SUMPRODUCT(MIN(log_date+1000000*(log_surface<>%[1]d))),d_date,"<="&%[4]s)-%[5]s`,
-			state.Surface.ID, cell("W"), units, cell("I"), cell("H"))
-	}
+	path := fmt.Sprintf(`IFERROR(IF(COUNT(%[1]s:%[2]s)<2,"%[3]s",%[4]s),"%[3]s")`, cell("K"), cell("L"), askTheBot,
+		passageText("d_date", countName(work, count, "total"), "", cell("L"), cell("I")))
 	cells := []any{
-		b.live(twoDecimals, fmt.Sprintf(`SUMIFS(%s,d_date,">"&%s,d_date,"<"&wb_asof)`, units, cell("I")), b.show(count.Through, state.Unit)),
-		b.live(twoDecimals, target, b.show(due.Target, state.Unit)),
-		b.live(date, passageText("d_date", total, "", cell("L"), cell("I")), passageCell(due.Path)),
+		b.live(twoDecimals, b.throughText(w, c, cell), b.show(count.Through, state.Unit)),
+		b.live(twoDecimals, b.targetText(work, count, cell), b.show(due.Target, state.Unit)),
+		b.live(date, path, passageCell(due.Path)),
 	}
-	ask := b.askText(work, units, cell)
+	ask := b.askText(work, countName(work, count, "units"), cell)
 	for i, passage := range []planner.Passage{due.Early, due.Middle, due.Late} {
 		if !due.SpreadKnown && i != 1 {
 			cells = append(cells, b.value(plainText, "no spread known"))
 			continue
 		}
 		curve := fmt.Sprintf("IF(AND(ISNUMBER(%[1]s),%[1]s<wb_asof),%[1]s,%[2]s)", cell("M"),
-			passageText("c_date", countName(work, count, curveNames[i]), fmt.Sprintf("+(%s-%s)", cell("K"), cell("T")), cell("L"), cell("I")))
+			passageText("c_date", countName(work, count, curveNames[i]), fmt.Sprintf("+(%s-%s)", cell("K"), cell("AB")), cell("L"), cell("I")))
 		if work.Gap { // members differ in the past too: the date is as issued
 			curve = fmt.Sprintf("%q", beyond)
 			if passage.Known {
 				curve = fmt.Sprintf("%.0f", serial(passage.Day))
 			}
 		}
-		cells = append(cells, b.live(date, fmt.Sprintf("IF(%s,%q,%s)", ask, askTheBot, curve), passageCell(passage)))
+		cells = append(cells, b.live(date, fmt.Sprintf(`IFERROR(IF(%[1]s,"%[2]s",%[3]s),"%[2]s")`, ask, askTheBot, curve), passageCell(passage)))
 	}
+	return append(cells, b.dueCells(state, due, cell)...)
+}
+
+// seasonsMost is told instead of a date once a limit of the season is reached.
+const seasonsMost = "season's most reached"
+
+// dueCells are the date told and the days until it.
+func (b *book) dueCells(state planner.WorkState, due planner.DueFacts, cell func(string) string) []any {
 	until := any("")
-	if told := due.Date(); told.Known {
+	told := due.Date()
+	if told.Known {
 		until = float64(told.Day - b.Plan.AsOf)
 	}
-	told := fmt.Sprintf("IF(AND(ISNUMBER(%[1]s),%[2]s>0),MAX(%[1]s,%[3]s+%[2]s),%[1]s)", cell("O"), cell("J"), cell("I"))
-	return append(cells, b.live(strong, told, passageCell(due.Date())),
-		b.live(whole, fmt.Sprintf(`IF(ISNUMBER(%[1]s),%[1]s-wb_asof,"")`, cell("Q")), until))
+	untilText := fmt.Sprintf(`IF(ISNUMBER(%[1]s),%[1]s-wb_asof,"")`, cell("Q"))
+	if state.Status == planner.Full {
+		return []any{b.value(plainText, seasonsMost), b.live(whole, untilText, "")}
+	}
+	text := fmt.Sprintf("IF(AND(ISNUMBER(%[1]s),%[2]s>0),MAX(%[1]s,%[3]s+%[2]s),%[1]s)", cell("O"), cell("J"), cell("I"))
+	return []any{b.live(strong, text, passageCell(told)), b.live(whole, untilText, until)}
 }
 
-// askText is true once the issued curves no longer tell the dates.
+// throughText is the total through yesterday. A count that starts before the
+// days of the sheet, and one over hours that are as issued, asks the bot.
+func (b *book) throughText(w, c int, cell func(string) string) string {
+	work := b.Data.Works[w]
+	ask := cell("I") + "+1<MIN(d_date)"
+	if b.at.works[w].hours != "" {
+		ask = fmt.Sprintf("OR(%s,wb_changed,%s)", ask, b.changed(workName(work, "base"), workName(work, "upper")))
+	}
+	return fmt.Sprintf(`IFERROR(IF(%[1]s,"%[2]s",SUMIFS(%[3]s,d_date,">"&%[4]s,d_date,"<"&wb_asof)),"%[2]s")`, ask, askTheBot, countName(work, work.Counts[c], "units"), cell("I"))
+}
+
+// targetText is the target of the count: the input, or, of a work that counts
+// by nitrogen, what was there at the end of the day of the newest feed less the
+// reserve. What was used before the sheet is as issued; once the first feed
+// before it, or the grass, is another one, it asks the bot.
+func (b *book) targetText(work planner.SheetWork, count planner.SheetCount, cell func(string) string) string {
+	surface := work.State.Surface
+	if work.State.Settings.Counts != planner.ByNitrogen {
+		return cell("H")
+	}
+	first := firstFeedText(surface.ID)
+	since := planner.Day(0)
+	for _, nitrogen := range b.Data.Nitrogen {
+		if nitrogen.State.Surface.ID == surface.ID {
+			since = nitrogen.State.Since
+		}
+	}
+	before := fmt.Sprintf("%s+1<MIN(d_date)", first)
+	return fmt.Sprintf(`IFERROR(IF(AND(%[1]s,OR(%[2]s<>%.0[3]f,%[4]s)),"%[5]s",SUMIFS(log_quick,log_surface,%[6]d)+%[7]s-IF(%[1]s,%[8]s,0)-SUMIFS(%[9]s,d_date,">"&%[2]s,d_date,"<="&%[10]s)-%[11]s),"%[5]s")`,
+		before, first, serial(since), b.turfChanged(surface), askTheBot, surface.ID, slowThroughText(surface.ID, cell("I")), cell("AE"),
+		usedName(surface, count.Due.Basis), cell("I"), cell("H"))
+}
+
+// askText is true once the issued curves no longer tell the dates. They are
+// totals of the members from the count's start as issued, so that they hold
+// while members and their counting are as issued:
+//
+//   - another target, reserve or least days between: they hold, for the curve
+//     of a rank is read at any target;
+//   - another last date, the feeds of the log at once: they hold, shifted by
+//     what the total through yesterday differs, as all members share the past.
+//     Not so from the plan's morning on, where the past begins to differ, nor
+//     over days that the record lacks, which each member fills by itself;
+//   - a high, low or mean of any day, a row of the days taken out (wb_changed),
+//     base, upper limit, optimum, width, monthly ceiling, and slow nitrogen,
+//     which are in the units of each day: they do not hold. A day put in without
+//     a date, and rows put in above the works, change nothing;
+//   - a count that began before days which the record lacks has its dates as
+//     issued: any other start or target asks.
+//
+// What cannot be computed at all (a cell with text, a count from before the
+// sheet's first day) asks too.
 func (b *book) askText(work planner.SheetWork, units string, cell func(string) string) string {
-	changed := "wb_changed"
-	if work.State.Settings.Counts == planner.ByDays {
-		changed = "FALSE"
+	counts := work.State.Settings.Counts
+	start := fmt.Sprintf("%[1]s>=wb_asof,%[2]s>=wb_asof", cell("I"), cell("AC"))
+	ask := fmt.Sprintf("COUNT(%s:%s)<2,ABS(%s-%s)>0.000001", cell("K"), cell("L"), unitsMarkText(units), cell("AA"))
+	if counts != planner.ByDays {
+		start += fmt.Sprintf(`,SUMPRODUCT((LEFT(d_from,7)="%s")*(d_date>%s)*(d_date<=%s))>0`, missing, cell("I"), cell("AC"))
+		ask += ",wb_changed"
 	}
-	start := fmt.Sprintf("OR(%s>=wb_asof,%s>=wb_asof)", cell("I"), cell("U"))
-	target := "FALSE"
+	switch counts {
+	case planner.ByDegreeDays:
+		ask += "," + b.changed(workName(work, "base"), workName(work, "upper"))
+	case planner.ByGrowthDays, planner.ByNitrogen:
+		ask += "," + b.turfChanged(work.State.Surface)
+	}
 	if work.Gap {
-		start, target = "TRUE", fmt.Sprintf("%s<>%s", cell("H"), cell("V"))
+		start = "TRUE"
+		ask += fmt.Sprintf(",ABS(%s-%s)>0.000000001", cell("L"), cell("AD"))
 	}
-	return fmt.Sprintf("OR(%s,ABS(SUM(%s)-%s)>0.000001,AND(%s<>%s,%s),%s)", changed, units, cell("S"), cell("I"), cell("U"), start, target)
-}
-
-func (b *book) grass(p *page) error {
-	if _, err := p.add(); err != nil {
-		return err
-	}
-	if _, err := p.add(b.heads("surface", "from", "optimum", "width", "most nitrogen a month, g/m²", "area, m²")...); err != nil {
-		return err
-	}
-	first := p.row + 1
-	for _, surface := range b.Plan.Surfaces {
-		for i, turf := range surface.Turf {
-			from := any("always")
-			if i > 0 {
-				from = serial(turf.Day)
-			}
-			if _, err := p.add(b.value(plainText, surface.Name), b.value(date, from), b.value(inTwo, b.units.Temperature(turf.Value.Curve.OptimumC)),
-				b.value(inTwo, b.units.Difference(turf.Value.Curve.WidthC)), b.value(inTwo, turf.Value.CeilingGM2), b.value(whole, surface.AreaM2)); err != nil {
-				return err
-			}
-		}
-	}
-	if p.row < first {
-		return nil
-	}
-	if err := p.number(fmt.Sprintf("C%d:C%d", first, p.row), -148, 144, "The mean temperature of full growth."); err != nil {
-		return err
-	}
-	if err := p.number(fmt.Sprintf("D%d:D%d", first, p.row), 0.1, 100, "Degrees from the optimum at which growth is 61 %."); err != nil {
-		return err
-	}
-	return p.number(fmt.Sprintf("E%d:E%d", first, p.row), 0, 20, "Nitrogen in g/m² that a month of perfect growing weather uses.")
-}
-
-// log writes the feeds that count, then the newest lines of the work log.
-func (b *book) log(p *page) error {
-	if _, err := p.add(); err != nil {
-		return err
-	}
-	if _, err := p.add(b.heads("surface number", "surface", "fed on", "at once, g N/m²", "slow, g N/m²", "over days")...); err != nil {
-		return err
-	}
-	feeds := b.feeds()
-	if len(feeds) == 0 {
-		if _, err := p.add(b.value(whole, 0.0), b.value(plainText, "none"), b.value(date, serial(0)), b.value(twoDecimals, 0.0), b.value(twoDecimals, 0.0), b.value(whole, 1.0)); err != nil {
-			return err
-		}
-	}
-	first := p.row + 1
-	for _, feed := range feeds {
-		over := 7 * feed.Weeks
-		if over <= 0 {
-			over = 1
-		}
-		slow := feed.SlowGM2
-		if feed.Weeks <= 0 {
-			slow = 0
-		}
-		if _, err := p.add(b.value(whole, float64(feed.surface.ID)), b.value(plainText, feed.surface.Name), b.value(inDate, serial(feed.Day)),
-			b.value(inTwo, feed.QuickGM2), b.value(inTwo, slow), b.value(inNumber, over)); err != nil {
-			return err
-		}
-	}
-	if len(feeds) > 0 {
-		if err := p.number(fmt.Sprintf("D%d:E%d", first, p.row), 0, 100, "Nitrogen in g/m² over the whole surface."); err != nil {
-			return err
-		}
-	}
-	if _, err := p.add(); err != nil {
-		return err
-	}
-	if _, err := p.add(b.heads("done on", "what", "by", "note")...); err != nil {
-		return err
-	}
-	for _, entry := range b.passes() {
-		if _, err := p.add(b.value(date, serial(entry.Day)), b.value(plainText, b.what(entry)), b.value(plainText, entry.By), b.value(plainText, entry.Note)); err != nil {
-			return err
-		}
-	}
-	return nil
-}
-
-// what names the works of an entry.
-func (b *book) what(entry planner.Entry) string {
-	var names []string
-	for _, pass := range entry.Passes {
-		for _, work := range b.Plan.Works {
-			if work.ID == pass.Work {
-				surface, _ := b.Plan.Surface(work.Surface)
-				names = append(names, surface.Name+" "+work.Name)
-			}
-		}
-	}
-	return strings.Join(names, ", ")
+	return fmt.Sprintf("OR(%s,AND(%s<>%s,OR(%s)))", ask, cell("I"), cell("AC"), start)
 }
 
 // curves writes the issued totals at the ranks of the dates.

@@ -90,7 +90,7 @@ func asCSV(ctx context.Context, on session, query string, args ...any) ([]byte, 
 }
 
 // dayColumns hold planner.Day numbers.
-var dayColumns = map[string]bool{"day": true, "valid_from": true, "from_day": true, "to_day": true, "issued": true, "watered": true}
+var dayColumns = map[string]bool{"day": true, "valid_from": true, "from_day": true, "to_day": true, "issued": true, "watered": true, "as_of": true, "start_day": true}
 
 func exported(column string, value any) string {
 	switch v := value.(type) {

@@ -19,6 +19,7 @@ import (
 type Store interface {
 	planner.Keeper
 	planner.Recorder
+	planner.SheetKeeper
 	// Import stages the rows of the file in their order, readings first, and
 	// merges those that are taken.
 	Import(ctx context.Context, stamp planner.Stamp, station planner.StationID, file File) (Imported, error)
@@ -85,6 +86,9 @@ type Repeat struct{ Line, First int }
 //  20. Rain comes by time, both ends included, of the first station by rank that
 //     has any in between; of two values of a time in a file the first stands,
 //     a later file's replaces; it moves neither record nor revision.
+//  21. An issued sheet comes back as it was kept, times in seconds, to its own
+//     team only; outlooks of the same site, day, revision, engine and path are
+//     one, others each their own.
 func Run(t *testing.T, open func(t *testing.T) (newTeam func(name string) Store)) {
 	promises := []struct {
 		name string
@@ -110,6 +114,7 @@ func Run(t *testing.T, open func(t *testing.T) (newTeam func(name string) Store)
 		{"18 writers", testWriters},
 		{"19 ended context", testEndedContext},
 		{"20 rain", testRain},
+		{"21 sheets", testSheets},
 	}
 	for _, promise := range promises {
 		t.Run(promise.name, func(t *testing.T) {
