@@ -124,7 +124,7 @@ func (s scale) width() uint64 {
 // are kept are read with it.
 func (s scale) celsius(n int16) float64 {
 	if s == asTenthsF {
-		return (float64(n)/10 - 32) * 5 / 9
+		return (float64(n)/10 - 32) / 1.8
 	}
 	return float64(n) / 10
 }
@@ -133,7 +133,7 @@ func (s scale) celsius(n int16) float64 {
 func (s scale) tenths(c float64) (n int16, exact bool) {
 	degrees := c
 	if s == asTenthsF {
-		degrees = c*9/5 + 32
+		degrees = c*1.8 + 32
 	}
 	n = int16(math.Round(degrees * 10))
 	return n, math.Float64bits(s.celsius(n)) == math.Float64bits(c)
