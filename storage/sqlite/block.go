@@ -181,7 +181,7 @@ func unpackDays(days []planner.DayFacts, block int64, packed []byte) ([]planner.
 	case binary.LittleEndian.Uint32(packed[1:]) != crc32.ChecksumIEEE(packed[blockSummed:]):
 		return nil, errors.New("its checksum is another one")
 	}
-	u := unpacking{rest: packed[blockHead:]}
+	u := unpacking{packed: packed, at: blockHead}
 	for known := binary.LittleEndian.Uint64(packed[blockSummed:]); known != 0; known &= known - 1 {
 		day := planner.Day(block*blockDays) + planner.Day(bits.TrailingZeros64(known))
 		for n := len(days); n > 0 && days[n-1].Day+1 < day; n++ {
@@ -193,20 +193,23 @@ func unpackDays(days []planner.DayFacts, block int64, packed []byte) ([]planner.
 			return nil, fmt.Errorf("%s: %w", day, u.fault)
 		}
 	}
-	if len(u.rest) > 0 {
-		return nil, fmt.Errorf("%d bytes are too many", len(u.rest))
+	if left := len(packed) - u.at; left > 0 {
+		return nil, fmt.Errorf("%d bytes are too many", left)
 	}
 	return days, nil
 }
 
 var errShort = errors.New("it ends too soon")
 
-// unpacking takes values off the rest of a block. After the first fault what it
-// gives means nothing.
+// unpacking takes values off a block. After the first fault what it gives means
+// nothing. Places are numbers: to move a slice along costs much more while
+// memory is being collected.
 type unpacking struct {
-	rest  []byte
-	free  []float64 // room for the hourly values of the days to come
-	fault error
+	packed []byte
+	at     int       // the next byte
+	room   []float64 // for hourly values
+	used   int       // of room
+	fault  error
 }
 
 // day takes one day, the first of so many.
@@ -245,14 +248,14 @@ func (u *unpacking) refuse(fault error) {
 
 // take gives the next n bytes, nil when there are not so many.
 func (u *unpacking) take(n uint64) []byte {
-	if n > uint64(len(u.rest)) {
+	if n > uint64(len(u.packed)-u.at) {
 		u.refuse(errShort)
-		u.rest = nil
+		u.at = len(u.packed)
 		return nil
 	}
-	taken := u.rest[:n]
-	u.rest = u.rest[n:]
-	return taken
+	from := u.at
+	u.at += int(n)
+	return u.packed[from:u.at]
 }
 
 func (u *unpacking) one() byte {
@@ -263,7 +266,7 @@ func (u *unpacking) one() byte {
 }
 
 func (u *unpacking) count() int {
-	value, n := binary.Varint(u.rest)
+	value, n := binary.Varint(u.packed[u.at:])
 	if u.take(uint64(max(n, 0))); n <= 0 || int64(int(value)) != value {
 		u.refuse(errShort)
 	}
@@ -272,8 +275,8 @@ func (u *unpacking) count() int {
 
 // length gives the number of things that follow, a byte each or more.
 func (u *unpacking) length() uint64 {
-	value, n := binary.Uvarint(u.rest)
-	if u.take(uint64(max(n, 0))); n <= 0 || value > uint64(len(u.rest)) {
+	value, n := binary.Uvarint(u.packed[u.at:])
+	if u.take(uint64(max(n, 0))); n <= 0 || value > uint64(len(u.packed)-u.at) {
 		u.refuse(errShort)
 		return 0
 	}
@@ -307,11 +310,11 @@ func (u *unpacking) hours(days int) []float64 {
 	if taken == nil {
 		return nil
 	}
-	if len(u.free) < n {
-		u.free = make([]float64, max(n, 24*days))
+	if len(u.room)-u.used < n {
+		u.room, u.used = make([]float64, max(n, 24*days)), 0
 	}
-	hoursC := u.free[:n:n]
-	u.free = u.free[n:]
+	hoursC := u.room[u.used : u.used+n : u.used+n]
+	u.used += n
 	for i := range hoursC {
 		if s == asFloats {
 			hoursC[i] = math.Float64frombits(binary.LittleEndian.Uint64(taken[8*i:]))
