@@ -8,6 +8,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"os"
 	"path/filepath"
 	"reflect"
 	"slices"
@@ -73,7 +74,7 @@ func putFactRow(t *testing.T, db *DB, team, station int64, f planner.DayFacts) {
 // opened, to the bit: drawn days on both sides of the borders of blocks.
 func TestOldDaysAreKept(t *testing.T) {
 	t.Parallel()
-	const stations = 12
+	const stations = 6
 	border := []planner.Day{planner.DayMin, -129, -128, -65, -64, -63, -1, 0, 1, 62, 63, 64, 127, 128, 20000, planner.DayMax}
 	kept := map[[2]int64][]planner.DayFacts{} // by team and station
 	for n := range stations {
@@ -184,25 +185,30 @@ func TestOldRecordGoesOn(t *testing.T) {
 // An old file with a day that cannot be read is refused and stays as it is.
 func TestOldDayDamaged(t *testing.T) {
 	t.Parallel()
-	for _, damage := range []string{
+	folder := t.TempDir()
+	good := filepath.Join(folder, "good.db")
+	oldFile(t, good, func(db *DB) {
+		putFactRow(t, db, 1, 1, planner.DayFacts{Day: 70, HasHourly: true, HourlyC: 1, SlotsReal: 1, SlotsWanted: 1, HoursC: []float64{1}})
+	})
+	content, err := os.ReadFile(good)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for i, damage := range []string{
 		"hours_c = x'00112233445566'", "hours_c = x''", "hours_c = NULL", "hours_c = x'000000000000f07f'", // an infinity
 		"extremes_from = 9", "extremes_from = -1", "extremes_from = 257", "day = 5000000000", "day = 200000",
 	} {
-		file := filepath.Join(t.TempDir(), "store.db")
-		oldFile(t, file, func(db *DB) {
-			putFactRow(t, db, 1, 1, planner.DayFacts{Day: 70, HasHourly: true, HourlyC: 1, SlotsReal: 1, SlotsWanted: 1, HoursC: []float64{1}})
-			exec1(t, db, "UPDATE day_fact SET "+damage)
-		})
-		_, err := Open(t.Context(), file)
-		checkDamaged(t, damage, err)
-		db, err := open(t.Context(), file, firstMigrations(t, beforeBlocks))
-		if err != nil {
+		file := filepath.Join(folder, fmt.Sprint(i, ".db"))
+		if err := os.WriteFile(file, content, 0o600); err != nil {
 			t.Fatal(err)
 		}
-		if rows := texts(t, db, "SELECT count(*) FROM day_fact"); rows[0] != "1" {
-			t.Errorf("%s: %s rows are left", damage, rows)
+		makeDatabase(t, file, "UPDATE day_fact SET "+damage)
+		_, err := Open(t.Context(), file)
+		checkDamaged(t, damage, err)
+		if version, err := inspect(t.Context(), file); version != beforeBlocks || err != nil {
+			t.Errorf("%s: the file is of schema %d, %v", damage, version, err)
 		}
-		db.Close()
+		makeDatabase(t, file, "INSERT INTO day_fact SELECT * FROM day_fact WHERE false") // the table is there
 	}
 }
 
