@@ -124,50 +124,57 @@ func wellKnown(days []planner.DayFacts) bool {
 // recentMean is the mean of the newest known days of the record; an empty day
 // when there are none.
 func recentMean(record planner.Record) planner.DayFacts {
-	var days []planner.DayFacts
-	for i := len(record.Facts) - 1; i >= 0 && len(days) < recentDays; i-- {
-		if !record.Facts[i].Empty() {
-			days = append(days, record.Facts[i])
-		}
+	var known averaging
+	for i := len(record.Facts) - 1; i >= 0 && known.days < recentDays; i-- {
+		known.add(&record.Facts[i])
 	}
-	return meanOf(days)
+	return known.mean()
 }
 
 // expected is the mean of what the members know of day i, else the recent mean.
 func expected(members [][]planner.DayFacts, i int, recent planner.DayFacts) planner.DayFacts {
-	days := make([]planner.DayFacts, 0, len(members))
+	var known averaging
 	for _, member := range members {
-		days = append(days, member[i])
+		known.add(&member[i])
 	}
-	if mean := meanOf(days); !mean.Empty() {
-		return mean
+	if known.days > 0 {
+		return known.mean()
 	}
 	return recent
 }
 
-// meanOf averages highs, lows and 24-hour means, each over the days that know
-// it.
-func meanOf(days []planner.DayFacts) planner.DayFacts {
-	var high, low, hourly float64
-	var extremes, means int
-	for _, day := range days {
-		if day.HasExtremes {
-			high += day.HighC
-			low += day.LowC
-			extremes++
-		}
-		if day.HasHourly {
-			hourly += day.HourlyC
-			means++
-		}
+// averaging averages highs, lows and 24-hour means, each over the days that
+// know it.
+type averaging struct {
+	high, low, hourly float64 // sums
+	extremes, means   int     // days that have them
+	days              int     // days that have one or the other
+}
+
+// add takes a day that stays where it is: there are thousands.
+func (a *averaging) add(day *planner.DayFacts) {
+	if day.HasExtremes {
+		a.high += day.HighC
+		a.low += day.LowC
+		a.extremes++
 	}
+	if day.HasHourly {
+		a.hourly += day.HourlyC
+		a.means++
+	}
+	if day.HasExtremes || day.HasHourly {
+		a.days++
+	}
+}
+
+func (a *averaging) mean() planner.DayFacts {
 	mean := planner.DayFacts{SlotsWanted: 24}
-	if extremes > 0 {
+	if a.extremes > 0 {
 		mean.HasExtremes, mean.ExtremesFrom = true, planner.FromAhead
-		mean.HighC, mean.LowC = high/float64(extremes), low/float64(extremes)
+		mean.HighC, mean.LowC = a.high/float64(a.extremes), a.low/float64(a.extremes)
 	}
-	if means > 0 {
-		mean.HasHourly, mean.HourlyC = true, hourly/float64(means)
+	if a.means > 0 {
+		mean.HasHourly, mean.HourlyC = true, a.hourly/float64(a.means)
 	}
 	return mean
 }

@@ -7,7 +7,6 @@ import (
 	"embed"
 	"errors"
 	"fmt"
-	"io/fs"
 	"net/url"
 	"path/filepath"
 	"strings"
@@ -51,15 +50,15 @@ type DB struct {
 // and a file of a newer schema are each a *planner.Problem, and the file is
 // left as it was.
 func Open(ctx context.Context, path string) (*DB, error) {
-	migrations, err := fs.Sub(embedded, "migrations")
+	all, err := allMigrations()
 	if err != nil {
 		return nil, fmt.Errorf("open store: %w", err)
 	}
-	return open(ctx, path, migrations)
+	return open(ctx, path, all)
 }
 
 // open is Open with the migrations as a parameter.
-func open(ctx context.Context, path string, migrations fs.FS) (*DB, error) {
+func open(ctx context.Context, path string, all migrations) (*DB, error) {
 	path, err := checkPath(path)
 	if err != nil {
 		return nil, err
@@ -68,7 +67,7 @@ func open(ctx context.Context, path string, migrations fs.FS) (*DB, error) {
 	if err != nil {
 		return nil, storeError("open store", err)
 	}
-	if err := migrate(ctx, db.writer, path, migrations); err != nil {
+	if err := migrate(ctx, db.writer, path, all); err != nil {
 		return nil, errors.Join(err, db.Close())
 	}
 	return db, nil

@@ -8,6 +8,7 @@ import (
 	"encoding/hex"
 	"fmt"
 	"strconv"
+	"strings"
 	"time"
 
 	"swardbook/planner"
@@ -29,13 +30,19 @@ func (t *Team) Export(ctx context.Context, site planner.SiteID) (files []planner
 		below := hanging(keys, "site")
 		changes := ""
 		for _, table := range below {
-			where := below.condition(keys, table)
-			content, err := asCSV(ctx, conn, fmt.Sprintf(`SELECT * FROM %q WHERE %s`, table, where), t.id, site)
+			where, name := below.condition(keys, table), table
+			var content []byte
+			if table == "day_block" {
+				name = "day_fact"
+				content, err = daysAsCSV(ctx, conn, t.id, site, where)
+			} else {
+				content, err = asCSV(ctx, conn, fmt.Sprintf(`SELECT * FROM %q WHERE %s`, table, where), t.id, site)
+			}
 			if err != nil {
 				return fmt.Errorf("%s: %w", table, err)
 			}
 			if content != nil {
-				files = append(files, planner.DataFile{Name: table + ".csv", Content: content})
+				files = append(files, planner.DataFile{Name: name + ".csv", Content: content})
 			}
 			if keyOf(keys, table) != "" {
 				changes += fmt.Sprintf(` OR kind = '%s' AND thing IN (SELECT id FROM %q WHERE %s)`, table, table, where)
@@ -87,6 +94,65 @@ func asCSV(ctx context.Context, on session, query string, args ...any) ([]byte, 
 		return nil, err
 	}
 	return out.Bytes(), writer.Error()
+}
+
+// dayFactColumns are the columns of exported day facts. hours_c are the hourly
+// values with spaces between.
+var dayFactColumns = []string{"station", "day", "high_c", "low_c", "extremes_from", "hourly_c", "published",
+	"slots_real", "slots_bridged", "slots_wanted", "hours_c", "doubt"}
+
+// daysAsCSV writes the days of the blocks that the condition holds for, a row
+// each with a header; nil when there are none.
+func daysAsCSV(ctx context.Context, on session, team int64, site planner.SiteID, where string) ([]byte, error) {
+	stations, err := collect(ctx, on, func(rows *sql.Rows) (station planner.StationID, err error) {
+		return station, rows.Scan(&station)
+	}, `SELECT DISTINCT station FROM day_block WHERE `+where+` ORDER BY station`, team, site)
+	if err != nil || len(stations) == 0 {
+		return nil, err
+	}
+	var out bytes.Buffer
+	writer := csv.NewWriter(&out)
+	_ = writer.Write(dayFactColumns) // the buffer takes all
+	for _, station := range stations {
+		first, last := everyBlock()
+		days, err := keptDays(ctx, on, team, station, first, last)
+		if err != nil {
+			return nil, err
+		}
+		for _, facts := range days {
+			if !blank(facts) {
+				_ = writer.Write(exportedDay(station, facts))
+			}
+		}
+	}
+	writer.Flush()
+	return out.Bytes(), writer.Error()
+}
+
+// exportedDay is a row of dayFactColumns.
+func exportedDay(station planner.StationID, f planner.DayFacts) []string {
+	var highC, lowC, meanC any
+	if f.HasExtremes {
+		highC, lowC = f.HighC, f.LowC
+	}
+	if f.HasHourly {
+		meanC = f.HourlyC
+	}
+	published := int64(0)
+	if f.Published {
+		published = 1
+	}
+	hoursC := make([]string, 0, len(f.HoursC))
+	for _, c := range f.HoursC {
+		hoursC = append(hoursC, exported("", c))
+	}
+	values := []any{int64(station), int64(f.Day), highC, lowC, int64(f.ExtremesFrom), meanC, published,
+		int64(f.SlotsReal), int64(f.SlotsBridged), int64(f.SlotsWanted), strings.Join(hoursC, " "), f.Doubt}
+	row := make([]string, 0, len(values))
+	for i, value := range values {
+		row = append(row, exported(dayFactColumns[i], value))
+	}
+	return row
 }
 
 // dayColumns hold planner.Day numbers.

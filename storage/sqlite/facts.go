@@ -3,8 +3,6 @@ package sqlite
 import (
 	"context"
 	"database/sql"
-	"encoding/binary"
-	"fmt"
 	"math"
 	"sort"
 	"time"
@@ -75,30 +73,43 @@ func floorDiv(a, b int64) int64 {
 	return q
 }
 
-// rebuild builds the facts of the days again, a few hundred at a time.
+// rebuild builds the facts of the days again, a few hundred at a time. What is
+// kept of other days in their first and last block stays as it is.
 func (c *cutter) rebuild(ctx context.Context, days span) error {
+	days = span{max(days.first, planner.DayMin), min(days.last, planner.DayMax)}
 	if days.last < days.first {
 		return nil
 	}
-	if _, err := c.on.ExecContext(ctx, `DELETE FROM day_fact WHERE team = ? AND station = ? AND day BETWEEN ? AND ?`,
-		c.team, c.station, days.first, days.last); err != nil {
-		return err
-	}
-	out, err := newBatch(ctx, c.on, factRows, `INSERT INTO day_fact (team, station, day, `+factColumns+`) VALUES`, 3+factWidth)
+	first, last := blockOf(days.first), blockOf(days.last)
+	before, err := keptDays(ctx, c.on, c.team, c.station, first, first)
 	if err != nil {
 		return err
 	}
-	defer out.close()
+	after, err := keptDays(ctx, c.on, c.team, c.station, last, last)
+	if err != nil {
+		return err
+	}
+	if _, err := c.on.ExecContext(ctx, `DELETE FROM day_block WHERE team = ? AND station = ? AND block BETWEEN ? AND ?`,
+		c.team, c.station, first, last); err != nil {
+		return err
+	}
+	out := dayWriter{on: c.on, team: c.team, station: c.station}
+	if err := out.add(ctx, span{planner.DayMin, days.first - 1}.of(before)...); err != nil {
+		return err
+	}
 	for first := days.first; first <= days.last; first += daysAtOnce {
-		if err := c.build(ctx, out, span{first, min(first+daysAtOnce-1, days.last)}); err != nil {
+		if err := c.build(ctx, &out, span{first, min(first+daysAtOnce-1, days.last)}); err != nil {
 			return err
 		}
+	}
+	if err := out.add(ctx, span{days.last + 1, planner.DayMax}.of(after)...); err != nil {
+		return err
 	}
 	return out.flush(ctx)
 }
 
 // build adds the facts of the days, of which nothing is kept.
-func (c *cutter) build(ctx context.Context, out *batch, days span) error {
+func (c *cutter) build(ctx context.Context, out *dayWriter, days span) error {
 	windows := make([]planner.Window, 0, days.last-days.first+1)
 	from, to := int64(math.MaxInt64), int64(math.MinInt64)
 	for day := days.first; day <= days.last; day++ {
@@ -116,11 +127,7 @@ func (c *cutter) build(ctx context.Context, out *batch, days span) error {
 	for _, w := range windows {
 		first := sort.Search(len(c.readings), func(i int) bool { return c.readings[i].At >= w.Start-planner.Reach })
 		last := sort.Search(len(c.readings), func(i int) bool { return c.readings[i].At > w.End+planner.Reach })
-		facts := planner.BuildDay(w, c.readings[first:last], own[w.Day])
-		if blank(facts) {
-			continue
-		}
-		if err := out.add(ctx, append([]any{c.team, c.station, w.Day}, factValues(facts)...)...); err != nil {
+		if err := out.add(ctx, planner.BuildDay(w, c.readings[first:last], own[w.Day])); err != nil {
 			return err
 		}
 	}
@@ -161,53 +168,7 @@ func (c *cutter) own(ctx context.Context, days span) (map[planner.Day]*planner.D
 	return byDay, err
 }
 
-// blank reports whether a day holds nothing that would be worth a row.
+// blank reports whether nothing is known of a day.
 func blank(f planner.DayFacts) bool {
 	return f.Empty() && f.SlotsReal == 0 && f.SlotsBridged == 0 && f.Doubt == ""
-}
-
-const (
-	factColumns = `high_c, low_c, extremes_from, hourly_c, published, slots_real, slots_bridged, slots_wanted, hours_c, doubt`
-	factWidth   = 10
-	factRows    = 32 // in one statement
-)
-
-// factValues writes facts in the order of factColumns; what is not known is
-// NULL.
-func factValues(f planner.DayFacts) []any {
-	var highC, lowC, hourlyC, hoursC any
-	if f.HasExtremes {
-		highC, lowC = f.HighC, f.LowC
-	}
-	if f.HasHourly {
-		hourlyC = f.HourlyC
-	}
-	if f.HoursC != nil {
-		packed := make([]byte, 0, 8*len(f.HoursC))
-		for _, c := range f.HoursC {
-			packed = binary.LittleEndian.AppendUint64(packed, math.Float64bits(c))
-		}
-		hoursC = packed
-	}
-	return []any{highC, lowC, int64(f.ExtremesFrom), hourlyC, f.Published,
-		f.SlotsReal, f.SlotsBridged, f.SlotsWanted, hoursC, f.Doubt}
-}
-
-// unpackHours reads hours_c. A length that is not whole values, and a value
-// that is no temperature, are errors.
-func unpackHours(packed []byte) ([]float64, error) {
-	if packed == nil {
-		return nil, nil
-	}
-	if len(packed)%8 != 0 || len(packed) == 0 {
-		return nil, fmt.Errorf("hourly values of %d bytes cannot be read", len(packed))
-	}
-	hoursC := make([]float64, len(packed)/8)
-	for i := range hoursC {
-		hoursC[i] = math.Float64frombits(binary.LittleEndian.Uint64(packed[8*i:]))
-		if err := planner.CheckTemperature(hoursC[i]); err != nil {
-			return nil, fmt.Errorf("hourly value %d: %w", i, err)
-		}
-	}
-	return hoursC, nil
 }

@@ -129,7 +129,7 @@ func TestMergeSurvivesCrash(t *testing.T) {
 	}{
 		{"a value replaced", "AFTER INSERT ON replaced_reading WHEN new.at = 3600 * 3900", false},
 		{"a reading", "AFTER INSERT ON reading WHEN new.at = 3600 * 7900", false},
-		{"the day facts", "AFTER INSERT ON day_fact WHEN new.day = 300", false},
+		{"the day facts", "AFTER INSERT ON day_block WHEN new.block = 4", false},
 		{"the last step", "AFTER UPDATE OF revision ON station", false},
 		{"behind it", "", true},
 	} {
@@ -255,6 +255,13 @@ func surface(name string) planner.Surface {
 func newHome(t testing.TB, path string) (*DB, *Team) {
 	t.Helper()
 	db, home := reopen(t, path)
+	setUpHome(t, home)
+	return db, home
+}
+
+// setUpHome gives the team site 1 and station 1.
+func setUpHome(t testing.TB, home *Team) {
+	t.Helper()
 	for _, noun := range []planner.Noun{
 		planner.Site{Name: "Quillmere", Zone: "America/New_York", Units: planner.Celsius,
 			Rules: planner.Always(planner.DayRule{OffsetSeconds: -5 * 3600, Boundary: planner.StandardMidnight})},
@@ -264,7 +271,6 @@ func newHome(t testing.TB, path string) (*DB, *Team) {
 			t.Fatal(err)
 		}
 	}
-	return db, home
 }
 
 func reopen(t testing.TB, path string) (*DB, *Team) {

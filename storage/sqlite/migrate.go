@@ -55,12 +55,25 @@ func checkPath(path string) (string, error) {
 	return absolute, nil
 }
 
+// migrations are what brings a file from one schema to the next, by number:
+// files of SQL, and steps that need Go.
+type migrations struct {
+	files fs.FS
+	steps []*goose.Migration
+}
+
+// allMigrations are those of this program.
+func allMigrations() (migrations, error) {
+	files, err := fs.Sub(embedded, "migrations")
+	return migrations{files, []*goose.Migration{daysIntoBlocks()}}, err
+}
+
 // migrate brings the file to the newest of the migrations. Another program
 // that is at the same may hold it up at any step: it looks again.
-func migrate(ctx context.Context, writer *sql.DB, path string, migrations fs.FS) error {
+func migrate(ctx context.Context, writer *sql.DB, path string, all migrations) error {
 	var err error
 	for range busyTries {
-		if err = migrateOnce(ctx, writer, path, migrations); planner.KindOf(err) != planner.Busy {
+		if err = migrateOnce(ctx, writer, path, all); planner.KindOf(err) != planner.Busy {
 			return err
 		}
 		select {
@@ -72,8 +85,8 @@ func migrate(ctx context.Context, writer *sql.DB, path string, migrations fs.FS)
 	return err
 }
 
-func migrateOnce(ctx context.Context, writer *sql.DB, path string, migrations fs.FS) error {
-	provider, err := goose.NewProvider(goose.DialectSQLite3, writer, migrations,
+func migrateOnce(ctx context.Context, writer *sql.DB, path string, all migrations) error {
+	provider, err := goose.NewProvider(goose.DialectSQLite3, writer, all.files, goose.WithGoMigrations(all.steps...),
 		goose.WithTableName(versionTable), goose.WithDisableGlobalRegistry(true), goose.WithLogger(goose.NopLogger()))
 	if err != nil {
 		return fmt.Errorf("read migrations: %w", err)
@@ -105,8 +118,8 @@ func migrateUp(ctx context.Context, writer *sql.DB, provider *goose.Provider) er
 	}
 	var err error
 	for range migrationTries {
-		if _, err = provider.Up(ctx); err == nil {
-			return nil
+		if _, err = provider.Up(ctx); err == nil || planner.KindOf(err) == planner.Refused {
+			return err
 		}
 		select {
 		case <-ctx.Done():

@@ -6,9 +6,10 @@ import (
 	"database/sql"
 	"fmt"
 	"io/fs"
+	"math"
 	"os"
-	"path"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 	"testing/fstest"
@@ -144,7 +145,7 @@ func TestMigrationCopiesFirst(t *testing.T) {
 	if _, err := open(t.Context(), file, withMigration(t, "ALTER TABLE team ADD COLUMN motto TEXT; SELECT nonsense()")); err == nil {
 		t.Fatal("a broken migration was applied")
 	}
-	openWith(t, file, embeddedMigrations(t)) // not newer than before
+	openWith(t, file, ourMigrations(t)) // not newer than before
 
 	openWith(t, file, withMigration(t, "ALTER TABLE team ADD COLUMN motto TEXT"))
 	db, home = reopen(t, fmt.Sprintf("%s.before-%d", file, newest(t)+1))
@@ -237,52 +238,71 @@ func makeDatabase(t *testing.T, path, statement string) {
 	}
 }
 
-func embeddedMigrations(t *testing.T) fs.FS {
+func ourMigrations(t *testing.T) migrations {
 	t.Helper()
-	migrations, err := fs.Sub(embedded, "migrations")
+	all, err := allMigrations()
 	if err != nil {
 		t.Fatal(err)
 	}
-	return migrations
+	return all
 }
 
 // newest is the schema of this program.
-func newest(t *testing.T) int {
-	t.Helper()
-	names, err := fs.Glob(embedded, "migrations/*.sql")
-	if err != nil {
-		t.Fatal(err)
-	}
-	version, err := goose.NumericComponent(names[len(names)-1])
-	if err != nil {
-		t.Fatal(err)
-	}
-	return int(version)
-}
+func newest(t *testing.T) int { return versionOf(t, ourMigrations(t)) }
 
-// withMigration is the program's migrations and one more.
-func withMigration(t *testing.T, statements string) fs.FS {
+// versionOf is the number of the last of the migrations.
+func versionOf(t *testing.T, all migrations) int {
 	t.Helper()
-	migrations := fstest.MapFS{}
-	names, err := fs.Glob(embedded, "migrations/*.sql")
+	var last int64
+	names, err := fs.Glob(all.files, "*.sql")
 	if err != nil {
 		t.Fatal(err)
 	}
 	for _, name := range names {
-		data, err := fs.ReadFile(embedded, name)
+		version, err := goose.NumericComponent(name)
 		if err != nil {
 			t.Fatal(err)
 		}
-		migrations[path.Base(name)] = &fstest.MapFile{Data: data}
+		last = max(last, version)
 	}
-	next := fmt.Sprintf("%05d_more.sql", newest(t)+1)
-	migrations[next] = &fstest.MapFile{Data: []byte("-- +goose Up\n" + statements + ";\n")}
-	return migrations
+	for _, step := range all.steps {
+		last = max(last, step.Version)
+	}
+	return int(last)
 }
 
-func openWith(t *testing.T, path string, migrations fs.FS) {
+// firstMigrations are the program's migrations up to one.
+func firstMigrations(t *testing.T, upTo int64) migrations {
 	t.Helper()
-	db, err := open(t.Context(), path, migrations)
+	all, files := ourMigrations(t), fstest.MapFS{}
+	names, err := fs.Glob(all.files, "*.sql")
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, name := range names {
+		data, err := fs.ReadFile(all.files, name)
+		if err != nil {
+			t.Fatal(err)
+		}
+		if version, err := goose.NumericComponent(name); err == nil && version <= upTo {
+			files[name] = &fstest.MapFile{Data: data}
+		}
+	}
+	return migrations{files, slices.DeleteFunc(all.steps, func(step *goose.Migration) bool { return step.Version > upTo })}
+}
+
+// withMigration is the program's migrations and one more.
+func withMigration(t *testing.T, statements string) migrations {
+	t.Helper()
+	all := firstMigrations(t, math.MaxInt64)
+	next := fmt.Sprintf("%05d_more.sql", newest(t)+1)
+	all.files.(fstest.MapFS)[next] = &fstest.MapFile{Data: []byte("-- +goose Up\n" + statements + ";\n")}
+	return all
+}
+
+func openWith(t *testing.T, path string, all migrations) {
+	t.Helper()
+	db, err := open(t.Context(), path, all)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -4,7 +4,6 @@ import (
 	"cmp"
 	"context"
 	"database/sql"
-	"errors"
 	"fmt"
 	"slices"
 
@@ -31,8 +30,9 @@ func (t *Team) Record(ctx context.Context, site planner.SiteID) (planner.Record,
 			return err
 		}
 		var stations []planner.StationFacts
+		firstBlock, lastBlock := everyBlock()
 		for _, station := range open {
-			facts, err := stationFacts(ctx, conn, t.id, station.ID)
+			facts, err := keptDays(ctx, conn, t.id, station.ID, firstBlock, lastBlock)
 			if err != nil {
 				return fmt.Errorf("station %s: %w", station.Name, err)
 			}
@@ -76,73 +76,6 @@ func (t *Team) Rain(ctx context.Context, site planner.SiteID, from, to int64) (r
 func siteRevision(ctx context.Context, on session, team int64, site planner.SiteID) (revision int64, err error) {
 	err = on.QueryRowContext(ctx, `SELECT coalesce(max(revision), 0) FROM station WHERE team = ? AND site = ?`, team, site).Scan(&revision)
 	return revision, err
-}
-
-// stationFacts reads the facts of one station, and an empty day for each that
-// is left out between two.
-func stationFacts(ctx context.Context, on session, team int64, station planner.StationID) ([]planner.DayFacts, error) {
-	rows, err := on.QueryContext(ctx, `SELECT day, `+factColumns+` FROM day_fact WHERE team = ? AND station = ? ORDER BY day`, team, station)
-	if err != nil {
-		return nil, err
-	}
-	defer rows.Close()
-	var all []planner.DayFacts
-	for rows.Next() {
-		var row factRow
-		if err := row.scan(rows); err != nil {
-			return nil, err
-		}
-		facts, err := row.facts()
-		if err != nil {
-			return nil, fmt.Errorf("day %d: %w", row.day.Int64, err)
-		}
-		for n := len(all); n > 0 && all[n-1].Day+1 < facts.Day; n++ {
-			all = append(all, planner.DayFacts{Day: all[n-1].Day + 1})
-		}
-		all = append(all, facts)
-	}
-	return all, rows.Err()
-}
-
-// factRow is a row of day_fact as it is stored.
-type factRow struct {
-	day                sql.NullInt64
-	highC, lowC, meanC sql.NullFloat64
-	extremesFrom       sql.NullInt64
-	published          sql.NullBool
-	real, bridged      sql.NullInt64
-	wanted             sql.NullInt64
-	hoursC             sql.RawBytes
-	doubt              sql.NullString
-}
-
-func (r *factRow) scan(rows *sql.Rows) error {
-	return rows.Scan(&r.day, &r.highC, &r.lowC, &r.extremesFrom, &r.meanC, &r.published,
-		&r.real, &r.bridged, &r.wanted, &r.hoursC, &r.doubt)
-}
-
-// facts reads the row; what cannot be is an error.
-func (r *factRow) facts() (planner.DayFacts, error) {
-	day, from := planner.Day(r.day.Int64), planner.Source(r.extremesFrom.Int64)
-	switch {
-	case int64(day) != r.day.Int64 || day < planner.DayMin || day > planner.DayMax:
-		return planner.DayFacts{}, errors.New("it is outside the years 1700 to 2299")
-	case int64(from) != r.extremesFrom.Int64 || from > planner.FromAhead:
-		return planner.DayFacts{}, fmt.Errorf("source %d of its extremes is not known", r.extremesFrom.Int64)
-	}
-	hoursC, err := unpackHours(r.hoursC)
-	if err != nil {
-		return planner.DayFacts{}, err
-	}
-	if hoursC == nil && r.meanC.Valid && !r.published.Bool {
-		return planner.DayFacts{}, errors.New("the hourly values of its 24-hour mean are missing")
-	}
-	return planner.DayFacts{
-		Day: day, HasExtremes: r.highC.Valid, HighC: r.highC.Float64, LowC: r.lowC.Float64, ExtremesFrom: from,
-		HasHourly: r.meanC.Valid, HourlyC: r.meanC.Float64, Published: r.published.Bool,
-		SlotsReal: int(r.real.Int64), SlotsBridged: int(r.bridged.Int64), SlotsWanted: int(r.wanted.Int64),
-		HoursC: hoursC, Doubt: r.doubt.String,
-	}, nil
 }
 
 // Revision returns the Revision the record has now, without loading it.

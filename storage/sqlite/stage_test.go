@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"math"
 	"path/filepath"
 	"testing"
 
@@ -214,6 +215,11 @@ func TestReplacedValuesAreKept(t *testing.T) {
 	}
 }
 
+// putBlock puts the days in place of block 0.
+func putBlock(days ...planner.DayFacts) string {
+	return fmt.Sprintf("UPDATE day_block SET facts = x'%X' WHERE block = 0", packDays(days))
+}
+
 func TestStoredNonsenseIsAnError(t *testing.T) {
 	t.Parallel()
 	ctx := context.Background()
@@ -225,15 +231,16 @@ func TestStoredNonsenseIsAnError(t *testing.T) {
 		"Entries": func(team *Team) error { _, err := team.Entries(ctx, 1); return err },
 	}
 	for _, row := range []struct{ call, statement string }{
-		{"Record", "UPDATE day_fact SET hours_c = x'00112233445566' WHERE day = 1"},
-		{"Record", "UPDATE day_fact SET hours_c = x'' WHERE day = 1"},
-		{"Record", "UPDATE day_fact SET hours_c = NULL WHERE day = 1"},
-		{"Record", "UPDATE day_fact SET hours_c = x'000000000000f07f' WHERE day = 1"}, // an infinity
-		{"Record", "UPDATE day_fact SET extremes_from = 9 WHERE day = 1"},
-		{"Record", "UPDATE day_fact SET extremes_from = -1 WHERE day = 1"},
-		{"Record", "UPDATE day_fact SET extremes_from = 257 WHERE day = 1"},
-		{"Record", "UPDATE day_fact SET day = 5000000000 WHERE day = 1"},
-		{"Record", "UPDATE day_fact SET day = 200000 WHERE day = 1"},
+		{"Record", "UPDATE day_block SET facts = substr(facts, 1, length(facts) - 1) WHERE block = 0"},
+		{"Record", "UPDATE day_block SET facts = CAST(facts || x'00' AS BLOB) WHERE block = 0"},
+		{"Record", "UPDATE day_block SET facts = x'' WHERE block = 0"},
+		{"Record", putBlock(planner.DayFacts{Day: 1, HasHourly: true, HourlyC: 1})}, // without its hours
+		{"Record", putBlock(planner.DayFacts{Day: 1, HasHourly: true, HourlyC: 1, HoursC: []float64{math.Inf(1)}})},
+		{"Record", putBlock(planner.DayFacts{Day: 1, HasExtremes: true, HighC: math.NaN(), LowC: 1})},
+		{"Record", putBlock(planner.DayFacts{Day: 1, ExtremesFrom: 9})},
+		{"Record", putBlock(planner.DayFacts{Day: 1, ExtremesFrom: 255})},
+		{"Record", "UPDATE day_block SET block = 5000000000 WHERE block = 0"},
+		{"Record", "UPDATE day_block SET block = 3125 WHERE block = 0"}, // day 200000
 		{"Changes", "INSERT INTO change (team, id, at, who, command, kind, thing, before, after, undoes) VALUES (1, 77, 0, '', '', 'site', 1, NULL, '{', NULL)"},
 		{"Changes", "INSERT INTO change (team, id, at, who, command, kind, thing, before, after, undoes) VALUES (1, 77, 0, '', '', 'site', 1, '{\"name\":7}', NULL, NULL)"},
 		{"Changes", "INSERT INTO change (team, id, at, who, command, kind, thing, before, after, undoes) VALUES (1, 77, 0, '', '', 'bird', 1, NULL, '{}', NULL)"},
@@ -264,8 +271,10 @@ func TestSchemaRefuses(t *testing.T) {
 		t.Fatal(err)
 	}
 	for _, statement := range []string{
-		"UPDATE day_fact SET low_c = NULL WHERE day = 1",
-		"UPDATE day_fact SET slots_real = 'many' WHERE day = 1",
+		"UPDATE day_block SET facts = NULL WHERE block = 0",
+		"UPDATE day_block SET facts = 'many' WHERE block = 0",
+		"UPDATE day_block SET block = 0.5 WHERE block = 0",
+		"UPDATE day_block SET station = 9 WHERE block = 0",
 		"UPDATE reading SET c = 'warm'",
 		"UPDATE reading SET import = 9",
 		"UPDATE station SET site = 9",

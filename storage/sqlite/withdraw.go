@@ -249,15 +249,10 @@ func withDay(facts planner.DayFacts, day planner.Day) planner.DayFacts {
 
 // factsOf reads the kept facts of the days, by day.
 func factsOf(ctx context.Context, on session, team int64, station planner.StationID, days span) (map[planner.Day]planner.DayFacts, error) {
+	known, err := keptDays(ctx, on, team, station, blockOf(days.first), blockOf(days.last))
 	byDay := map[planner.Day]planner.DayFacts{}
-	_, err := collect(ctx, on, func(rows *sql.Rows) (struct{}, error) {
-		var row factRow
-		if err := row.scan(rows); err != nil {
-			return struct{}{}, err
-		}
-		facts, err := row.facts()
+	for _, facts := range days.of(known) {
 		byDay[facts.Day] = facts
-		return struct{}{}, err
-	}, `SELECT day, `+factColumns+` FROM day_fact WHERE team = ? AND station = ? AND day BETWEEN ? AND ?`, team, station, days.first, days.last)
+	}
 	return byDay, err
 }
