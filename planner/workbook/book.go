@@ -209,9 +209,8 @@ func sheetProps(name string) *excelize.SheetPropsOptions {
 
 // dimension is the range of a sheet's cells, which some readers trust.
 func (b *book) dimension(name string) string {
-	_, _, _, keyEnd := b.keyColumns()
 	last := map[string][2]int{
-		weekSheet:       {keyEnd, weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
+		weekSheet:       {b.weekEnd(), weekHead + len(b.Evaluation.Works) + 4 + 7*b.Weeks},
 		daysSheet:       {b.at.columns, daysHead + len(b.Data.Days)},
 		worksSheet:      {len(b.workColumns()), b.at.worksEnd},
 		meansSheet:      {6, meansHead + len(b.bothMeans())},

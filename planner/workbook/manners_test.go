@@ -379,7 +379,7 @@ func titlesOf(t *testing.T, content []byte) []string {
 // functions that compute the same in Excel from 2016, LibreOffice and Google
 // Sheets, in every language and on every day, and need no array entry.
 var functions = []string{"IF", "AND", "OR", "NOT", "ISNUMBER", "IFERROR", "COUNT", "COUNTIF", "COUNTIFS", "SUM", "SUMIF", "SUMIFS", "SUMPRODUCT", "AVERAGE", "STDEV",
-	"MIN", "MAX", "LARGE", "ABS", "ROUND", "INT", "EXP", "SQRT", "ACOS", "PI", "DAY", "EOMONTH", "INDEX", "MATCH", "LEFT", "ISTEXT", "SIN", "REPT", "FIXED", "N", "CHOOSE", "LOOKUP"}
+	"MIN", "MAX", "LARGE", "ABS", "ROUND", "INT", "EXP", "SQRT", "ACOS", "PI", "DAY", "EOMONTH", "INDEX", "MATCH", "LEFT", "MID", "ISTEXT", "SIN", "REPT", "FIXED", "N", "CHOOSE", "LOOKUP"}
 
 var (
 	literal  = regexp.MustCompile(`"(?:[^"]|"")*"`)

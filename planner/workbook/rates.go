@@ -128,10 +128,13 @@ func (b *book) rateWords(work planner.SheetWork) string {
 	return text
 }
 
+// between stands before each of several works in a cell; the first is cut.
+const between = "; "
+
 // workWords name the work, productWords name it with what the surface takes, as
 // they stand in a list of what falls due.
 func workWords(work planner.SheetWork) string {
-	return work.State.Surface.Name + " " + work.State.Work.Name + "; "
+	return between + work.State.Surface.Name + " " + work.State.Work.Name
 }
 
 func (b *book) productWords(work planner.SheetWork) string {
@@ -139,13 +142,13 @@ func (b *book) productWords(work planner.SheetWork) string {
 	if takes == "" {
 		return ""
 	}
-	return work.State.Surface.Name + " " + work.State.Work.Name + " " + takes + "; "
+	return between + work.State.Surface.Name + " " + work.State.Work.Name + " " + takes
 }
 
 // words are the cells AF and AG: the work, and what the surface takes of it.
 func (b *book) words(work planner.SheetWork, r int) []any {
 	name := fmt.Sprintf(`A%[1]d&" "&B%[1]d`, r)
 	amount := fmt.Sprintf("X%d", r)
-	return []any{b.live(plainText, name+`&"; "`, workWords(work)),
-		b.live(plainText, fmt.Sprintf(`IF(ISNUMBER(%s),%s&" "&%s&" "&Y%d&"; ","")`, amount, name, roundedText(amount), r), b.productWords(work))}
+	return []any{b.live(plainText, fmt.Sprintf("%q&%s", between, name), workWords(work)),
+		b.live(plainText, fmt.Sprintf(`IF(ISNUMBER(%s),%q&%s&" "&%s&" "&Y%d,"")`, amount, between, name, roundedText(amount), r), b.productWords(work))}
 }

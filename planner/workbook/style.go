@@ -37,7 +37,7 @@ func (b *book) makeStyles() error {
 		return &excelize.Font{Family: "Arial", Size: size, Bold: bold, Color: "202020"}
 	}
 	number := func(format string) *excelize.Style {
-		return &excelize.Style{Font: font(10, false), Border: line, CustomNumFmt: &format, Alignment: &excelize.Alignment{Horizontal: "right", Vertical: "center"}}
+		return &excelize.Style{Font: font(10, false), Border: line, CustomNumFmt: &format, Alignment: &excelize.Alignment{Horizontal: "right", Vertical: "center", Indent: 1}}
 	}
 	input := func(format string) *excelize.Style {
 		s := number(format)

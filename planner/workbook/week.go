@@ -3,6 +3,7 @@ package workbook
 import (
 	"fmt"
 	"slices"
+	"strconv"
 	"strings"
 	"unicode/utf8"
 
@@ -29,20 +30,21 @@ func ownCount(work planner.SheetWork) int {
 	return 0
 }
 
-// week writes the sheet that is pinned up: key numbers, then a row a day.
+// week writes the sheet that is pinned up: key numbers, then a row a day. On a
+// phone the first three columns are seen: what is to be done stands in them, and
+// the weather behind it.
 func (b *book) week(p *page) error {
 	const narrow = 10.5
-	wides := append([]float64{nameWide, 8, 8, 11, 9}, slices.Repeat([]float64{narrow}, b.fallsColumn()-6)...)
-	wides = append(wides, wordsWide, wordsWide, 12, 7, 18)
-	if _, _, product, last := b.keyColumns(); last == product { // few columns: the key numbers are wider
-		wides = append(wides, wordsWide, wordsWide, wordsWide)[:last]
+	wides := append([]float64{nameWide, wordsWide, wordsWide, 12, 7, 18, 9, 9, 11, 11}, slices.Repeat([]float64{narrow}, b.weekColumns()-weatherEnd)...)
+	for len(wides) < productColumn+1 {
+		wides = append(wides, narrow)
 	}
 	for i, wide := range wides {
 		if err := p.SetColWidth(i+1, i+1, wide); err != nil {
 			return err
 		}
 	}
-	if err := p.SetPanes(&excelize.Panes{Freeze: true, YSplit: weekHead, TopLeftCell: fmt.Sprintf("A%d", weekHead+1), ActivePane: "bottomLeft"}); err != nil {
+	if err := p.SetPanes(&excelize.Panes{Freeze: true, XSplit: 1, YSplit: 1, TopLeftCell: "B2", ActivePane: "bottomRight"}); err != nil {
 		return err
 	}
 	if _, err := p.add(b.value(title, fmt.Sprintf("%s, %s to %s", b.Plan.Site.Name, b.Plan.AsOf.Short(), (b.Plan.AsOf+planner.Day(7*b.Weeks-1)).Short()))); err != nil {
@@ -66,7 +68,7 @@ func (b *book) week(p *page) error {
 			return err
 		}
 	}
-	done, notes := column(b.weekColumns()-1), column(b.weekColumns())
+	done, notes := "E", "F"
 	if err := p.takes(done, first, p.row, texts(20), "Tick it when it is done."); err != nil {
 		return err
 	}
@@ -77,48 +79,34 @@ func (b *book) week(p *page) error {
 	return err
 }
 
-// keyColumns are the columns of the key numbers that are wider than one: where
-// the unit, how it stands and the product begin, and the last one.
-func (b *book) keyColumns() (unit, stands, product, last int) {
-	stands = max(b.fallsColumn(), 9)
-	return 8, stands, stands + 2, max(b.weekColumns(), stands+2)
-}
+// The columns of the key numbers that are wider than one: what a count is in, E
+// and F, and the product, K to the last.
+const (
+	unitColumn    = 5
+	weatherEnd    = 10 // of the days: the last column but growth and degree days
+	productColumn = 11
+)
+
+// weekEnd is the last column of the week.
+func (b *book) weekEnd() int { return max(b.weekColumns(), productColumn+1) }
 
 // keyRows write a row for each work.
 func (b *book) keyRows(p *page) error {
-	unit, standing, product, last := b.keyColumns()
-	wide := func(cells []any, look style, texts ...any) []any {
-		for i, from := range []int{unit, standing, product} {
-			for len(cells) < from-1 {
-				cells = append(cells, b.value(look, ""))
-			}
-			cells = append(cells, texts[i])
-		}
-		for len(cells) < last {
-			cells = append(cells, b.value(look, ""))
-		}
-		return cells
-	}
-	rows := [][]any{wide(b.heads("work", "total", "target", "due", "days until", "early", "late"), head,
-		b.value(head, "counted in"), b.value(head, "how it stood that morning"), b.value(head, "product for the surface"))}
+	rows := [][]any{b.keyCells(head, b.heads("work", "due", "how it stood that morning", "days until", "counted in", "total", "target", "early", "late", "product for the surface"))}
 	for _, state := range b.Evaluation.Works {
-		numbers, unitName, takes := b.keyRow(state)
-		rows = append(rows, wide(numbers, plainText, b.value(plainText, unitName), b.value(plainText, b.stands(state)), takes))
+		rows = append(rows, b.keyCells(plainText, b.keyRow(state)))
 	}
 	for i, cells := range rows {
 		least := float64(lineHeight)
-		if i > 0 { // a name has one column, the words beside it two
+		if i > 0 { // a name has one column
 			name := fmt.Sprint(cells[0].(excelize.Cell).Value)
 			least = max(handHeight, float64(lineHeight*((utf8.RuneCountInString(name)+nameWide-1)/nameWide)))
 		}
-		row, err := p.wrapped(least, 2*wordsWide-4, cells...)
+		row, err := p.wrapped(least, wordsWide-2, cells...)
 		if err != nil {
 			return err
 		}
-		for _, span := range [][2]int{{unit, standing - 1}, {standing, product - 1}, {product, last}} {
-			if span[0] == span[1] {
-				continue
-			}
+		for _, span := range [][2]int{{unitColumn, unitColumn + 1}, {productColumn, b.weekEnd()}} {
 			if err := p.MergeCell(fmt.Sprintf("%s%d", column(span[0]), row), fmt.Sprintf("%s%d", column(span[1]), row)); err != nil {
 				return err
 			}
@@ -127,10 +115,18 @@ func (b *book) keyRows(p *page) error {
 	return nil
 }
 
-// keyRow is how one work stands, read from the sheet works and log: its
-// numbers, what it is counted in, and what the surface takes.
-func (b *book) keyRow(state planner.WorkState) (numbers []any, unit string, takes any) {
-	numbers = []any{b.value(plainText, state.Surface.Name+" "+state.Work.Name)}
+// keyCells puts the cells of a key row into their columns, the rest empty.
+func (b *book) keyCells(look style, cells []any) []any {
+	row := slices.Insert(cells, unitColumn, any(b.value(look, "")))
+	for len(row) < b.weekEnd() {
+		row = append(row, b.value(look, ""))
+	}
+	return row
+}
+
+// keyRow is how one work stands, read from the sheet works and log.
+func (b *book) keyRow(state planner.WorkState) []any {
+	name, stands, blank := b.value(plainText, state.Surface.Name+" "+state.Work.Name), b.value(plainText, b.stands(state)), b.value(plainText, "")
 	for w, work := range b.Data.Works {
 		if work.State.Work.ID != state.Work.ID {
 			continue
@@ -145,45 +141,41 @@ func (b *book) keyRow(state planner.WorkState) (numbers []any, unit string, take
 				until = float64(date.Day - b.Plan.AsOf)
 			}
 		}
-		_, unit = b.units.Show(0, state.Unit)
-		numbers = append(numbers, b.live(oneDecimal, from("K"), b.show(work.Counts[c].Through, state.Unit)), b.live(oneDecimal, from("L"), b.show(due.Target, state.Unit)),
-			b.live(strong, from("Q"), told), b.live(whole, from("R"), until))
-		for i, passage := range []planner.Passage{due.Early, due.Late} {
-			if state.Status == planner.Full {
-				numbers = append(numbers, b.value(plainText, ""))
-				continue
-			}
-			if !due.SpreadKnown {
-				numbers = append(numbers, b.value(plainText, "not known"))
-				continue
-			}
-			numbers = append(numbers, b.live(date, from([]string{"N", "P"}[i]), passageCell(passage)))
-		}
+		unit := b.units.Counted(state.Unit, state.Settings.Counting)
 		if due.Basis != planner.NoBasis {
 			unit += ", " + due.Basis.Words()
 		}
-		return numbers, unit, b.live(plainText, b.rateText(work, row), b.rateWords(work))
+		cells := []any{name, b.live(strong, from("Q"), told), stands, b.live(whole, from("R"), until), b.value(plainText, unit),
+			b.live(oneDecimal, from("K"), b.show(work.Counts[c].Through, state.Unit)), b.live(oneDecimal, from("L"), b.show(due.Target, state.Unit))}
+		for i, passage := range []planner.Passage{due.Early, due.Late} {
+			switch {
+			case state.Status == planner.Full:
+				cells = append(cells, blank)
+			case !due.SpreadKnown:
+				cells = append(cells, b.value(plainText, "not known"))
+			default:
+				cells = append(cells, b.live(date, from([]string{"N", "P"}[i]), passageCell(passage)))
+			}
+		}
+		return append(cells, b.live(plainText, b.rateText(work, row), b.rateWords(work)))
 	}
-	blank := b.value(plainText, "")
-	numbers = append(numbers, blank, blank)
+	cells := []any{name, blank, stands, blank, blank, blank, blank, blank, blank, blank}
 	if facts, started := state.OwnFacts(); started && facts.Date().Known && state.Status != planner.Full {
 		// Last done before the sheet's days: the date is as issued.
-		numbers = append(numbers, b.value(strong, serial(facts.Date().Day)), b.value(whole, float64(facts.Date().Day-b.Plan.AsOf)))
-	} else {
-		numbers = append(numbers, blank, blank)
+		cells[1], cells[3] = b.value(strong, serial(facts.Date().Day)), b.value(whole, float64(facts.Date().Day-b.Plan.AsOf))
 	}
-	return append(numbers, blank, blank), "", blank
+	return cells
 }
 
 // leftOut are the rows of the key numbers of works that are due and whose
 // count begins before the days of the sheet.
-func (b *book) leftOut() (rows []int, names string) {
+func (b *book) leftOut() (rows []string, names string) {
 	for i, state := range b.Evaluation.Works {
 		facts, started := state.OwnFacts()
 		counted := slices.ContainsFunc(b.Data.Works, func(work planner.SheetWork) bool { return work.State.Work.ID == state.Work.ID })
 		if date := facts.Date(); started && !counted && date.Known && date.Day <= b.Plan.AsOf && state.Status != planner.Full {
-			rows = append(rows, weekHead+1+i)
-			names += state.Surface.Name + " " + state.Work.Name + "; "
+			rows = append(rows, strconv.Itoa(weekHead+1+i))
+			names += between + state.Surface.Name + " " + state.Work.Name
 		}
 	}
 	return rows, names
@@ -259,14 +251,11 @@ func (b *book) weekSurfaces() []planner.Surface {
 	return b.Plan.Surfaces[:min(len(b.Plan.Surfaces), mostSurfaces)]
 }
 
-// fallsColumn is the column of what falls due.
-func (b *book) fallsColumn() int { return 6 + len(b.weekSurfaces()) + len(b.degreeDayWorks()) }
-
 // weekColumns is how many columns the days of the week have.
-func (b *book) weekColumns() int { return b.fallsColumn() + 4 }
+func (b *book) weekColumns() int { return weatherEnd + len(b.weekSurfaces()) + len(b.degreeDayWorks()) }
 
 func (b *book) weekHeads() []string {
-	heads := []string{"day", "high " + b.units.Degree(), "low " + b.units.Degree(), "24-hour mean", "high/low mean"}
+	heads := []string{"day", "falls due", "product", "closed", "done", "notes", "high " + b.units.Degree(), "low " + b.units.Degree(), "24-hour mean", "high/low mean"}
 	for _, surface := range b.weekSurfaces() {
 		heads = append(heads, surface.Name+" growth")
 	}
@@ -274,7 +263,7 @@ func (b *book) weekHeads() []string {
 		state := b.Data.Works[w].State
 		heads = append(heads, fmt.Sprintf("%s %s, %s-days", state.Surface.Name, state.Work.Name, b.units.Degree()))
 	}
-	return append(heads, "falls due", "product", "closed", "done", "notes")
+	return heads
 }
 
 // weekRow is one day of the week.
@@ -295,7 +284,8 @@ func (b *book) weekRow(row, i int) []any {
 	}
 	t := b.units.Temperature
 	mid, hasMid := facts.Mean(planner.Midrange)
-	cells := []any{b.value(date, serial(day)),
+	cells := []any{b.value(date, serial(day)), b.fallsDue(row, i, day), b.onDay(row, i, day, "AG", b.productWords),
+		b.value(plainText, b.closedOn(day)), b.value(room, "☐"), b.value(room, ""),
 		b.live(oneDecimal, lookup("d_high"), orBlank(t(facts.HighC), facts.HasExtremes)),
 		b.live(oneDecimal, lookup("d_low"), orBlank(t(facts.LowC), facts.HasExtremes)),
 		b.live(oneDecimal, lookup("d_mean"), orBlank(t(facts.HourlyC), facts.HasHourly)),
@@ -324,29 +314,36 @@ func (b *book) weekRow(row, i int) []any {
 		}
 		cells = append(cells, b.live(oneDecimal, lookup(countName(work, count, "units")), orBlank(units, inside)))
 	}
-	falls := b.onDay(row, i, day, "AF", workWords)
-	if rows, names := b.leftOut(); i == 0 && len(rows) > 0 {
-		text := `""`
-		if falls.Formula != "" {
-			text = falls.Formula
-		}
-		for _, row := range rows {
-			text += fmt.Sprintf(`&$A$%d&"; "`, row)
-		}
-		falls = b.live(plainText, text, fmt.Sprint(falls.Value)+names)
+	return cells
+}
+
+// fallsDue names the works due on the day, on the first day also those that were
+// due before, works left out of the sheet among them.
+func (b *book) fallsDue(row, i int, day planner.Day) excelize.Cell {
+	if i > 0 {
+		return b.onDay(row, i, day, "AF", workWords)
 	}
-	product := b.onDay(row, i, day, "AG", b.productWords)
-	return append(cells, falls, product, b.value(plainText, b.closedOn(day)), b.value(room, "☐"), b.value(room, ""))
+	rows, names := b.leftOut()
+	for i, row := range rows {
+		rows[i] = fmt.Sprintf(`%q&$A$%s`, between, row)
+	}
+	return b.onDay(row, i, day, "AF", workWords, joined{rows, names})
 }
 
 // longestFormula is what a spreadsheet program takes as one formula.
 const longestFormula = 8192
 
+// joined are parts of a formula that joins words, and what they say.
+type joined struct {
+	parts []string
+	said  string
+}
+
 // onDay joins the words of the works due on the day, on the first day also of
 // those due before. The words are read from a column of works and log, never
 // written into the formula. Of more works than a formula can name, some hundred,
 // they are as issued.
-func (b *book) onDay(row, i int, day planner.Day, col string, words func(planner.SheetWork) string) excelize.Cell {
+func (b *book) onDay(row, i int, day planner.Day, col string, words func(planner.SheetWork) string, more ...joined) excelize.Cell {
 	var parts []string
 	said, compare := "", "="
 	if i == 0 {
@@ -360,8 +357,12 @@ func (b *book) onDay(row, i int, day planner.Day, col string, words func(planner
 			said += words(work)
 		}
 	}
-	text := strings.Join(parts, "&")
-	if text == "" || len(text) > longestFormula {
+	for _, other := range more {
+		parts, said = append(parts, other.parts...), said+other.said
+	}
+	said = strings.TrimPrefix(said, between)
+	text := fmt.Sprintf("MID(%s,%d,%d)", strings.Join(parts, "&"), 1+len(between), longestFormula)
+	if len(parts) == 0 || len(text) > longestFormula {
 		return b.value(plainText, said)
 	}
 	return b.live(plainText, text, said)
