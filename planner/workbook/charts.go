@@ -242,7 +242,7 @@ func (b *book) drawWork(w int) {
 	from := func(col string) string { return b.workCell(w, col) }
 	// Once the issued curves no longer tell the dates, the band closes.
 	ask := fmt.Sprintf("AND(ISTEXT(%[1]s),%[1]s=%[2]q)", from("N"), askTheBot)
-	shift := from("K") + "-" + from("T")
+	shift := from("K") + "-" + from(totalIssued)
 	block.beside = []excelize.Cell{b.live(small, ask, false), b.live(twoDecimals, shift, 0.0)}
 	block.columns = b.totals(block, w, first, int(last-first)+1)
 	drawn := []curve{block.curve(1, thick), block.curve(2, onward), block.curve(3, dotted)}

@@ -447,7 +447,12 @@ func TestEditsMoveTheLines(t *testing.T) {
 	for number := uint64(8); len(plan.Outlook.Members) < 3; number += 4 {
 		plan = randomPlan(number)
 	}
-	plan.Works, plan.Closed = plan.Works[3:4], nil
+	i := slices.IndexFunc(plan.Works, func(work planner.Work) bool {
+		settings := work.Settings.On(plan.AsOf)
+		return settings.Counts == planner.ByDegreeDays && settings.Season == planner.WorkSeason{}
+	})
+	plan.Works, plan.Closed = plan.Works[i:i+1], nil
+	plan.Works[0].Settings = planner.Always(plan.Works[0].Settings.On(plan.AsOf))
 	plan.Works[0].Settings[0].Value.Target, plan.Works[0].Settings[0].Value.Limits = 120, planner.Limits{}
 	id := plan.Works[0].ID
 	last := plan.AsOf - 25

@@ -52,7 +52,7 @@ func faults(dates map[int]bool) []planted {
 		{name: "cached text", sheet: "week", where: func(cell gridCell) bool { return cell.formula != "" && cell.kind == "text" }, value: func(string) string { return "pitch work z; " }},
 		{name: "cached truth", sheet: "works and log", where: func(cell gridCell) bool { return cell.kind == "bool" && cell.text == "0" }, value: func(string) string { return "1" }},
 		{name: "number cached as text", sheet: "days", where: formulaWith("EXP("), kind: "str"},
-		{name: "mean formula", sheet: "days", where: formulaWith("(B5+C5)/2"), old: "(B5+C5)/2", new: "(B5+C5)/3"},
+		{name: "mean formula", sheet: "days", where: formulaWith(")/2,\"\")"), old: ")/2,", new: ")/3,"},
 		{name: "growth formula", sheet: "days", where: formulaWith("EXP("), old: "EXP(-0.5*", new: "EXP(-0.4*"},
 		{name: "optimum of another grass", sheet: "days", where: formulaWith("in_s1_t1_optimum"), old: "in_s1_t1_optimum", new: "in_s2_t1_optimum"},
 		{name: "sine formula", sheet: "days", where: formulaWith("ACOS("), old: "ACOS(", new: "ASIN("},

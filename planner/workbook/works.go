@@ -24,6 +24,9 @@ func (b *book) workColumns() []string {
 		"units as issued", "total as issued", "start as issued", "target of this count as issued", "nitrogen used before the sheet", "in words", "with its product"}
 }
 
+// totalIssued is the column of the total through yesterday as issued.
+const totalIssued = "AB"
+
 // askTheBot is what a cell says when only the bot could tell it.
 const askTheBot = "ask the bot"
 
@@ -211,7 +214,7 @@ func (b *book) results(w, c, r int) []any {
 			continue
 		}
 		curve := fmt.Sprintf("IF(AND(ISNUMBER(%[1]s),%[1]s<wb_asof),%[1]s,%[2]s)", cell("M"),
-			passageText("c_date", countName(work, count, curveNames[i]), fmt.Sprintf("+(%s-%s)", cell("K"), cell("AB")), cell("L"), cell("I")))
+			passageText("c_date", countName(work, count, curveNames[i]), fmt.Sprintf("+(%s-%s)", cell("K"), cell(totalIssued)), cell("L"), cell("I")))
 		if work.Gap { // members differ in the past too: the date is as issued
 			curve = fmt.Sprintf("%q", beyond)
 			if passage.Known {
