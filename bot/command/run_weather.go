@@ -52,7 +52,7 @@ func (d Desk) runWeatherDay(ctx context.Context, req Request) (reply.Reply, erro
 			return reply.Reply{}, err
 		}
 		if day >= v.today {
-			return reply.Reply{}, planner.Problemf(planner.Invalid, "%s is not over yet.", day.Short()).
+			return reply.Reply{}, planner.Problemf(planner.Invalid, "%s is not over yet.", shortOn(day, v.today)).
 				WithHint("Days ahead are typed with /weather ahead.")
 		}
 		if err := v.keepDay(ctx, planner.DailyReading{Day: day, HighC: highC, LowC: lowC}); err != nil {
