@@ -115,7 +115,7 @@ func openFile(name string) (io.ReadCloser, error) {
 			WithHint("See that you may read it.").WithCause(err)
 	}
 	if info, err := file.Stat(); err != nil || info.IsDir() {
-		return nil, errors.Join(planner.Problemf(planner.Refused, "this is a folder, not a file: %q", name).
+		return nil, errors.Join(planner.Problemf(planner.Refused, "the path %s is a folder, not a file", name).
 			WithHint("Give the path of a file in it."), file.Close())
 	}
 	return file, nil

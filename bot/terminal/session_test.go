@@ -83,7 +83,7 @@ func TestRunLine(t *testing.T) {
 		{"/read", false, "", "Still needed: file (the file).\nLike: /read file:week.csv\n"},
 		{"/read nowhere.csv", false, "", "There is no file nowhere.csv.\nGive its path from the folder you\nare in.\n"},
 		{"/read session.go/x.csv", false, "", "There is no file session.go/x.csv.\nGive its path from the folder you\nare in.\n"},
-		{"/read ..", false, "", "This is a folder, not a file:\n\"..\".\nGive the path of a file in it.\n"},
+		{"/read ..", false, "", "The path .. is a folder, not a\nfile.\nGive the path of a file in it.\n"},
 		{"/read testdata/table.txt", true, "Degree days\n", ""},
 	}
 	for _, test := range tests {

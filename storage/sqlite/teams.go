@@ -91,14 +91,14 @@ func LockServing(ctx context.Context, path string) (*Lock, error) {
 	}
 	pool, err := sql.Open(driverName, fileURI(path+".serving")+"?_pragma=busy_timeout(200)&_pragma=journal_mode(DELETE)")
 	if err != nil {
-		return nil, storeError("lock the store for serving", err)
+		return nil, fileError(path, "lock the store for serving", err)
 	}
 	conn, err := pool.Conn(ctx)
 	if err == nil {
 		_, err = conn.ExecContext(ctx, "BEGIN EXCLUSIVE")
 	}
 	if err != nil {
-		err = storeError("lock the store for serving", errors.Join(err, pool.Close()))
+		err = fileError(path, "lock the store for serving", errors.Join(err, pool.Close()))
 		if planner.KindOf(err) == planner.Busy {
 			return nil, planner.Problemf(planner.Refused, "another serve is running on %s", path).
 				WithHint("Stop that one first; two would post everything twice.").WithCause(err)
