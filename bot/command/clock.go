@@ -15,8 +15,7 @@ var (
 )
 
 // readClock reads a time of the day as people write it: 06:10, 6:10, 06.10,
-// 0610, 5am, 5:00pm, 6.10 pm. It gives it as 06:10. Where a colon and am or pm
-// are missing the hour has two digits: 2.50 is no time.
+// 6.10, 0610, 5am, 5:00pm, 6.10 pm. It gives it as 06:10.
 func readClock(text string) (clock string, ok bool) {
 	match := clockWords.FindStringSubmatch(squeezed(text))
 	if match == nil {
@@ -25,7 +24,7 @@ func readClock(text string) (clock string, ok bool) {
 	hours, between, minutes, half := match[1], match[2], match[3], match[4]
 	hour, _ := strconv.Atoi(hours)
 	switch {
-	case half == "" && (minutes == "" || between != ":" && len(hours) < 2), half == "" && hour > 23, half != "" && (hour < 1 || hour > 12):
+	case half == "" && (minutes == "" || between == "" && len(hours) < 2), half == "" && hour > 23, half != "" && (hour < 1 || hour > 12):
 		return "", false
 	case half != "":
 		hour %= 12 // 12 am is midnight, 12 pm is noon
@@ -52,6 +51,10 @@ func clockParts(clock string) (hour, minute int) {
 // which is half past six in the evening.
 const firstYearNotClock = "2000"
 
+// rateLike is more likely the rate that stands behind a day: 2.50 is not taken
+// for ten to three.
+var rateLike = regexp.MustCompile(`^\d\.\d\d$`)
+
 // cutClock takes a time like 06:10 off the end of a day as typed. A time alone
 // is today's.
 func cutClock(text string) (day, clock string) {
@@ -60,7 +63,7 @@ func cutClock(text string) (day, clock string) {
 		return text, ""
 	}
 	clock, ok := readClock(match[2])
-	if _, whole := readDay(text); !ok || whole && match[2] >= firstYearNotClock {
+	if _, whole := readDay(text); !ok || rateLike.MatchString(match[2]) || whole && match[2] >= firstYearNotClock {
 		return text, ""
 	}
 	if day = squeezed(match[1]); day == "" {

@@ -49,11 +49,10 @@ func Sentence(text string) string {
 	return text + "."
 }
 
-// typedPair is an option with its value, as it is typed.
-var typedPair = regexp.MustCompile(`^[A-Za-z][A-Za-z0-9-]*:(?:[^"]|".)`)
+// typedPair is an option with its value at the end of a text, as it is typed.
+var typedPair = regexp.MustCompile(`(?:^|\s)[A-Za-z][A-Za-z0-9-]*:(?:[^"\s]\S*|"[^"]*[^":]")$`)
 
 func endsInLine(text string) bool {
-	lastWord := text[strings.LastIndex(text, " ")+1:]
 	line := strings.LastIndex(text, ": /")
-	return typedPair.MatchString(lastWord) || line >= 0 && !strings.Contains(text[line:], ". ")
+	return typedPair.MatchString(text) || line >= 0 && !strings.Contains(text[line:], ". ")
 }

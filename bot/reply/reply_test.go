@@ -154,6 +154,8 @@ func TestSentence(t *testing.T) {
 		"there is no work \"a:b\"":           "There is no work \"a:b\".",
 		"log it by 06:10":                    "Log it by 06:10.",
 		"write note:\"dry\"":                 "Write note:\"dry\"",
+		"like: note:\"dry and windy\"":       "Like: note:\"dry and windy\"",
+		"like note:\"dry and windy\" or so":  "Like note:\"dry and windy\" or so.",
 		"one of these:":                      "One of these:",
 	} {
 		if got := Sentence(text); got != want {
