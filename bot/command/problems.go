@@ -26,10 +26,15 @@ func (m *MissingOptions) Error() string {
 }
 
 // Missing asks for options that this call needs. A handler returns it when an
-// option is required only together with others; of those it names, the ones
-// that were given are not asked for again.
+// option is required only together with others. Of those it names, the ones
+// that were given are not asked for again, unless all were: then their values
+// do not do.
 func (r Request) Missing(names ...string) error {
-	names = slices.DeleteFunc(slices.Clone(names), r.Values.Has)
+	if lacking := slices.DeleteFunc(slices.Clone(names), r.Values.Has); len(lacking) > 0 {
+		names = lacking
+	} else {
+		r.Values = r.Values.without(names)
+	}
 	if r.Command == nil {
 		return planner.Problemf(planner.Missing, "still needed: %s", strings.Join(names, ", "))
 	}

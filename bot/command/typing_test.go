@@ -204,6 +204,15 @@ func TestStillNeededParses(t *testing.T) {
 			}
 			req := Request{Command: command, Values: Values{map[string]value{option.Name: read}}}
 			var problem *planner.Problem
+			if !errors.As(req.Missing(option.Name), &problem) || !strings.Contains(problem.Message, option.Name) {
+				t.Errorf("/%s: a %s that does not do: %v", command.Path, option.Name, problem)
+			}
+			if line, _ := strings.CutPrefix(problem.Hint, "Like: "); strings.Count(line, " "+option.Name+":") != 1 {
+				t.Errorf("/%s: a %s that does not do: %s", command.Path, option.Name, line)
+			}
+			if len(names) == 1 {
+				continue
+			}
 			if !errors.As(req.Missing(names...), &problem) {
 				t.Fatalf("/%s: no problem", command.Path)
 			}

@@ -1,6 +1,7 @@
 package command
 
 import (
+	"slices"
 	"strings"
 
 	"swardbook/planner"
@@ -41,6 +42,17 @@ func (v Values) of(name string, kinds ...Kind) (value, bool) {
 		}
 	}
 	return value{}, false
+}
+
+// without are the values but for the named options.
+func (v Values) without(names []string) Values {
+	left := make(map[string]value, len(v.given))
+	for name, given := range v.given {
+		if !slices.Contains(names, name) {
+			left[name] = given
+		}
+	}
+	return Values{left}
 }
 
 // Has says whether the option was given.
