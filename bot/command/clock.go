@@ -66,7 +66,7 @@ func cutClock(text string) (day, clock string) {
 	if _, whole := readDay(text); !ok || rateLike.MatchString(match[2]) || whole && match[2] >= firstYearNotClock {
 		return text, ""
 	}
-	if day = squeezed(match[1]); day == "" {
+	if day = strings.TrimSuffix(squeezed(match[1]), ","); day == "" {
 		day = "today"
 	}
 	return day, clock

@@ -42,7 +42,7 @@ var (
 // days, 3 days ago (weeks too), a weekday (mon, monday), 4 jun, jun 4, 4 jun
 // 2013, 4.6. and 4.6.2013 (the day first), 2013-6-4; a date also behind its
 // weekday, as replies print it: Tue 4 Jun. Case and spare spaces do not matter.
-// Of 4/6 nobody knows which is the month: it is not read, see slashed.
+// Of 4/6 nobody knows which is the month: it is not read, see inNumbers.
 func readDay(text string) (dayWords, bool) {
 	text = squeezed(text)
 	switch text {
@@ -143,18 +143,24 @@ func numbered(day, month, year string) (planner.Day, bool) {
 	return exactly(planner.MonthDay{Month: time.Month(m), Day: d}, y)
 }
 
-// slashedPattern is a date whose order its writer's country decides.
-var slashedPattern = regexp.MustCompile(`(?:^| )((\d{1,2})/(\d{1,2})(?:/(\d{4}))?)(?: |$)`)
+// inNumbersPattern is a date in numbers that is not sure to be one, or whose
+// order its writer's country decides.
+var inNumbersPattern = regexp.MustCompile(`(?:^| )((\d{1,2})([/.])(\d{1,2})(?:/(\d{4}))?)(?: |$)`)
 
-// slashed gives a date like 1/7, and what it could be: "1 Jul", "7 Jan", or
-// one of them; none when the text holds no such date.
-func slashed(text string) (date string, readings []string) {
-	match := slashedPattern.FindStringSubmatch(squeezed(text))
+// inNumbers gives a date like 1/7, and what it could be: "1 Jul", "7 Jan", or
+// one of them; none when the text holds no such date. Before a dot stands the
+// day, but 1.7 can be something else.
+func inNumbers(text string) (date string, readings []string) {
+	match := inNumbersPattern.FindStringSubmatch(squeezed(text))
 	if match == nil {
 		return "", nil
 	}
-	year := match[4]
-	for _, order := range [][2]string{{match[2], match[3]}, {match[3], match[2]}} {
+	first, second, year := match[2], match[4], match[5]
+	orders := [][2]string{{first, second}, {second, first}}
+	if match[3] == "." {
+		orders = orders[:1]
+	}
+	for _, order := range orders {
 		month, _ := strconv.Atoi(order[1])
 		if _, ok := calendarDay(order[0], time.Month(month), year); !ok {
 			continue

@@ -111,6 +111,9 @@ func (v *value) fillNumbers() bool {
 		v.numbers, texts[i] = append(v.numbers, number), text
 	}
 	v.text = strings.Join(texts, ",")
+	if _, either := decimalOrList(v.text); either {
+		v.text = strings.Join(texts, ", ")
+	}
 	return len(texts) > 0
 }
 

@@ -25,10 +25,10 @@ func (o *Option) unread(text string) error {
 	return planner.Problemf(planner.Invalid, "%s cannot be %q", o.Name, shorten(text)).WithHint("%s", o.hint())
 }
 
-// askOrder asks which day a date like 1/7 is; nil when there is none in the
-// text, or none that is a day.
+// askOrder asks which day a date like 1/7 or 1.7 is; nil when there is none in
+// the text, or none that is a day.
 func (o *Option) askOrder(text string) *planner.Problem {
-	date, readings := slashed(text)
+	date, readings := inNumbers(text)
 	if len(readings) == 0 {
 		return nil
 	}
@@ -47,10 +47,16 @@ var (
 	commaDecimal = regexp.MustCompile(`^[-−+]?\d{1,12},(\d{1,12})(?:$|[^\d,.])`)
 )
 
+// oneOrTwo is a number with a decimal comma, or two numbers.
+var oneOrTwo = regexp.MustCompile(`^[-−+]?\d+,\d$`)
+
 // decimalOrList finds the number in a list that could have a decimal comma or
 // be two numbers: the list has another separator too ("29,5 30,5", "29,5;
-// 30,5").
+// 30,5"), or it is all of the list and has one digit behind the comma.
 func decimalOrList(text string) (number string, either bool) {
+	if oneOrTwo.MatchString(text) {
+		return text, true
+	}
 	parts := strings.FieldsFunc(text, func(r rune) bool { return r == ' ' || r == ';' })
 	if len(parts) < 2 {
 		return "", false
