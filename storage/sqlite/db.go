@@ -67,7 +67,7 @@ func open(ctx context.Context, path string, migrations fs.FS) (*DB, error) {
 	}
 	db, err := connect(path)
 	if err != nil {
-		return nil, fileError(path, "open store", err)
+		return nil, storeError(path, "open store", err)
 	}
 	if err := migrate(ctx, db.writer, path, migrations); err != nil {
 		return nil, errors.Join(err, db.Close())
@@ -151,10 +151,10 @@ func (db *DB) read(ctx context.Context, step string, do func(*sql.Conn) error) e
 func (db *DB) within(ctx context.Context, pool *sql.DB, begin, step string, do func(*sql.Conn) error) error {
 	conn, err := pool.Conn(ctx)
 	if err != nil {
-		return fileError(db.name, step, err)
+		return storeError(db.name, step, err)
 	}
 	defer conn.Close()
-	return fileError(db.name, step, transact(ctx, conn, begin, func() error { return do(conn) }))
+	return storeError(db.name, step, transact(ctx, conn, begin, func() error { return do(conn) }))
 }
 
 // transact runs do between begin and COMMIT, or takes back all it did.

@@ -88,7 +88,7 @@ func migrateOnce(ctx context.Context, writer *sql.DB, path string, migrations fs
 	version, err := inspect(ctx, path)
 	switch {
 	case err != nil:
-		return fileError(path, "look at the file", err)
+		return storeError(path, "look at the file", err)
 	case version > target:
 		return planner.Problemf(planner.Refused, "the file %s was written by a newer program (schema %d, this one knows %d)", path, version, target).
 			WithHint("Use the newer program; the file was not changed.")
@@ -96,10 +96,10 @@ func migrateOnce(ctx context.Context, writer *sql.DB, path string, migrations fs
 		return nil
 	case version > 0:
 		if err := copyBefore(ctx, writer, path, target); err != nil {
-			return fileError(path, "copy the file before migrating", err)
+			return storeError(path, "copy the file before migrating", err)
 		}
 	}
-	return fileError(path, "migrate", migrateUp(ctx, writer, provider))
+	return storeError(path, "migrate", migrateUp(ctx, writer, provider))
 }
 
 // migrateUp applies what is missing. When another program is at the same, one

@@ -23,12 +23,9 @@ func code(err error) int {
 // primary keeps the part of an extended result code that names the fault.
 const primary = 0xff
 
-// storeError is fileError of a file that is not known by name.
-func storeError(step string, err error) error { return fileError("", step, err) }
-
-// fileError names the step in an error, and turns what a person can act on
+// storeError names the step in an error, and turns what a person can act on
 // into a *planner.Problem that names the file. A Problem passes as it is.
-func fileError(path, step string, err error) error {
+func storeError(name, step string, err error) error {
 	if err == nil {
 		return nil
 	}
@@ -37,10 +34,7 @@ func fileError(path, step string, err error) error {
 		return err
 	}
 	cause := fmt.Errorf("%s: %w", step, err)
-	file := "the file of the store"
-	if path != "" {
-		file += " " + path
-	}
+	file := "the file of the store " + name
 	switch code(err) & primary {
 	case sqlite3.SQLITE_BUSY, sqlite3.SQLITE_LOCKED:
 		return planner.Problemf(planner.Busy, "another program is writing to %s", file).

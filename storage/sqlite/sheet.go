@@ -46,5 +46,5 @@ func (t *Team) Sheet(ctx context.Context, id planner.SheetID) (planner.Sheet, er
 		return planner.Sheet{}, planner.Problemf(planner.NotFound, "there is no sheet %d", id).WithHint("/sheet get makes a new one.")
 	}
 	sheet.Issued, sheet.Inputs = time.Unix(issued, 0).UTC(), []byte(inputs)
-	return sheet, storeError("read a sheet", err)
+	return sheet, storeError(t.db.name, "read a sheet", err)
 }
