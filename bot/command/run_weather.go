@@ -80,7 +80,7 @@ func (d Desk) runWeatherDay(ctx context.Context, req Request) (reply.Reply, erro
 // withdrawn.
 func (v visit) keepDay(ctx context.Context, reading planner.DailyReading) error {
 	if err := reading.Check(); err != nil {
-		return planner.Problemf(planner.Invalid, "%s: %v", reading.Day.Short(), err)
+		return planner.Problemf(planner.Invalid, "%s: %v", shortOn(reading.Day, v.today), err)
 	}
 	_, err := v.book.Import(ctx, v.site, textOr(v.Values, "station", ""), planner.ImportRequest{
 		Stamp: v.stamp(), FileName: "by hand", Units: planner.Celsius,

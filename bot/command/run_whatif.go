@@ -319,7 +319,7 @@ func (v visit) typedDays(first planner.Day) ([]planner.HandDay, error) {
 			HighC: v.site.Units.TemperatureC(highs[i]), LowC: v.site.Units.TemperatureC(lows[i]),
 		}
 		if err := (planner.DailyReading{HighC: days[i].HighC, LowC: days[i].LowC}).Check(); err != nil {
-			return nil, planner.Problemf(planner.Invalid, "%s: %v", days[i].Day.Short(), err)
+			return nil, planner.Problemf(planner.Invalid, "%s: %v", shortOn(days[i].Day, v.today), err)
 		}
 	}
 	return days, nil

@@ -58,7 +58,7 @@ func TestImportFolders(t *testing.T) {
 	if status != 1 || !strings.Contains(out, "4 files: 2 read, 2 refused.") {
 		t.Errorf("status %d\n%s", status, out)
 	}
-	for _, line := range []string{"a.csv: read, 2 rows\n", "c.csv: read, 2 rows\n", "b.csv: refused. The header ", "none.csv: refused. There is no file "} {
+	for _, line := range []string{"a.csv: read, 2 rows\n", "c.csv: read, 2 rows\n", "b.csv: refused. The first line ", "none.csv: refused. There is no file "} {
 		if !strings.Contains(out, line) {
 			t.Errorf("%q is not listed in\n%s", line, out)
 		}
