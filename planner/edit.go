@@ -53,7 +53,8 @@ const maxWarmC = 30
 
 func (w Warm) apply(plan Plan) (Plan, error) {
 	if !(w.ByC >= -maxWarmC && w.ByC <= maxWarmC) {
-		return plan, Problemf(Invalid, "%g °C warmer is no weather", w.ByC).WithHint("Give -%d to %d °C.", maxWarmC, maxWarmC)
+		return plan, Problemf(Invalid, "%s °C warmer is no weather", number(w.ByC)).
+			WithHint("Give -%d to %d °C (-%s to %s °F).", maxWarmC, maxWarmC, number(Fahrenheit.Difference(maxWarmC)), number(Fahrenheit.Difference(maxWarmC)))
 	}
 	if w.Days < 0 {
 		return plan, Problemf(Invalid, "%d days cannot be warmer", w.Days).WithHint("Give 1 or more; leave it out for all days ahead.")

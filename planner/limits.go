@@ -9,7 +9,7 @@ type Limits struct {
 }
 
 func (l Limits) check() error {
-	if l.LeastDays < 0 || l.LeastDays > 366 || l.MostTimes < 0 || l.MostTimes > 366 || !(l.MostTotal >= 0 && l.MostTotal <= maxTarget) {
+	if l.LeastDays < 0 || l.LeastDays > 366 || l.MostTimes < 0 || l.MostTimes > 366 || !(l.MostTotal >= 0 && l.MostTotal <= MaxTarget) {
 		return Problemf(Invalid, "the limits %d days, %d times, %g cannot be used", l.LeastDays, l.MostTimes, l.MostTotal).
 			WithHint("Give them as the label does, like gap:14 most:6.")
 	}

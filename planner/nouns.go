@@ -386,13 +386,17 @@ func (s WorkSettings) check() error {
 		if !(s.Target >= 0 && s.Target <= 50) {
 			return Problemf(Invalid, "a reserve of %g g N/m² cannot be used", s.Target).WithHint("Give 0 to 50 g N/m².")
 		}
-	} else if !(s.Target > 0 && s.Target <= maxTarget) {
-		return Problemf(Invalid, "a target of %g cannot be used", s.Target).WithHint("Give a number above 0, up to %d, like target:200.", maxTarget)
+	} else if !(s.Target > 0 && s.Target <= MaxTarget) {
+		return Problemf(Invalid, "a target of %s cannot be used", number(s.Target)).
+			WithHint("Give a number above 0, at most %d, like target:200.", MaxTarget)
 	}
 	if s.Latest != 0 && s.Counts == ByNitrogen {
 		return Problemf(Invalid, "latest does not go with nitrogen").WithHint("A feed is overdue a tenth past what was there.")
 	}
-	if s.Latest != 0 && !(s.Latest >= s.Target && s.Latest <= maxTarget) {
+	if s.Latest > MaxTarget {
+		return Problemf(Invalid, "latest %s cannot be used", number(s.Latest)).WithHint("Give at most %d.", MaxTarget)
+	}
+	if s.Latest != 0 && !(s.Latest >= s.Target) {
 		return Problemf(Invalid, "latest %g is before the target %g", s.Latest, s.Target).
 			WithHint("Latest is the total past which the work is overdue.")
 	}
@@ -409,8 +413,8 @@ func (s WorkSettings) check() error {
 	return Problemf(Invalid, "%q is not a mean", s.Basis).WithHint("Use mean:hourly or mean:midrange.")
 }
 
-// maxTarget bounds targets: no interval is longer than a decade of hot days.
-const maxTarget = 100000
+// MaxTarget bounds targets, latest totals and marks: no interval is longer than a decade of hot days.
+const MaxTarget = 100000
 
 func (c Counting) check() error {
 	if _, err := NewMeasure(c, nil); err != nil {
@@ -442,8 +446,9 @@ func (t Total) Check() error {
 		if err := CheckName(mark.Name); err != nil {
 			return err
 		}
-		if !(mark.At > 0 && mark.At <= maxTarget) {
-			return Problemf(Invalid, "a mark at %g cannot be used", mark.At).WithHint("Give a total above 0, like mark:\"first spray\" at:120.")
+		if !(mark.At > 0 && mark.At <= MaxTarget) {
+			return Problemf(Invalid, "a mark at %s cannot be used", number(mark.At)).
+				WithHint("Give a total above 0, at most %d, like mark:\"first spray\" at:120.", MaxTarget)
 		}
 	}
 	return CheckName(t.Name)

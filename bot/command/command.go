@@ -69,6 +69,23 @@ func (c *Command) Option(name string) (*Option, bool) {
 	return nil, false
 }
 
+// leastName is the fewest letters that an option's name is cut short to: one
+// letter and a colon is the drive of a path.
+const leastName = 2
+
+// begun are the options whose names begin with the name, or the one that has it.
+func (c *Command) begun(name string) (options []*Option) {
+	if option, found := c.Option(name); found {
+		return []*Option{option}
+	}
+	for i := range c.Options {
+		if len(name) >= leastName && strings.HasPrefix(c.Options[i].Name, name) {
+			options = append(options, &c.Options[i])
+		}
+	}
+	return options
+}
+
 // example is a line that works, for hints.
 func (c *Command) example() string {
 	if len(c.Examples) == 0 {

@@ -91,7 +91,11 @@ func valuesSoFar(command *Command, words []word) Values {
 // completeOption offers names of options, and values.
 func (t Table) completeOption(ctx context.Context, req Request, head string, last word) []string {
 	if last.pair {
-		return t.completeValue(ctx, req, last.name, last.text, head+last.name+":")
+		name := last.name
+		if begun := req.Command.begun(name); len(begun) == 1 {
+			name = begun[0].Name
+		}
+		return t.completeValue(ctx, req, name, last.text, head+name+":")
 	}
 	var lines []string
 	positional := ""

@@ -49,8 +49,8 @@ type Option struct {
 	Help     string   // what it is, at most 100 characters; asked when it is missing
 	Choices  []string // of a Choice, at most 25
 	Range    *Range   // of the number kinds; in the typed unit
-	Past     bool     // of a Day: a weekday or "4 jun" means the nearest past one
-	Clock    bool     // of a Day: a time may stand behind it, like "today 06:10"
+	Past     bool     // of a Day: what is done or known by then; a weekday means the last one
+	Clock    bool     // of a Day: a time may stand behind it, like "today 06:10" or "today 5pm"
 	Example  string   // a value that works; empty takes the kind's own
 	// Complete offers values that begin with the prefix, at most 25. The
 	// request holds the options given so far.

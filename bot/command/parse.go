@@ -107,51 +107,86 @@ type parser struct {
 	command *Command
 	given   map[string]value
 	code    string
-	bare    [][]word // runs of words without a name
+	bare    []run // words without a name
+}
+
+// run is words without a name that stand together, and the pair before them,
+// nil at the front.
+type run struct {
+	words []word
+	after *pair
+}
+
+// pair is an option that was given and what of it was read as its value.
+type pair struct {
+	option *Option
+	text   string
+	quoted bool
 }
 
 // named reads the pairs and leaves the other words in p.bare.
 func (p *parser) named(words []word) error {
-	var run []word
+	var current run
 	for i := 0; i < len(words); {
 		if !words[i].pair {
-			run = append(run, words[i])
+			if err := p.equals(words[i]); err != nil {
+				return err
+			}
+			current.words = append(current.words, words[i])
 			i++
 			continue
 		}
-		p.bare, run = append(p.bare, run), nil
-		taken, err := p.pair(words[i:])
+		p.bare = append(p.bare, current)
+		taken, read, err := p.pair(words[i:])
 		if err != nil {
 			return err
 		}
+		current = run{after: read}
 		i += taken
 	}
-	p.bare = append(p.bare, run)
+	p.bare = append(p.bare, current)
 	return nil
 }
 
-// pair reads the pair at the front and says how many words it takes.
-func (p *parser) pair(words []word) (int, error) {
+// pair reads the pair at the front and says how many words it takes; what it
+// reads is nil for a code.
+func (p *parser) pair(words []word) (int, *pair, error) {
 	first, from := words[0], 0
-	option, ok := p.command.Option(first.name)
-	if !ok && first.name != confirmName {
-		return 0, unknownOption(p.command, first.name)
+	option, err := p.meant(first.name)
+	if err != nil {
+		return 0, nil, err
 	}
 	if first.text == "" && !first.quoted { // "when: today"
 		if len(words) == 1 || words[1].pair {
-			return 0, noValue(first.name, option)
+			return 0, nil, noValue(first.name, option)
 		}
 		from = 1
 	}
 	if first.name == confirmName {
 		if p.code != "" {
-			return 0, planner.Problemf(planner.Invalid, "%s is given twice", confirmName).WithHint("Give it once.")
+			return 0, nil, planner.Problemf(planner.Invalid, "%s is given twice", confirmName).WithHint("Give it once.")
 		}
 		p.code = words[from].text
-		return from + 1, nil
+		return from + 1, nil, nil
 	}
 	text, taken := gather(option, words[from:])
-	return from + taken, p.set(option, text)
+	return from + taken, &pair{option, text, words[from].quoted}, p.set(option, text)
+}
+
+// meant is the option with the name, or the only one whose name begins with
+// it; nil for the code that confirms.
+func (p *parser) meant(name string) (*Option, error) {
+	if name == confirmName {
+		return nil, nil
+	}
+	begun := p.command.begun(name)
+	switch len(begun) {
+	case 0:
+		return nil, unknownOption(p.command, name)
+	case 1:
+		return begun[0], nil
+	}
+	return nil, severalOptions(name, begun)
 }
 
 func noValue(name string, option *Option) error {
@@ -166,22 +201,23 @@ func noValue(name string, option *Option) error {
 func (p *parser) unnamed() error {
 	next := 0
 	for _, run := range p.bare {
-		for len(run) > 0 {
+		for at := 0; at < len(run.words); {
+			words := run.words[at:]
 			for next < len(p.command.Options) && p.has(&p.command.Options[next]) {
 				next++
 			}
 			if next == len(p.command.Options) {
-				return p.tooMany(run[0])
+				return p.unquoted(run, at, p.tooMany(words[0]))
 			}
 			option := &p.command.Options[next]
-			text, taken := gather(option, run)
-			if option.Kind == Text && next == len(p.command.Options)-1 && !run[0].quoted {
-				text, taken = joined(run), len(run)
+			text, taken := gather(option, words)
+			if option.Kind == Text && next == len(p.command.Options)-1 && !words[0].quoted {
+				text, taken = joined(words), len(words)
 			}
 			if err := p.set(option, text); err != nil {
-				return err
+				return p.unquoted(run, at, err)
 			}
-			run = run[taken:]
+			at += taken
 		}
 	}
 	return nil
@@ -214,6 +250,9 @@ func (p *parser) set(option *Option, text string) error {
 	return nil
 }
 
+// mostDayWords is the most words of a day: "mon, 1 jul 2013 at 6:10 pm".
+const mostDayWords = 7
+
 // gather takes the value at the front, with those words after it that can only
 // belong to it: "3 days ago", "29 30 28", "greens, tees", "29 c".
 func gather(option *Option, words []word) (text string, taken int) {
@@ -225,7 +264,7 @@ func gather(option *Option, words []word) (text string, taken int) {
 		run++
 	}
 	if option.Kind == Day || option.Kind == MonthDay {
-		for n := min(run, 3); n > 1; n-- {
+		for n := min(run, mostDayWords); n > 1; n-- {
 			if text := joined(words[:n]); option.fits(text) {
 				return text, n
 			}

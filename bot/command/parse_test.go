@@ -101,7 +101,7 @@ func TestParseLineRefuses(t *testing.T) {
 		{"/done greens feed when:2013-02-29", planner.Invalid, "when cannot be", "2013-06-20"},
 		{"/done greens feed when:31 jun", planner.Invalid, "when cannot be", "4 jun"},
 		{"/done greens feed when:1699-12-31", planner.Invalid, "when cannot be", "4 jun"},
-		{"/done greens feed rate:2,5", planner.Invalid, `rate cannot be "2,5"`, "a number, 0 or more. Like: rate:2.5"},
+		{"/done greens feed rate:2,5", planner.Invalid, `rate cannot be "2,5"`, "Write the number with a dot: rate:2.5"},
 		{"/done greens feed rate:-1", planner.Invalid, "rate cannot be -1", "0 or more"},
 		{"/done greens feed rate:NaN", planner.Invalid, "rate cannot be", "number"},
 		{"/done greens feed rate:1e3", planner.Invalid, "rate cannot be", "number"},
@@ -279,14 +279,27 @@ func TestReadDay(t *testing.T) {
 		{"Fri", thursday, "2013-06-14", "2013-06-21"},
 		{"tues", thursday, "2013-06-18", "2013-06-25"},
 		{"saturday", thursday, "2013-06-15", "2013-06-22"},
-		{"4 jun", thursday, "2013-06-04", "2014-06-04"},
+		{"4 jun", thursday, "2013-06-04", "2013-06-04"},
 		{"20 jun", thursday, "2013-06-20", "2013-06-20"},
-		{"Jun 21", thursday, "2012-06-21", "2013-06-21"},
-		{"1 sept", thursday, "2012-09-01", "2013-09-01"},
+		{"Jun 21", thursday, "2013-06-21", "2013-06-21"},
+		{"1 sept", thursday, "2013-09-01", "2013-09-01"},
 		{"4 june 2011", thursday, "2011-06-04", "2011-06-04"},
-		{"29 feb", thursday, "2012-02-29", "2016-02-29"},
-		{"29 feb", "1900-06-01", "1896-02-29", "1904-02-29"}, // 1900 was no leap year
-		{"31 dec", "2013-01-01", "2012-12-31", "2013-12-31"},
+		{"29 feb", thursday, "2012-02-29", "2012-02-29"},
+		{"29 feb", "1900-06-01", "1904-02-29", "1904-02-29"}, // 1900 was no leap year
+		{"2 jul", "2013-07-01", "2013-07-02", "2013-07-02"},
+		{"30 dec", "2013-01-02", "2012-12-30", "2012-12-30"},
+		{"2 jul", "2013-01-01", "2013-07-02", "2013-07-02"}, // 182 days ahead, 183 back
+		{"1 mar", "2011-08-31", "2011-03-01", "2012-03-01"}, // 184 days back, 183 ahead in a leap year
+		{"1.7.2013", thursday, "2013-07-01", "2013-07-01"},
+		{"04.06.2013", thursday, "2013-06-04", "2013-06-04"},
+		{"4.6.", thursday, "2013-06-04", "2013-06-04"},
+		{"2013-7-1", thursday, "2013-07-01", "2013-07-01"},
+		{"2013/7/1", thursday, "2013-07-01", "2013-07-01"},
+		{"Thu 20 Jun", thursday, "2013-06-20", "2013-06-20"},
+		{"tuesday, jun 4 2013", thursday, "2013-06-04", "2013-06-04"},
+		{"June 4th, 2013", thursday, "2013-06-04", "2013-06-04"},
+		{"1st of july", thursday, "2013-07-01", "2013-07-01"},
+		{"31 dec", "2013-01-01", "2012-12-31", "2012-12-31"},
 	}
 	for _, test := range tests {
 		words, ok := readDay(test.text)
@@ -305,7 +318,7 @@ func TestReadDay(t *testing.T) {
 			t.Errorf("%s next on %s: %s %t, want %s", test.text, today, got, ok, test.next)
 		}
 	}
-	for _, text := range []string{"", "4", "jun", "4/6", "04.06.2013", "2013-6-4", "mo", "sundays", "monday week", "in days", "3 days",
+	for _, text := range []string{"", "4", "jun", "4/6", "4/6/2013", "4.6", "31.6.2013", "2013-13-1", "2013-0-1", "mon today", "mon 4", "mon tue", "xyz 4 jun", "mo", "sundays", "monday week", "in days", "3 days",
 		"in -3 days", "in 123456 days", "0 jun", "32 jan", "30 feb", "29 feb 2013", "4 jun 1699", "4 jun 13", "next mon"} {
 		if words, ok := readDay(text); ok {
 			t.Errorf("%q is read as %+v", text, words)

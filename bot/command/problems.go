@@ -26,8 +26,15 @@ func (m *MissingOptions) Error() string {
 }
 
 // Missing asks for options that this call needs. A handler returns it when an
-// option is required only together with others.
+// option is required only together with others. Of those it names, the ones
+// that were given are not asked for again, unless all were: then their values
+// do not do.
 func (r Request) Missing(names ...string) error {
+	if lacking := slices.DeleteFunc(slices.Clone(names), r.Values.Has); len(lacking) > 0 {
+		names = lacking
+	} else {
+		r.Values = r.Values.without(names)
+	}
 	if r.Command == nil {
 		return planner.Problemf(planner.Missing, "still needed: %s", strings.Join(names, ", "))
 	}
@@ -86,7 +93,57 @@ func unknownOption(command *Command, name string) error {
 	if len(names) == 0 {
 		return problem.WithHint("It takes none: /%s", command.Path)
 	}
+	if near := nearest(name, names); len(near) > 0 {
+		return problem.WithHint("Perhaps you mean %s:", strings.Join(near[:min(len(near), maxNear)], ": or "))
+	}
 	return problem.WithHint("It takes %s. Like: %s", strings.Join(names, ", "), command.example())
+}
+
+// severalOptions names the options that a name cut short could be.
+func severalOptions(name string, begun []*Option) error {
+	names := make([]string, len(begun))
+	for i, option := range begun {
+		names[i] = option.Name + ":"
+	}
+	return planner.Problemf(planner.Invalid, "%s: could be %s", name, strings.Join(names, " or ")).
+		WithHint("Write one of them out. Like: %s:%s", begun[0].Name, quote(begun[0].example()))
+}
+
+// equals refuses rate=2, which is written rate:2.
+func (p *parser) equals(w word) error {
+	name, text, found := strings.Cut(w.text, "=")
+	begun := p.command.begun(strings.ToLower(name))
+	if !found || w.quoted || len(begun) != 1 {
+		return nil
+	}
+	option := begun[0]
+	if text == "" || strings.ContainsFunc(text, func(r rune) bool { return closing(r) != 0 }) {
+		text = option.example() // it goes on in the next words
+	}
+	return planner.Problemf(planner.Invalid, "%q is not read", shorten(w.text)).
+		WithHint("Between an option and its value stands a colon. Write %s:%s", option.Name, quote(shorten(text)))
+}
+
+// unquoted is the problem of words that nothing can be done with, from the
+// place in their run on: err, but that a value before them lacks its quotes
+// when it is text that they may belong to.
+func (p *parser) unquoted(words run, at int, err error) error {
+	if words.after == nil || words.after.quoted {
+		return err
+	}
+	option := words.after.option
+	switch option.Kind {
+	case Text:
+	case Name, Names, File:
+		if at > 0 { // a word between them has been taken for something else
+			return err
+		}
+	default:
+		return err
+	}
+	whole := words.after.text + " " + joined(words.words)
+	return planner.Problemf(planner.Invalid, "%s: a value of several words stands in quotes", option.Name).
+		WithHint("Put it in quotes: %s:%s", option.Name, quote(whole))
 }
 
 // unknownCommand names the commands that were perhaps meant.

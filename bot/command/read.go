@@ -19,8 +19,7 @@ func (o *Option) read(text string) (value, error) {
 	}
 	out := value{option: o, text: text}
 	if !out.fill() {
-		return value{}, planner.Problemf(planner.Invalid, "%s cannot be %q", o.Name, shorten(text)).
-			WithHint("%s", o.hint())
+		return value{}, o.unread(text)
 	}
 	if number, beyond := out.beyond(o.Range); beyond {
 		return value{}, planner.Problemf(planner.Invalid, "%s cannot be %s", o.Name, plain(number)).
@@ -99,6 +98,9 @@ func (v *value) fillNames() bool {
 }
 
 func (v *value) fillNumbers() bool {
+	if _, either := decimalOrList(v.text); either {
+		return false
+	}
 	fields := strings.FieldsFunc(v.text, func(r rune) bool { return r == ',' || r == ' ' })
 	texts := make([]string, len(fields))
 	for i, field := range fields {
@@ -109,6 +111,9 @@ func (v *value) fillNumbers() bool {
 		v.numbers, texts[i] = append(v.numbers, number), text
 	}
 	v.text = strings.Join(texts, ",")
+	if _, either := decimalOrList(v.text); either {
+		v.text = strings.Join(texts, ", ")
+	}
 	return len(texts) > 0
 }
 

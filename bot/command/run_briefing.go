@@ -29,7 +29,7 @@ func (d Desk) runBriefing(ctx context.Context, req Request) (reply.Reply, error)
 		return reply.Reply{}, err
 	}
 	if asOf > v.today {
-		return reply.Reply{}, planner.Problemf(planner.Invalid, "%s is ahead of today.", asOf.Short()).
+		return reply.Reply{}, planner.Problemf(planner.Invalid, "%s is ahead of today.", shortOn(asOf, v.today)).
 			WithHint("/due says what falls due, /weather ahead what weather is expected.")
 	}
 	if post, _ := v.Values.Text("post"); post == "tomorrow" {

@@ -111,15 +111,18 @@ func (v visit) fill(entry *planner.Entry) error {
 		return err
 	}
 	if day > v.today {
-		return planner.Problemf(planner.Invalid, "%s is ahead of today.", day.Short()).
+		return planner.Problemf(planner.Invalid, "%s is ahead of today.", shortOn(day, v.today)).
 			WithHint("Log it when it is done. To see what it would mean: /whatif work-on:%s", day)
 	}
 	if v.Values.Has("when") {
+		if err := v.clockOver("when", day); err != nil {
+			return err
+		}
 		entry.Day = day
 		entry.Clock, _ = v.Values.Clock("when")
 		entry.RainCounts = false
 	}
-	if watered, given, err := v.Values.Day("watered", v.today); err != nil {
+	if watered, given, err := v.dayOver("watered"); err != nil {
 		return err
 	} else if given {
 		entry.Watered = watered
@@ -141,6 +144,9 @@ func (v visit) fillPasses(passes []planner.Pass) error {
 	slow, hasSlow := v.Values.Number("slow")
 	weeks, hasWeeks := v.Values.Number("weeks")
 	text, hasRate := v.Values.Text("rate")
+	if err := v.Values.dotted("rate"); err != nil {
+		return err
+	}
 	if hasRate && len(distinctWorks(passes, v.setup.Works)) > 1 {
 		return planner.Problemf(planner.Invalid, "Which of the works had that rate?").WithHint("Log the feed on a line of its own.")
 	}
@@ -273,7 +279,7 @@ func (v visit) meaning(plan planner.Plan, before planner.Evaluation, entry plann
 	r := reply.Of()
 	for _, pass := range entry.Passes {
 		work, surface, _ := v.workOf(pass.Work)
-		lines := passLines(surface, work, entry, pass)
+		lines := passLines(surface, work, entry, pass, v.today)
 		if was, ok := stateOf(before.Works, pass.Work); ok {
 			lines = append(lines, briefing.PassNotes(was, entry, plan)...)
 			if note := briefing.RainNote(was.Settings, entry, plan); note != "" {
@@ -305,12 +311,12 @@ func givesNitrogen(entry planner.Entry, surface planner.Surface, plan planner.Pl
 }
 
 // passLines say what was done where, at what rate and how much of it.
-func passLines(surface planner.Surface, work planner.Work, entry planner.Entry, pass planner.Pass) []string {
+func passLines(surface planner.Surface, work planner.Work, entry planner.Entry, pass planner.Pass, today planner.Day) []string {
 	title := surface.Name + " " + work.Name
 	if part := surface.PartName(pass.Part); part != "" {
 		title += " (" + part + ")"
 	}
-	when := entry.Day.Short()
+	when := shortOn(entry.Day, today)
 	if entry.Clock != "" {
 		when += " " + entry.Clock
 	}
@@ -336,7 +342,7 @@ func nextLines(state planner.WorkState, today planner.Day) []string {
 	if !started {
 		return []string{"next: " + briefing.When(state, today)}
 	}
-	lines := []string{"counts from " + facts.Since.Short(), "next: " + briefing.When(state, today)}
+	lines := []string{"counts from " + shortOn(facts.Since, today), "next: " + briefing.When(state, today)}
 	if sure := briefing.HowSure(facts, today); sure != "" {
 		lines = append(lines, sure)
 	}

@@ -3,9 +3,7 @@ package command
 import (
 	"context"
 	"fmt"
-	"regexp"
 	"slices"
-	"strconv"
 	"strings"
 	"time"
 
@@ -67,20 +65,17 @@ func (d Desk) setupPost() []Command {
 	}
 }
 
-var clockPattern = regexp.MustCompile(`^([01]?\d|2[0-3])[:.]([0-5]\d)$`)
-
 // minute reads the option at, like 05:30.
 func (v visit) minute(fallback int) (int, error) {
 	text, given := v.Values.Text("at")
 	if !given {
 		return fallback, nil
 	}
-	match := clockPattern.FindStringSubmatch(strings.TrimSpace(text))
-	if match == nil {
+	clock, ok := readClock(text)
+	if !ok {
 		return 0, planner.Problemf(planner.Invalid, "%q is no time of the day", shorten(text)).WithHint("Give hour and minute. Like: at:05:30")
 	}
-	hour, _ := strconv.Atoi(match[1]) // the pattern holds digits only
-	minute, _ := strconv.Atoi(match[2])
+	hour, minute := clockParts(clock)
 	return 60*hour + minute, nil
 }
 

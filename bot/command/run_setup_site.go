@@ -67,7 +67,7 @@ func (d Desk) runSiteChange(ctx context.Context, req Request) (reply.Reply, erro
 		return reply.Reply{}, err
 	}
 	if rule != before {
-		from, given, err := req.Values.Day("from", planner.DayMax)
+		from, given, err := req.Values.Day("from", req.TodayAt(zoneOf(site)))
 		if err != nil {
 			return reply.Reply{}, err
 		}

@@ -20,7 +20,7 @@ func (d Desk) setupTotal() []Command {
 	// What a total counts stays: another measure or method is another total.
 	change := append([]Option{which, newNameOption(),
 		{Name: "mark", Kind: Name, Help: "a total that means something, by name", Example: "first spray"},
-		{Name: "at", Kind: Target, Range: AtLeast(0), Help: "with mark: the total; 0 takes the mark away", Example: "120"},
+		{Name: "at", Kind: Target, Range: Between(0, planner.MaxTarget), Help: "with mark: the total; 0 takes the mark away", Example: "120"},
 	}, counting[1], counting[2], start)
 	return []Command{
 		{Path: "setup total add", Short: "add a season total: degree days or growth days since a date", Who: Lead, Options: append(add, d.siteOption()),

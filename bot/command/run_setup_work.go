@@ -26,7 +26,7 @@ func limitOptions() []Option {
 	return []Option{
 		{Name: "gap", Kind: Whole, Range: Between(0, 366), Help: "least days between two passes, as the label says", Example: "14"},
 		{Name: "most", Kind: Whole, Range: Between(0, 366), Help: "most passes a season", Example: "6"},
-		{Name: "most-total", Kind: Number, Range: AtLeast(0), Help: "most given a season, in g N/m², g/m² or mL/m²", Example: "18"},
+		{Name: "most-total", Kind: Number, Range: Between(0, planner.MaxTarget), Help: "most given a season, in g N/m², g/m² or mL/m²", Example: "18"},
 		{Name: "on-from", Kind: MonthDay, Help: "first day of its season; on all year when not given", Example: "03-15"},
 		{Name: "on-to", Kind: MonthDay, Help: "last day of its season", Example: "10-31"},
 		{Name: "resting", Kind: Yes, Help: "it rests until you say no"},
@@ -140,9 +140,9 @@ func (d Desk) setupWork() []Command {
 	which := nameOption("which work", "regulator", d.workOption().Complete)
 	counting := countingOptions(planner.ByDays, planner.ByDegreeDays, planner.ByGrowthDays, planner.ByNitrogen)
 	settings := []Option{
-		{Name: "target", Kind: Target, Range: AtLeast(0), Help: "total at which it falls due; nitrogen: the reserve left", Example: "200"},
+		{Name: "target", Kind: Target, Range: Between(0, planner.MaxTarget), Help: "total at which it falls due; nitrogen: the reserve left", Example: "200"},
 		{Name: "mean", Kind: Choice, Choices: []string{string(planner.Hourly), string(planner.Midrange)}, Help: "24-hour or high/low mean"},
-		{Name: "latest", Kind: Target, Range: AtLeast(0), Help: "total past which it is overdue", Example: "230"},
+		{Name: "latest", Kind: Target, Range: Between(0, planner.MaxTarget), Help: "total past which it is overdue", Example: "230"},
 	}
 	add := []Option{required(d.surfaceOption()), nameOption("what the work is called", "regulator", nil), required(counting[0])}
 	add = append(append(add, settings...), counting[1:]...)

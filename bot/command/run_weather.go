@@ -52,7 +52,7 @@ func (d Desk) runWeatherDay(ctx context.Context, req Request) (reply.Reply, erro
 			return reply.Reply{}, err
 		}
 		if day >= v.today {
-			return reply.Reply{}, planner.Problemf(planner.Invalid, "%s is not over yet.", day.Short()).
+			return reply.Reply{}, planner.Problemf(planner.Invalid, "%s is not over yet.", shortOn(day, v.today)).
 				WithHint("Days ahead are typed with /weather ahead.")
 		}
 		if err := v.keepDay(ctx, planner.DailyReading{Day: day, HighC: highC, LowC: lowC}); err != nil {
@@ -80,7 +80,7 @@ func (d Desk) runWeatherDay(ctx context.Context, req Request) (reply.Reply, erro
 // withdrawn.
 func (v visit) keepDay(ctx context.Context, reading planner.DailyReading) error {
 	if err := reading.Check(); err != nil {
-		return planner.Problemf(planner.Invalid, "%s: %v", reading.Day.Short(), err)
+		return planner.Problemf(planner.Invalid, "%s: %v", shortOn(reading.Day, v.today), err)
 	}
 	_, err := v.book.Import(ctx, v.site, textOr(v.Values, "station", ""), planner.ImportRequest{
 		Stamp: v.stamp(), FileName: "by hand", Units: planner.Celsius,

@@ -20,7 +20,7 @@ func (d Desk) whatIf() Command {
 			"Highs and lows stand for the days from warm-from on, today when it is not given.",
 		Options: []Option{
 			d.surfaceOption(), d.workOption(),
-			{Name: "warmer", Kind: Warming, Range: Between(-50, 50), Help: "degrees warmer, below 0 for cooler", Example: "3"},
+			{Name: "warmer", Kind: Warming, Help: "degrees warmer, below 0 for cooler; at most 30 °C or 54 °F", Example: "3"},
 			{Name: "warm-from", Kind: Day, Help: "first day that is warmer; today when not given", Example: "tomorrow"},
 			{Name: "warm-days", Kind: Whole, Range: Between(1, 365), Help: "how many days are warmer; all when not given", Example: "7"},
 			{Name: "highs", Kind: Numbers, Help: "highs of the days ahead, one a day", Example: "29 30 28"},
@@ -35,7 +35,7 @@ func (d Desk) whatIf() Command {
 			{Name: "resting", Kind: Yes, Help: "yes: the work rests from today on; no: it is on all year"},
 			{Name: "open", Kind: Yes, Help: "take closed days as open"},
 			{Name: "grass", Kind: Choice, Choices: []string{"cool", "warm", "cool-f", "warm-f"}, Help: "other grass on the surface from today on"},
-			{Name: "target", Kind: Target, Range: AtLeast(0), Help: "another target for the work", Example: "250"},
+			{Name: "target", Kind: Target, Range: Between(0, planner.MaxTarget), Help: "another target for the work", Example: "250"},
 			d.siteOption(),
 		},
 		Examples: []string{"/whatif warmer:3", "/whatif greens regulator warmer:3 warm-days:7",
@@ -282,6 +282,9 @@ func (v visit) passEdit(state planner.WorkState) (planner.Edit, error) {
 		return nil, err
 	}
 	pass := planner.DoWork{Work: state.Work.ID, Name: briefing.Title(state), Day: day}
+	if err := v.Values.dotted("rate"); err != nil {
+		return nil, err
+	}
 	if text, given := v.Values.Text("rate"); given {
 		rate, err := planner.ParseRate(text, 0, false)
 		if err != nil {
@@ -316,7 +319,7 @@ func (v visit) typedDays(first planner.Day) ([]planner.HandDay, error) {
 			HighC: v.site.Units.TemperatureC(highs[i]), LowC: v.site.Units.TemperatureC(lows[i]),
 		}
 		if err := (planner.DailyReading{HighC: days[i].HighC, LowC: days[i].LowC}).Check(); err != nil {
-			return nil, planner.Problemf(planner.Invalid, "%s: %v", days[i].Day.Short(), err)
+			return nil, planner.Problemf(planner.Invalid, "%s: %v", shortOn(days[i].Day, v.today), err)
 		}
 	}
 	return days, nil

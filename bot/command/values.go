@@ -1,6 +1,7 @@
 package command
 
 import (
+	"slices"
 	"strings"
 
 	"swardbook/planner"
@@ -41,6 +42,17 @@ func (v Values) of(name string, kinds ...Kind) (value, bool) {
 		}
 	}
 	return value{}, false
+}
+
+// without are the values but for the named options.
+func (v Values) without(names []string) Values {
+	left := make(map[string]value, len(v.given))
+	for name, given := range v.given {
+		if !slices.Contains(names, name) {
+			left[name] = given
+		}
+	}
+	return Values{left}
 }
 
 // Has says whether the option was given.
@@ -84,7 +96,7 @@ func (v Values) Numbers(name string) ([]float64, bool) {
 
 // Day is the value of a Day option for a site whose calendar shows today. The
 // error, a *planner.Problem, says that the day is outside the years that can
-// be kept.
+// be kept, or does not fall on the weekday that was typed with it.
 func (v Values) Day(name string, today planner.Day) (day planner.Day, given bool, err error) {
 	found, ok := v.of(name, Day)
 	if !ok {
@@ -94,7 +106,7 @@ func (v Values) Day(name string, today planner.Day) (day planner.Day, given bool
 	if !ok {
 		return 0, true, planner.Problemf(planner.Invalid, "%q is outside the years 1700 to 2299", found.text)
 	}
-	return day, true, nil
+	return day, true, found.day.misfit(day)
 }
 
 // Clock is the time behind the value of a Day option that takes one, like

@@ -85,6 +85,38 @@ func (v visit) day(option string, fallback planner.Day) (planner.Day, error) {
 	return fallback, nil
 }
 
+// dayOver is the value of a Day option about what is over, if it was given; a
+// day ahead of today is refused.
+func (v visit) dayOver(option string) (day planner.Day, given bool, err error) {
+	day, given, err = v.Values.Day(option, v.today)
+	if err == nil && given && day > v.today {
+		err = planner.Problemf(planner.Invalid, "%s: %s is ahead of today", option, shortOn(day, v.today)).
+			WithHint("Give it when it is done: leave %s: out now, and amend the entry then.", option)
+	}
+	return day, given, err
+}
+
+// clockOver refuses the time behind the value of a Day option when it is still
+// ahead today.
+func (v visit) clockOver(option string, day planner.Day) error {
+	clock, given := v.Values.Clock(option)
+	now := v.NowAt(v.zone)
+	if hour, minute := clockParts(clock); !given || day != v.today || 60*hour+minute <= 60*now.Hour()+now.Minute() {
+		return nil
+	}
+	return planner.Problemf(planner.Invalid, "%s is still ahead", clock).
+		WithHint("It is %s at %s. Log it when it is done, or leave the time out.", now.Format("15:04"), v.site.Name)
+}
+
+// zoneOf is the site's zone; nil, which is UTC, where it has none that is known.
+func zoneOf(site planner.Site) *time.Location {
+	zone, err := site.Location()
+	if err != nil {
+		return nil
+	}
+	return zone
+}
+
 // unitsOf is the unit that was typed with a number of degrees, else the site's.
 func (v visit) unitsOf(typed Degrees) planner.Units {
 	if typed.Unit != "" {

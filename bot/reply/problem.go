@@ -2,6 +2,7 @@ package reply
 
 import (
 	"errors"
+	"regexp"
 	"strings"
 	"unicode"
 	"unicode/utf8"
@@ -33,7 +34,7 @@ func OfError(err error) Reply {
 
 // Sentence begins the text with a capital and ends it with a stop. There is no
 // stop where it would spoil something to type: after "Like: /due greens", or a
-// last word like surface:greens.
+// last word like surface:greens. A word in quotes or a time is nothing to type.
 func Sentence(text string) string {
 	text = strings.TrimSpace(text)
 	if text == "" {
@@ -48,8 +49,10 @@ func Sentence(text string) string {
 	return text + "."
 }
 
+// typedPair is an option with its value at the end of a text, as it is typed.
+var typedPair = regexp.MustCompile(`(?:^|\s)[A-Za-z][A-Za-z0-9-]*:(?:[^"\s]\S*|"[^"]*[^":]")$`)
+
 func endsInLine(text string) bool {
-	lastWord := text[strings.LastIndex(text, " ")+1:]
 	line := strings.LastIndex(text, ": /")
-	return strings.Contains(lastWord, ":") || line >= 0 && !strings.Contains(text[line:], ". ")
+	return typedPair.MatchString(text) || line >= 0 && !strings.Contains(text[line:], ". ")
 }

@@ -149,6 +149,14 @@ func TestSentence(t *testing.T) {
 		"Try: /due. Then ask a lead":         "Try: /due. Then ask a lead.",
 		"Type /help to see what there is":    "Type /help to see what there is.",
 		"/due has no option \"x\"":           "/due has no option \"x\".",
+		"there is no work \"cut:\"":          "There is no work \"cut:\".",
+		"it is not \"greens feed:\"":         "It is not \"greens feed:\".",
+		"there is no work \"a:b\"":           "There is no work \"a:b\".",
+		"log it by 06:10":                    "Log it by 06:10.",
+		"write note:\"dry\"":                 "Write note:\"dry\"",
+		"like: note:\"dry and windy\"":       "Like: note:\"dry and windy\"",
+		"like note:\"dry and windy\" or so":  "Like note:\"dry and windy\" or so.",
+		"one of these:":                      "One of these:",
 	} {
 		if got := Sentence(text); got != want {
 			t.Errorf("%q becomes %q, want %q", text, got, want)

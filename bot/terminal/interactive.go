@@ -21,7 +21,7 @@ type prompter interface {
 // Interactive talks with the person at the terminal until they leave (exit, or
 // ctrl-D) or the context ends. Tab completes; the arrow keys bring back earlier
 // lines, which are forgotten when it ends. A command that asks is answered by
-// y or n. An error is one of the terminal, not of a command.
+// y or n (yes, no). An error is one of the terminal, not of a command.
 func (s *Session) Interactive(ctx context.Context) error {
 	terminal := liner.NewLiner()
 	terminal.SetCtrlCAborts(true)
@@ -70,14 +70,39 @@ func (s *Session) answer(ctx context.Context, person prompter, line string) erro
 	if err := s.show(result); err != nil {
 		return err
 	}
-	said, err := person.Prompt("y/n ")
-	if err != nil && !errors.Is(err, io.EOF) && !errors.Is(err, liner.ErrPromptAborted) {
-		return fmt.Errorf("read answer: %w", err)
+	yes, err := s.yes(person)
+	if err != nil {
+		return err
 	}
-	switch strings.ToLower(strings.TrimSpace(said)) {
-	case "y", "yes":
+	if yes {
 		return s.show(s.run(ctx, asked.Answer(), false))
 	}
 	_, err = fmt.Fprintln(s.Out, "Not done.")
 	return err
+}
+
+// yes asks for y or n. What is neither, such as the rest of a line that was
+// pasted in two, is asked again once, and then means no.
+func (s *Session) yes(person prompter) (bool, error) {
+	for again := false; ; again = true {
+		said, err := person.Prompt("y/n ")
+		switch {
+		case errors.Is(err, io.EOF), errors.Is(err, liner.ErrPromptAborted):
+			return false, nil
+		case err != nil:
+			return false, fmt.Errorf("read answer: %w", err)
+		}
+		switch strings.ToLower(strings.TrimSpace(said)) {
+		case "y", "yes":
+			return true, nil
+		case "n", "no":
+			return false, nil
+		}
+		if again {
+			return false, nil
+		}
+		if _, err := fmt.Fprintln(s.Out, "That is neither yes nor no. Nothing is done yet: type y or n."); err != nil {
+			return false, err
+		}
+	}
 }

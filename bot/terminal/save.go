@@ -7,6 +7,7 @@ import (
 	"os"
 	"path/filepath"
 	"strings"
+	"syscall"
 
 	"swardbook/bot/reply"
 	"swardbook/planner"
@@ -91,11 +92,18 @@ func saveFile(dir, name string, content []byte) (Saved, error) {
 
 func cannotSave(name, dir string, err error) error {
 	var path *fs.PathError
-	reason := err
-	if errors.As(err, &path) {
-		reason = path.Err
+	reason := err.Error()
+	switch {
+	case errors.Is(err, fs.ErrPermission):
+		reason = "you may not write there"
+	case errors.Is(err, syscall.ENOTDIR):
+		reason = "it is a file, or goes through one"
+	case errors.Is(err, syscall.ENOSPC):
+		reason = "the disk is full"
+	case errors.As(err, &path):
+		reason = path.Err.Error()
 	}
-	return planner.Problemf(planner.Refused, "the file %s cannot be saved in %s: %v", safeName(name), dir, reason).
+	return planner.Problemf(planner.Refused, "the file %s cannot be saved in %s: %s", safeName(name), dir, reason).
 		WithHint("Give --out a folder that can be written to.").WithCause(err)
 }
 

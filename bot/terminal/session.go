@@ -14,7 +14,9 @@ import (
 	"io"
 	"io/fs"
 	"os"
+	"slices"
 	"strings"
+	"syscall"
 	"time"
 
 	"swardbook/bot/command"
@@ -39,14 +41,23 @@ type Session struct {
 	// Confirm asks before a command acts: the reply then ends in the line that
 	// says yes. Without it commands act at once, as a script needs.
 	Confirm bool
+	// Reword, when not nil, puts what is shown into the words of the place it is
+	// shown in.
+	Reword func(text string) string
 	// Progress, when not nil, is told the rows of a long file as they are read.
 	Progress func(rows int)
 }
 
 // RunLine runs one command and says whether it went well.
 func (s *Session) RunLine(ctx context.Context, line string) (ok bool) {
-	result := s.run(ctx, line, !s.Confirm)
-	return s.show(result) == nil && result.Err == nil
+	_, ok = s.Do(ctx, line)
+	return ok
+}
+
+// Do runs one command, shows what it came to and returns it.
+func (s *Session) Do(ctx context.Context, line string) (result Result, ok bool) {
+	result = s.run(ctx, line, !s.Confirm)
+	return result, s.show(result) == nil && result.Err == nil
 }
 
 // run runs one command and saves its files.
@@ -70,18 +81,32 @@ func (s *Session) show(result Result) error {
 	if s.JSON {
 		return JSON(s.Out, result)
 	}
-	if _, err := io.WriteString(s.Out, plain.Text(result.Reply, s.Width)); err != nil || result.Err == nil {
+	if _, err := io.WriteString(s.Out, plain.Text(s.reworded(result.Reply), s.Width)); err != nil || result.Err == nil {
 		return err
 	}
 	message, hint := reply.Wrong(result.Err)
-	_, err := io.WriteString(s.Err, plain.Text(reply.Of(reply.Text(message+"\n"+hint)), s.Width))
+	_, err := io.WriteString(s.Err, plain.Text(s.reworded(reply.Of(reply.Text(message+"\n"+hint))), s.Width))
 	return err
+}
+
+// reworded is the reply with its paragraphs in the words of the place.
+func (s *Session) reworded(r reply.Reply) reply.Reply {
+	if s.Reword == nil {
+		return r
+	}
+	r.Blocks = slices.Clone(r.Blocks)
+	for i, block := range r.Blocks {
+		if text, ok := block.(reply.Text); ok {
+			r.Blocks[i] = reply.Text(s.Reword(string(text)))
+		}
+	}
+	return r
 }
 
 // openFile opens a file by its path, for File options.
 func openFile(name string) (io.ReadCloser, error) {
 	file, err := os.Open(name)
-	if errors.Is(err, fs.ErrNotExist) {
+	if errors.Is(err, fs.ErrNotExist) || errors.Is(err, syscall.ENOTDIR) {
 		return nil, planner.Problemf(planner.NotFound, "there is no file %s", name).
 			WithHint("Give its path from the folder you are in.").WithCause(err)
 	}
@@ -90,7 +115,8 @@ func openFile(name string) (io.ReadCloser, error) {
 			WithHint("See that you may read it.").WithCause(err)
 	}
 	if info, err := file.Stat(); err != nil || info.IsDir() {
-		return nil, errors.Join(planner.Problemf(planner.Refused, "%s is a folder, not a file", name), file.Close())
+		return nil, errors.Join(planner.Problemf(planner.Refused, "the path %s is a folder, not a file", name).
+			WithHint("Give the path of a file in it."), file.Close())
 	}
 	return file, nil
 }

@@ -82,7 +82,8 @@ func TestRunLine(t *testing.T) {
 		{"/done", true, "Logged.\n", ""},
 		{"/read", false, "", "Still needed: file (the file).\nLike: /read file:week.csv\n"},
 		{"/read nowhere.csv", false, "", "There is no file nowhere.csv.\nGive its path from the folder you\nare in.\n"},
-		{"/read ..", false, "", ".. is a folder, not a file.\n"},
+		{"/read session.go/x.csv", false, "", "There is no file session.go/x.csv.\nGive its path from the folder you\nare in.\n"},
+		{"/read ..", false, "", "The path .. is a folder, not a\nfile.\nGive the path of a file in it.\n"},
 		{"/read testdata/table.txt", true, "Degree days\n", ""},
 	}
 	for _, test := range tests {
@@ -96,6 +97,16 @@ func TestRunLine(t *testing.T) {
 	s.Out = brokenPipe{}
 	if s.RunLine(context.Background(), "/due") {
 		t.Error("a reply that cannot be written went well")
+	}
+}
+
+func TestReword(t *testing.T) {
+	s := session(t)
+	s.Reword = strings.ToUpper
+	s.RunLine(context.Background(), "/due")
+	s.RunLine(context.Background(), "/due tees")
+	if got := s.out.String() + s.err.String(); got != "ANN SAYS 05:30\nNO SURFACE TEES.\nTHERE IS GREENS.\n" {
+		t.Errorf("got %q", got)
 	}
 }
 
@@ -244,6 +255,7 @@ func (p *person) Prompt(prompt string) (string, error) {
 func (p *person) AppendHistory(line string) { p.history = append(p.history, line) }
 
 func TestTalk(t *testing.T) {
+	const neither = "That is neither yes nor no. Nothing is done yet: type y or n.\n"
 	tests := []struct {
 		name          string
 		lines         []string
@@ -256,7 +268,10 @@ func TestTalk(t *testing.T) {
 		{"goes on after an error", []string{"/due tees", "due", "exit"}, "Ann says 05:30\n", "No surface tees.\nThere is greens.\n", "> |> |> ", "/due tees|due"},
 		{"says yes", []string{"/done", "Y", "exit"}, "It would be logged.\n\nDo this?\nLogged.\n", "", "> |y/n |> ", "/done"},
 		{"says no", []string{"/done", "n", "exit"}, "It would be logged.\n\nDo this?\nNot done.\n", "", "> |y/n |> ", "/done"},
-		{"says nothing", []string{"/done", "", "exit"}, "It would be logged.\n\nDo this?\nNot done.\n", "", "> |y/n |> ", "/done"},
+		{"says yes in a word", []string{"/done", "yes", "exit"}, "It would be logged.\n\nDo this?\nLogged.\n", "", "> |y/n |> ", "/done"},
+		{"says nothing", []string{"/done", "", "", "exit"}, "It would be logged.\n\nDo this?\n" + neither + "Not done.\n", "", "> |y/n |y/n |> ", "/done"},
+		{"pastes half a line, then says yes", []string{"/done", "works:regulator", "y", "exit"}, "It would be logged.\n\nDo this?\n" + neither + "Logged.\n", "", "> |y/n |y/n |> ", "/done"},
+		{"says neither twice", []string{"/done", "works:regulator", "/due", "exit"}, "It would be logged.\n\nDo this?\n" + neither + "Not done.\n", "", "> |y/n |y/n |> ", "/done"},
 		{"ctrl-C at the question", []string{"/done", "^C", "exit"}, "It would be logged.\n\nDo this?\nNot done.\n", "", "> |y/n |> ", "/done"},
 		{"ctrl-D at the question", []string{"/done"}, "It would be logged.\n\nDo this?\nNot done.\n\n", "", "> |y/n |> ", "/done"},
 		{"ctrl-C drops the line", []string{"^C", "exit"}, "", "", "> |> ", ""},

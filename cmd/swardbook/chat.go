@@ -42,6 +42,7 @@ func chatCommand(env func(string) string) *cobra.Command {
 			session.Table = house.table(cmd.ErrOrStderr())
 			session.Caller = caller(as, env)
 			session.Out, session.Err = cmd.OutOrStdout(), cmd.ErrOrStderr()
+			session.Width = columnsOf(cmd.OutOrStdout())
 			return chat(cmd.Context(), &session, args, cmd.InOrStdin())
 		},
 	}

@@ -90,7 +90,7 @@ func (h *house) play(ctx context.Context, script string, out, errOut io.Writer) 
 	}
 	session := terminal.Session{
 		Table: h.table(errOut), Caller: command.Caller{ID: "demo", Name: "demo", Role: command.Lead},
-		Now: now, Out: out, Err: errOut,
+		Now: now, Out: out, Err: errOut, Width: columnsOf(out),
 	}
 	if session.RunScript(ctx, strings.NewReader(script)) > 0 {
 		return errFailed

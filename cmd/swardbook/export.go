@@ -57,11 +57,11 @@ func exportCommand(env func(string) string) *cobra.Command {
 // ever there; one that is there is not written over.
 func writeWhole(path string, write func(io.Writer) error) (err error) {
 	if _, err := os.Lstat(path); err == nil {
-		return planner.Problemf(planner.Taken, "%s is there already", path).WithHint("Name another file.")
+		return planner.Problemf(planner.Taken, "the file %s is there already", path).WithHint("Name another file.")
 	}
 	draft, err := os.Create(path + ".part")
 	if err != nil {
-		return planner.Problemf(planner.Refused, "%s cannot be written", path).WithCause(err).WithHint("See that the folder is there and may be written to.")
+		return planner.Problemf(planner.Refused, "the file %s cannot be written", path).WithCause(err).WithHint("See that the folder is there and may be written to.")
 	}
 	defer func() {
 		if err != nil {
@@ -70,7 +70,7 @@ func writeWhole(path string, write func(io.Writer) error) (err error) {
 	}()
 	buffered := bufio.NewWriter(draft)
 	if err := errors.Join(write(buffered), buffered.Flush(), draft.Close()); err != nil {
-		return fmt.Errorf("write %s: %w", path, err)
+		return fmt.Errorf("write the file %s: %w", path, err)
 	}
 	return os.Rename(draft.Name(), path)
 }

@@ -5,12 +5,15 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"io/fs"
 	"log/slog"
 	"os"
 	"strings"
+	"syscall"
 	"time"
 
 	"github.com/spf13/cobra"
+	"golang.org/x/term"
 
 	"swardbook/bot/command"
 	"swardbook/bot/reply"
@@ -113,22 +116,64 @@ func caller(as command.Role, env func(string) string) command.Caller {
 	return command.Caller{ID: "terminal", Name: "terminal", Role: as}
 }
 
-// tell writes an error for a person: what is wrong, then what to do.
+// misused is the problem of flags or arguments that a subcommand does not take.
+func misused(used *cobra.Command, err error) error {
+	reason, _, _ := strings.Cut(err.Error(), "\n") // what follows is a list of its own
+	return planner.Problemf(planner.Invalid, "%s", reason).WithHint("Type %s --help to see what there is.", used.CommandPath()).WithCause(err)
+}
+
+// tell writes an error for a person: what is wrong, then what to do. Errors of
+// the system on a path are told in words of ours, others in its own.
 func tell(w io.Writer, err error) {
-	message, hint := reply.Wrong(err)
 	var problem *planner.Problem
 	if !errors.As(err, &problem) {
-		message, hint = err.Error(), "" // a flag or argument that cobra refused, or the system's own words
+		problem = ofSystem(err)
+		err = problem
+	}
+	message, hint := reply.Wrong(err)
+	if problem.Kind == planner.Internal {
+		message, hint = reply.Sentence(problem.Message), reply.Sentence(problem.Hint)
 	}
 	fmt.Fprintln(w, strings.TrimRight(message+"\n"+hint, "\n"))
+}
+
+// ofSystem is the problem of an error that is no Problem yet.
+func ofSystem(err error) *planner.Problem {
+	var path *fs.PathError
+	switch {
+	case !errors.As(err, &path):
+		return planner.Problemf(planner.Internal, "%v", err).WithCause(err)
+	case errors.Is(err, fs.ErrNotExist):
+		return planner.Problemf(planner.NotFound, "there is no file or folder %s", path.Path).WithHint("Correct the path.").WithCause(err)
+	case errors.Is(err, fs.ErrPermission):
+		return planner.Problemf(planner.Refused, "the path %s cannot be used", path.Path).WithHint("See that you may read and write there.").WithCause(err)
+	case errors.Is(err, syscall.ENOTDIR):
+		return planner.Problemf(planner.NotFound, "the path %s has a file where a folder is needed", path.Path).WithHint("Correct the path.").WithCause(err)
+	case errors.Is(err, syscall.EISDIR):
+		return planner.Problemf(planner.Refused, "the path %s is a folder, not a file", path.Path).WithHint("Name a file in it.").WithCause(err)
+	}
+	return planner.Problemf(planner.Refused, "the path %s cannot be used: %v", path.Path, path.Err).WithCause(err)
+}
+
+// mostColumns bounds the text of a wide terminal: longer lines are hard to read.
+const mostColumns = 80
+
+// columnsOf is the width of a person's terminal, at most mostColumns; 0, a
+// phone's, where the stream is none.
+func columnsOf(stream any) int {
+	file, ok := stream.(*os.File)
+	if !ok || !isTerminal(stream) {
+		return 0
+	}
+	columns, _, err := term.GetSize(int(file.Fd()))
+	if err != nil || columns <= 0 {
+		return 0
+	}
+	return min(columns, mostColumns)
 }
 
 // isTerminal reports whether the stream is a person's terminal.
 func isTerminal(stream any) bool {
 	file, ok := stream.(*os.File)
-	if !ok {
-		return false
-	}
-	info, err := file.Stat()
-	return err == nil && info.Mode()&os.ModeCharDevice != 0
+	return ok && term.IsTerminal(int(file.Fd()))
 }

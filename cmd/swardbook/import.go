@@ -9,6 +9,7 @@ import (
 	"io/fs"
 	"os"
 	"path/filepath"
+	"regexp"
 	"strings"
 	"time"
 
@@ -16,6 +17,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"swardbook/bot/command"
+	"swardbook/bot/reply"
 	"swardbook/bot/terminal"
 	"swardbook/planner"
 )
@@ -84,18 +86,40 @@ func (i importing) run(cmd *cobra.Command, env func(string) string, args []strin
 	if err != nil {
 		return err
 	}
+	return i.all(ctx, files, cmd.OutOrStdout(), cmd.ErrOrStderr(), terminal.Session{
+		Table: table, Caller: caller(command.Lead, env), Now: now, Width: columnsOf(cmd.OutOrStdout()), Reword: asFlags,
+	})
+}
+
+// all reads the files one after another; of several it lists at the end what
+// became of each.
+func (i importing) all(ctx context.Context, files []string, out, errOut io.Writer, session terminal.Session) error {
 	failed := 0
+	var list strings.Builder
 	for _, file := range files {
 		if ctx.Err() != nil {
 			return ctx.Err()
 		}
-		session := terminal.Session{Table: table, Caller: caller(command.Lead, env), Now: now, Out: cmd.OutOrStdout()}
-		if !i.one(ctx, session, file, cmd.ErrOrStderr()) {
+		var told bytes.Buffer
+		session.Out = &told
+		result, ok := i.one(ctx, session, file, errOut)
+		if !ok {
 			failed++
+			message, _ := reply.Wrong(result.Err)
+			fmt.Fprintf(&list, "%s: refused. %s\n", file, asFlags(message))
+			continue
+		}
+		fmt.Fprintf(&list, "%s: read, %s\n", file, rowsOf(result.Reply))
+		if len(files) > 1 {
+			fmt.Fprintf(out, "%s:\n", file)
+			fmt.Fprintln(&told)
+		}
+		if _, err := told.WriteTo(out); err != nil {
+			return fmt.Errorf("tell what was read: %w", err)
 		}
 	}
 	if len(files) > 1 {
-		fmt.Fprintf(cmd.OutOrStdout(), "%d files: %d read, %d refused.\n", len(files), len(files)-failed, failed)
+		fmt.Fprintf(out, "%s%d files: %d read, %d refused.\n", list.String(), len(files), len(files)-failed, failed)
 	}
 	if failed > 0 {
 		return errFailed
@@ -104,7 +128,7 @@ func (i importing) run(cmd *cobra.Command, env func(string) string, args []strin
 }
 
 // one reads one file, its progress shown where a person watches.
-func (i importing) one(ctx context.Context, session terminal.Session, file string, errOut io.Writer) bool {
+func (i importing) one(ctx context.Context, session terminal.Session, file string, errOut io.Writer) (terminal.Result, bool) {
 	var wrong bytes.Buffer
 	session.Err = &wrong
 	if isTerminal(errOut) {
@@ -114,11 +138,53 @@ func (i importing) one(ctx context.Context, session terminal.Session, file strin
 		session.Progress = func(rows int) { _ = bar.Set(rows) }
 		defer func() { _ = bar.Finish() }()
 	}
-	if session.RunLine(ctx, i.line(file)) {
-		return true
+	result, ok := session.Do(ctx, i.line(file))
+	if !ok {
+		fmt.Fprintf(errOut, "%s:\n%s", file, wrong.String())
 	}
-	fmt.Fprintf(errOut, "%s:\n%s", file, wrong.String())
-	return false
+	return result, ok
+}
+
+// rowsOf tells the rows of a file that was read in a line: "30 rows, 24 of them
+// new"; those that were refused too.
+func rowsOf(answer reply.Reply) string {
+	counts := map[string]int{}
+	for _, figure := range answer.Figures {
+		if name, ok := strings.CutPrefix(figure.Key, "import."); ok {
+			counts[name] = int(figure.Value)
+		}
+	}
+	rows := counts["new"] + counts["changed"] + counts["same"]
+	text := fmt.Sprintf("%d rows", rows)
+	if rows == 1 {
+		text = "1 row"
+	}
+	if counts["new"] < rows {
+		text += fmt.Sprintf(", %d of them new", counts["new"])
+	}
+	if counts["refused"] > 0 {
+		text += fmt.Sprintf("; %d more refused", counts["refused"])
+	}
+	return text
+}
+
+// chatLine is a line that has a command of the chat in it.
+var chatLine = regexp.MustCompile(`(?:^|\s)/[a-z]`)
+
+// optionPattern is an option of /weather file that is a flag of the import.
+var optionPattern = regexp.MustCompile(`\b(units|clock|dates|sensor|station|site):("(?:[^"\\]|\\.)*"|[^\s"]+)`)
+
+// asFlags writes the options that a text tells to type as the flags that the
+// shell's import takes instead: dates:d/m/y is --dates d/m/y. A line with a
+// command of the chat stays as it is.
+func asFlags(text string) string {
+	lines := strings.Split(text, "\n")
+	for i, line := range lines {
+		if !chatLine.MatchString(line) {
+			lines[i] = optionPattern.ReplaceAllString(line, "--$1 $2")
+		}
+	}
+	return strings.Join(lines, "\n")
 }
 
 // line is the command line for a file.

@@ -58,10 +58,19 @@ func TestImportFolders(t *testing.T) {
 	if status != 1 || !strings.Contains(out, "4 files: 2 read, 2 refused.") {
 		t.Errorf("status %d\n%s", status, out)
 	}
+	for _, line := range []string{"a.csv: read, 2 rows\n", "c.csv: read, 2 rows\n", "b.csv: refused. The first line ", "none.csv: refused. There is no file "} {
+		if !strings.Contains(out, line) {
+			t.Errorf("%q is not listed in\n%s", line, out)
+		}
+	}
 	for _, part := range []string{"b.csv:\n", "none.csv:\n"} {
 		if !strings.Contains(errOut, part) {
 			t.Errorf("%q is not said in\n%s", part, errOut)
 		}
+	}
+	again, _, _ := program(t, "", "import", "--db", database, filepath.Join(dir, "in", "a.csv"), filepath.Join(dir, "in", "deeper"))
+	if !strings.Contains(again, "a.csv: read, 2 rows, 0 of them new\n") {
+		t.Errorf("the same again:\n%s", again)
 	}
 	if _, errOut, status := program(t, "", "import", "--db", database, t.TempDir()); status != 1 || !strings.Contains(errOut, "There is no file in") {
 		t.Errorf("an empty folder: %d %s", status, errOut)

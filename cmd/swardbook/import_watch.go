@@ -135,7 +135,7 @@ func (d *drop) one(ctx context.Context, name string, now time.Time) error {
 		return err
 	}
 	message, hint := reply.Wrong(err)
-	reason := strings.TrimSpace(message + "\n" + hint)
+	reason := asFlags(strings.TrimSpace(message + "\n" + hint))
 	if kind := planner.KindOf(err); kind != planner.Refused && kind != planner.Invalid {
 		fmt.Fprintf(d.out, "%s: left for later. %s\n", name, strings.ReplaceAll(reason, "\n", " "))
 		last := d.seen[name]

@@ -39,10 +39,15 @@ func run(ctx context.Context, args []string, env func(string) string, in io.Read
 	root.SetIn(in)
 	root.SetOut(out)
 	root.SetErr(errOut)
+	started := false // flags and arguments were understood
+	root.PersistentPreRun = func(*cobra.Command, []string) { started = true }
 	root.AddCommand(demoCommand(), chatCommand(env), importCommand(env), exportCommand(env), serveCommand(env), versionCommand())
-	err := root.ExecuteContext(ctx)
+	used, err := root.ExecuteContextC(ctx)
 	if err == nil {
 		return 0
+	}
+	if !started {
+		err = misused(used, err)
 	}
 	if !errors.Is(err, errFailed) {
 		tell(errOut, err)

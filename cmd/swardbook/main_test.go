@@ -139,7 +139,7 @@ func TestWrongFlags(t *testing.T) {
 		{[]string{"chat", "--db", database, "--now", "noon", "/due"}, "2013-07-01T05:30"},
 		{[]string{"chat", "--db", filepath.Join(t.TempDir(), "no", "such", "course.db"), "/due"}, "folder"},
 		{[]string{"import", "--db", database}, "Which file?"},
-		{[]string{"fly"}, "unknown command"},
+		{[]string{"fly"}, "Unknown command"},
 	} {
 		out, errOut, status := program(t, "", row.args...)
 		if status != 1 || !strings.Contains(errOut, row.want) {

@@ -139,7 +139,11 @@ func (s serving) secret() (string, error) {
 	}
 	info, err := os.Stat(s.tokenFile)
 	if err != nil {
-		return "", planner.Problemf(planner.NotFound, "the token file cannot be read: %v", err).WithHint("Name another one with --token-file.")
+		return "", planner.Problemf(planner.NotFound, "there is no token file %s that can be read", s.tokenFile).WithCause(err).
+			WithHint("Name another one with --token-file.")
+	}
+	if info.IsDir() {
+		return "", planner.Problemf(planner.Invalid, "the token file %s is a folder", s.tokenFile).WithHint("Name the file in it.")
 	}
 	others := os.FileMode(0o077)
 	if s.credentials != "" && filepath.Dir(s.tokenFile) == filepath.Clean(s.credentials) {
@@ -151,7 +155,8 @@ func (s serving) secret() (string, error) {
 	}
 	raw, err := os.ReadFile(s.tokenFile)
 	if err != nil {
-		return "", planner.Problemf(planner.Refused, "the token file cannot be read: %v", err).WithHint("See that you own it.")
+		return "", planner.Problemf(planner.Refused, "the token file %s cannot be read", s.tokenFile).WithCause(err).
+			WithHint("See that you own it.")
 	}
 	token := strings.TrimPrefix(strings.TrimSpace(string(raw)), "Bot ")
 	if token == "" || strings.ContainsAny(token, " \t\r\n") {

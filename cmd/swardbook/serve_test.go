@@ -343,7 +343,7 @@ func TestServeRefusals(t *testing.T) {
 		{token, nil, "Which database?"},
 		{nil, []string{"--db", path, "--token-file", open}, "can be read by others"},
 		{nil, []string{"--db", path, "--token-file", empty}, "does not hold one token"},
-		{nil, []string{"--db", path, "--token-file", filepath.Join(folder, "none")}, "cannot be read"},
+		{nil, []string{"--db", path, "--token-file", filepath.Join(folder, "none")}, "There is no token file"},
 		{token, []string{"--db", path, "--listen", "0.0.0.0:0"}, "loopback"},
 		{map[string]string{"SWARDBOOK_TOKEN": "wrong.token.here", "SWARDBOOK_CHAT_URL": "ftp://x"}, []string{"--db", path}, "no address of a chat service"},
 		{map[string]string{"SWARDBOOK_TOKEN": "wrong.token.here", "SWARDBOOK_CHAT_URL": fake.URL()}, []string{"--db", path}, "does not know the token"},

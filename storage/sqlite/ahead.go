@@ -91,5 +91,5 @@ func (t *Team) Ahead(ctx context.Context, site planner.SiteID, asOf planner.Day)
 			SELECT *, row_number() OVER (PARTITION BY day ORDER BY issued DESC, seq DESC) AS newest
 			FROM hand_ahead WHERE team = ?1 AND site = ?2 AND day >= ?3 AND issued <= ?3)
 		WHERE newest = 1 AND cleared = 0 ORDER BY day`, t.id, site, asOf)
-	return days, storeError("read days ahead", err)
+	return days, storeError(t.db.name, "read days ahead", err)
 }

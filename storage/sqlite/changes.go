@@ -30,7 +30,7 @@ func (t *Team) Changes(ctx context.Context, kind string, limit int) ([]planner.C
 		query, args = query+` AND kind = ?`, append(args, kind)
 	}
 	changes, err := collect(ctx, t.db.reader, scanChange, query+` ORDER BY id DESC LIMIT ?`, append(args, limit)...)
-	return changes, storeError("read changes", err)
+	return changes, storeError(t.db.name, "read changes", err)
 }
 
 func scanChange(rows *sql.Rows) (planner.Change, error) {

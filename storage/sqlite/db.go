@@ -32,6 +32,7 @@ var embedded embed.FS
 // DB is an open file. It is safe for use by several goroutines, and several
 // programs may have the same file open.
 type DB struct {
+	name string // of the file, without its folder: for people in a chat, too
 	// writer has one connection, so that the writers of this program queue up
 	// in Go, without a limit of time, and only other programs are waited for
 	// by SQLite's busy timeout. Who holds the connection may write, see Merge.
@@ -65,7 +66,7 @@ func open(ctx context.Context, path string, all migrations) (*DB, error) {
 	}
 	db, err := connect(path)
 	if err != nil {
-		return nil, storeError("open store", err)
+		return nil, storeError(path, "open store", err)
 	}
 	if err := migrate(ctx, db.writer, path, all); err != nil {
 		return nil, errors.Join(err, db.Close())
@@ -92,7 +93,7 @@ func connect(path string) (*DB, error) {
 	}
 	// A connection given back is closed, and its temporary tables with it.
 	staging.SetMaxIdleConns(-1)
-	return &DB{writer: writer, reader: reader, staging: staging}, nil
+	return &DB{name: filepath.Base(path), writer: writer, reader: reader, staging: staging}, nil
 }
 
 // dsn names the file and the settings of a connection. Settings belong here:
@@ -138,21 +139,21 @@ type session interface {
 // write runs do in one transaction that holds the file's write lock from its
 // beginning. step names it in errors.
 func (db *DB) write(ctx context.Context, step string, do func(*sql.Conn) error) error {
-	return within(ctx, db.writer, "BEGIN IMMEDIATE", step, do)
+	return db.within(ctx, db.writer, "BEGIN IMMEDIATE", step, do)
 }
 
 // read runs do in one transaction that sees one state of the file.
 func (db *DB) read(ctx context.Context, step string, do func(*sql.Conn) error) error {
-	return within(ctx, db.reader, "BEGIN", step, do)
+	return db.within(ctx, db.reader, "BEGIN", step, do)
 }
 
-func within(ctx context.Context, pool *sql.DB, begin, step string, do func(*sql.Conn) error) error {
+func (db *DB) within(ctx context.Context, pool *sql.DB, begin, step string, do func(*sql.Conn) error) error {
 	conn, err := pool.Conn(ctx)
 	if err != nil {
-		return storeError(step, err)
+		return storeError(db.name, step, err)
 	}
 	defer conn.Close()
-	return storeError(step, transact(ctx, conn, begin, func() error { return do(conn) }))
+	return storeError(db.name, step, transact(ctx, conn, begin, func() error { return do(conn) }))
 }
 
 // transact runs do between begin and COMMIT, or takes back all it did.

@@ -48,7 +48,7 @@ func (t *Team) Imports(ctx context.Context, site planner.SiteID, limit int) ([]p
 	imports, err := collect(ctx, t.db.reader, scanImport, `SELECT `+importColumns+` FROM import
 		WHERE team = ?1 AND station IN (SELECT id FROM station WHERE team = ?1 AND site = ?2) ORDER BY id DESC LIMIT ?3`,
 		t.id, site, max(0, limit))
-	return imports, storeError("read the imports", err)
+	return imports, storeError(t.db.name, "read the imports", err)
 }
 
 // Remembered returns the sensor and the order of dates that were last said of a
@@ -57,7 +57,7 @@ func (t *Team) Remembered(ctx context.Context, station planner.StationID) (senso
 	newest := `(SELECT COLUMN FROM import WHERE team = ?1 AND station = ?2 AND COLUMN <> '' AND withdrawn IS NULL ORDER BY id DESC LIMIT 1)`
 	column := func(name string) string { return "coalesce(" + replaceColumn(newest, name) + ", '')" }
 	err = t.db.reader.QueryRowContext(ctx, `SELECT `+column("sensor")+`, `+column("dates"), t.id, station).Scan(&sensor, &dates)
-	return sensor, dates, storeError("read what is remembered of the station", err)
+	return sensor, dates, storeError(t.db.name, "read what is remembered of the station", err)
 }
 
 // ReadOn reports whether a file of the station that is not withdrawn was read on
@@ -65,7 +65,7 @@ func (t *Team) Remembered(ctx context.Context, station planner.StationID) (senso
 func (t *Team) ReadOn(ctx context.Context, station planner.StationID, clock string) (found bool, err error) {
 	err = t.db.reader.QueryRowContext(ctx, `SELECT EXISTS (SELECT 1 FROM import
 		WHERE team = ? AND station = ? AND clock = ? AND withdrawn IS NULL)`, t.id, station, clock).Scan(&found)
-	return found, storeError("read how the station's files were read", err)
+	return found, storeError(t.db.name, "read how the station's files were read", err)
 }
 
 // ExportStation writes all readings and daily readings of the station, after the

@@ -46,23 +46,23 @@ type MergeReport struct {
 func (s *Stage) Merge(ctx context.Context, stamp planner.Stamp, about ImportAbout) (MergeReport, error) {
 	const step = "merge an import"
 	if s.conn == nil || s.merged {
-		return MergeReport{}, storeError(step, errDone)
+		return MergeReport{}, storeError(s.team.db.name, step, errDone)
 	}
 	if sum, err := hex.DecodeString(about.SHA256); err != nil || len(sum) != 32 {
 		return MergeReport{}, planner.Problemf(planner.Internal, "%q is not the SHA-256 of a file", about.SHA256)
 	}
 	if err := s.settle(); err != nil {
-		return MergeReport{}, storeError(step, err)
+		return MergeReport{}, storeError(s.team.db.name, step, err)
 	}
 	// Who holds the writer's connection is the one writer of this program.
 	turn, err := s.team.db.writer.Conn(ctx)
 	if err != nil {
-		return MergeReport{}, storeError(step, err)
+		return MergeReport{}, storeError(s.team.db.name, step, err)
 	}
 	defer turn.Close()
 	m := merge{on: s.conn, team: s.team.id, station: s.station, stamp: stamp, about: about, repeated: s.repeated}
 	if err := transact(ctx, s.conn, "BEGIN IMMEDIATE", func() error { return m.run(ctx) }); err != nil {
-		return MergeReport{}, storeError(step, err)
+		return MergeReport{}, storeError(s.team.db.name, step, err)
 	}
 	s.merged = true
 	return m.report, nil

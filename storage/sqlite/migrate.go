@@ -44,12 +44,17 @@ func checkPath(path string) (string, error) {
 		return "", fmt.Errorf("open store: %w", err)
 	}
 	folder := filepath.Dir(absolute)
-	if info, err := os.Stat(folder); err != nil || !info.IsDir() {
+	info, err := os.Stat(folder)
+	if err == nil && !info.IsDir() {
+		return "", planner.Problemf(planner.Invalid, "the path %s is a file, not a folder", folder).
+			WithHint("Name a file in a folder.")
+	}
+	if err != nil {
 		return "", planner.Problemf(planner.NotFound, "there is no folder %s", folder).
 			WithHint("Make the folder first, or name a file in another one.").WithCause(err)
 	}
 	if info, err := os.Stat(absolute); err == nil && info.IsDir() {
-		return "", planner.Problemf(planner.Invalid, "%s is a folder", absolute).
+		return "", planner.Problemf(planner.Invalid, "the path %s is a folder", absolute).
 			WithHint("Name a file in it, like %s.", filepath.Join(absolute, "swardbook.db"))
 	}
 	return absolute, nil
@@ -96,18 +101,18 @@ func migrateOnce(ctx context.Context, writer *sql.DB, path string, all migration
 	version, err := inspect(ctx, path)
 	switch {
 	case err != nil:
-		return storeError("look at the file", err)
+		return storeError(path, "look at the file", err)
 	case version > target:
-		return planner.Problemf(planner.Refused, "%s was written by a newer program (schema %d, this one knows %d)", path, version, target).
+		return planner.Problemf(planner.Refused, "the file %s was written by a newer program (schema %d, this one knows %d)", path, version, target).
 			WithHint("Use the newer program; the file was not changed.")
 	case version == target:
 		return nil
 	case version > 0:
 		if err := copyBefore(ctx, writer, path, target); err != nil {
-			return storeError("copy the file before migrating", err)
+			return storeError(path, "copy the file before migrating", err)
 		}
 	}
-	return storeError("migrate", migrateUp(ctx, writer, provider))
+	return storeError(path, "migrate", migrateUp(ctx, writer, provider))
 }
 
 // migrateUp applies what is missing. When another program is at the same, one
@@ -148,7 +153,7 @@ func inspect(ctx context.Context, path string) (version int64, err error) {
 		return 0, err
 	}
 	if mark != applicationID && (mark != 0 || tables > 0) {
-		return 0, planner.Problemf(planner.Refused, "%s is a database of another program", path).
+		return 0, planner.Problemf(planner.Refused, "the file %s is a database of another program", path).
 			WithHint("Name another file; this one was not changed.")
 	}
 	if versions == 0 {

@@ -74,11 +74,11 @@ func TestOpenRefusals(t *testing.T) {
 	}{
 		{"no path", "", planner.Missing, "no file is named"},
 		{"no folder", filepath.Join(folder, "nowhere", "store.db"), planner.NotFound, "there is no folder " + filepath.Join(folder, "nowhere")},
-		{"a file for a folder", filepath.Join(text, "store.db"), planner.NotFound, "there is no folder"},
-		{"a folder", folder, planner.Invalid, "is a folder"},
-		{"no database", text, planner.Refused, "is no database"},
+		{"a file for a folder", filepath.Join(text, "store.db"), planner.Invalid, "the path " + text + " is a file, not a folder"},
+		{"a folder", folder, planner.Invalid, "the path " + folder + " is a folder"},
+		{"no database", text, planner.Refused, "the file of the store " + text + " is damaged or is no database"},
 		{"a few bytes", short, planner.Refused, "is no database"},
-		{"another program's tables", foreign, planner.Refused, "is a database of another program"},
+		{"another program's tables", foreign, planner.Refused, "the file " + foreign + " is a database of another program"},
 		{"another program's mark", marked, planner.Refused, "is a database of another program"},
 		{"newer", newer, planner.Refused, fmt.Sprintf("was written by a newer program (schema %d, this one knows %d)", newest(t)+1, newest(t))},
 	} {

@@ -31,7 +31,7 @@ func (t *Team) Postings(ctx context.Context, from planner.Day) ([]planner.Postin
 		WHERE team = ?1 AND (day >= ?2 OR state = 'claimed'
 			OR day = (SELECT max(day) FROM posting WHERE team = ?1 AND post = p.post))
 		ORDER BY post, day, part`, t.id, from)
-	return postings, storeError("read the ledger of posts", err)
+	return postings, storeError(t.db.name, "read the ledger of posts", err)
 }
 
 // Claim adds a row, and reports false when the post has one for that day and
@@ -88,7 +88,7 @@ func (t *Team) KeepLine(ctx context.Context, line string, at time.Time) (number 
 		return on.QueryRowContext(ctx, `SELECT id FROM line WHERE team = ? AND line = ?`, t.id, line).Scan(&number)
 	}
 	if err := find(t.db.reader); err != sql.ErrNoRows {
-		return number, storeError("look up a line", err)
+		return number, storeError(t.db.name, "look up a line", err)
 	}
 	err = t.db.write(ctx, "keep a line", func(conn *sql.Conn) error {
 		if err := find(conn); err != sql.ErrNoRows {
@@ -109,5 +109,5 @@ func (t *Team) Line(ctx context.Context, number int64) (line string, err error) 
 	if err == sql.ErrNoRows {
 		return "", planner.Problemf(planner.NotFound, "this button is too old").WithHint("Type the command instead.")
 	}
-	return line, storeError("look up a line", err)
+	return line, storeError(t.db.name, "look up a line", err)
 }

@@ -24,8 +24,8 @@ func code(err error) int {
 const primary = 0xff
 
 // storeError names the step in an error, and turns what a person can act on
-// into a *planner.Problem. A Problem passes as it is.
-func storeError(step string, err error) error {
+// into a *planner.Problem that names the file. A Problem passes as it is.
+func storeError(name, step string, err error) error {
 	if err == nil {
 		return nil
 	}
@@ -34,18 +34,19 @@ func storeError(step string, err error) error {
 		return err
 	}
 	cause := fmt.Errorf("%s: %w", step, err)
+	file := "the file of the store " + name
 	switch code(err) & primary {
 	case sqlite3.SQLITE_BUSY, sqlite3.SQLITE_LOCKED:
-		return planner.Problemf(planner.Busy, "another program is writing to the file of the store").
+		return planner.Problemf(planner.Busy, "another program is writing to %s", file).
 			WithHint("Try again in a few seconds; nothing was changed.").WithCause(cause)
 	case sqlite3.SQLITE_FULL:
 		return planner.Problemf(planner.Refused, "the disk is full").
 			WithHint("Make room on it and try again; nothing was changed.").WithCause(cause)
 	case sqlite3.SQLITE_READONLY, sqlite3.SQLITE_CANTOPEN, sqlite3.SQLITE_PERM:
-		return planner.Problemf(planner.Refused, "the file of the store cannot be opened for writing").
+		return planner.Problemf(planner.Refused, "%s cannot be opened for writing", file).
 			WithHint("Check that you may write to the file and to its folder.").WithCause(cause)
 	case sqlite3.SQLITE_NOTADB, sqlite3.SQLITE_CORRUPT:
-		return planner.Problemf(planner.Refused, "the file of the store is damaged or is no database").
+		return planner.Problemf(planner.Refused, "%s is damaged or is no database", file).
 			WithHint("Name another file, or put the newest copy in its place.").WithCause(cause)
 	}
 	return cause

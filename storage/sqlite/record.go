@@ -81,5 +81,5 @@ func siteRevision(ctx context.Context, on session, team int64, site planner.Site
 // Revision returns the Revision the record has now, without loading it.
 func (t *Team) Revision(ctx context.Context, site planner.SiteID) (int64, error) {
 	revision, err := siteRevision(ctx, t.db.reader, t.id, site)
-	return revision, storeError("read the revision", err)
+	return revision, storeError(t.db.name, "read the revision", err)
 }

@@ -60,15 +60,15 @@ const stagedTables = `
 func (t *Team) Stage(ctx context.Context, station planner.StationID) (*Stage, error) {
 	const step = "begin an import"
 	if _, err := openStation(ctx, t.db.reader, t.id, station); err != nil {
-		return nil, storeError(step, err)
+		return nil, storeError(t.db.name, step, err)
 	}
 	conn, err := t.db.staging.Conn(ctx)
 	if err != nil {
-		return nil, storeError(step, err)
+		return nil, storeError(t.db.name, step, err)
 	}
 	s := &Stage{team: t, station: station, conn: conn, newest: math.MinInt64}
 	if err := s.prepare(ctx); err != nil {
-		return nil, errors.Join(storeError(step, err), s.Close())
+		return nil, errors.Join(storeError(t.db.name, step, err), s.Close())
 	}
 	return s, nil
 }
@@ -129,10 +129,10 @@ func (s *Stage) AddReading(line int, r planner.Reading) error {
 	}
 	if r.At > s.newest {
 		s.newest = r.At
-		return storeError("stage readings", s.readings.add(ctx, r.At, r.C, int64(line)))
+		return storeError(s.team.db.name, "stage readings", s.readings.add(ctx, r.At, r.C, int64(line)))
 	}
 	if err := s.readings.flush(ctx); err != nil {
-		return storeError("stage readings", err)
+		return storeError(s.team.db.name, "stage readings", err)
 	}
 	return s.addChecked(ctx, line, s.reading, []any{r.At, r.C, line},
 		`SELECT line, c = ?2 FROM temp.staged_reading WHERE at = ?1`, r.At, r.C)
@@ -159,7 +159,7 @@ func (s *Stage) AddRain(line int, r planner.Rain) error {
 	if err := checkTime(line, r.At); err != nil {
 		return err
 	}
-	return storeError("stage rain", s.rain.add(context.Background(), r.At, r.MM))
+	return storeError(s.team.db.name, "stage rain", s.rain.add(context.Background(), r.At, r.MM))
 }
 
 // AddDaily takes one daily reading of the file, as AddReading does; a repeat is
@@ -186,15 +186,15 @@ func (s *Stage) addChecked(ctx context.Context, line int, insert *sql.Stmt, row 
 	const step = "stage a row"
 	result, err := insert.ExecContext(ctx, row...)
 	if err != nil {
-		return storeError(step, err)
+		return storeError(s.team.db.name, step, err)
 	}
 	if n, err := result.RowsAffected(); err != nil || n == 1 {
-		return storeError(step, err)
+		return storeError(s.team.db.name, step, err)
 	}
 	var first int
 	var same bool
 	if err := s.conn.QueryRowContext(ctx, standing, key...).Scan(&first, &same); err != nil {
-		return storeError(step, err)
+		return storeError(s.team.db.name, step, err)
 	}
 	if !same {
 		return &RepeatError{Line: line, First: first}

@@ -46,7 +46,7 @@ func (db *DB) Team(ctx context.Context, platform, outsideID string) (*Team, erro
 		})
 	}
 	if err != nil {
-		return nil, storeError(step, err)
+		return nil, storeError(db.name, step, err)
 	}
 	return &Team{db: db, id: id}, nil
 }

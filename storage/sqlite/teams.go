@@ -15,7 +15,7 @@ import (
 func (db *DB) Teams(ctx context.Context, platform string) ([]string, error) {
 	ids, err := collect(ctx, db.reader, scanText, `SELECT outside_id FROM team_link
 		WHERE platform = ? AND team NOT IN (SELECT team FROM team_left) ORDER BY outside_id`, strings.ToLower(platform))
-	return ids, storeError("list teams", err)
+	return ids, storeError(db.name, "list teams", err)
 }
 
 func scanText(rows *sql.Rows) (text string, err error) { return text, rows.Scan(&text) }
@@ -45,7 +45,7 @@ func (db *DB) EraseLeft(ctx context.Context, before time.Time) (erased int, err 
 	teams, err := collect(ctx, db.reader, func(rows *sql.Rows) (id int64, err error) { return id, rows.Scan(&id) },
 		`SELECT team FROM team_left WHERE at < ?`, before.Unix())
 	if err != nil {
-		return 0, storeError("list teams that left", err)
+		return 0, storeError(db.name, "list teams that left", err)
 	}
 	for _, id := range teams {
 		if err := (&Team{db: db, id: id}).EraseTeam(ctx); err != nil {
@@ -62,7 +62,7 @@ func (db *DB) Note(ctx context.Context, name string) (note string, err error) {
 	if errors.Is(err, sql.ErrNoRows) {
 		return "", nil
 	}
-	return note, storeError("read a note", err)
+	return note, storeError(db.name, "read a note", err)
 }
 
 // SetNote notes something for the next run.
@@ -91,14 +91,14 @@ func LockServing(ctx context.Context, path string) (*Lock, error) {
 	}
 	pool, err := sql.Open(driverName, fileURI(path+".serving")+"?_pragma=busy_timeout(200)&_pragma=journal_mode(DELETE)")
 	if err != nil {
-		return nil, storeError("lock the store for serving", err)
+		return nil, storeError(path, "lock the store for serving", err)
 	}
 	conn, err := pool.Conn(ctx)
 	if err == nil {
 		_, err = conn.ExecContext(ctx, "BEGIN EXCLUSIVE")
 	}
 	if err != nil {
-		err = storeError("lock the store for serving", errors.Join(err, pool.Close()))
+		err = storeError(path, "lock the store for serving", errors.Join(err, pool.Close()))
 		if planner.KindOf(err) == planner.Busy {
 			return nil, planner.Problemf(planner.Refused, "another serve is running on %s", path).
 				WithHint("Stop that one first; two would post everything twice.").WithCause(err)
