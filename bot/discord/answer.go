@@ -8,6 +8,7 @@ import (
 	"fmt"
 	"io"
 	"net/http"
+	"strconv"
 	"time"
 
 	"github.com/bwmarrin/discordgo"
@@ -104,6 +105,23 @@ func statusOf(err error) int {
 	return 0
 }
 
+// retryAfter is how long the service wants to be left alone after an error, 0
+// when it does not say.
+func retryAfter(err error) time.Duration {
+	var rest *discordgo.RESTError
+	var limited *discordgo.RateLimitError
+	switch {
+	case errors.As(err, &limited):
+		return limited.RetryAfter
+	case errors.As(err, &rest) && rest.Response != nil:
+		seconds, err := strconv.ParseFloat(rest.Response.Header.Get("Retry-After"), 64)
+		if err == nil && seconds > 0 && seconds < time.Hour.Seconds() {
+			return time.Duration(seconds * float64(time.Second))
+		}
+	}
+	return 0
+}
+
 // answer gives an interaction its first answer. A second try that finds it
 // answered means that the first one got through.
 func (b *Bot) answer(ctx context.Context, in *discordgo.Interaction, data any) error {
@@ -162,21 +180,24 @@ func (b *Bot) deliver(ctx context.Context, in *discordgo.Interaction, r reply.Re
 // file.
 const mostMessages = 4
 
+// edit changes the first answer. When the service says how long it wants to be
+// left alone, it is.
 func (b *Bot) edit(ctx context.Context, in *discordgo.Interaction, m message, lines planner.LineKeeper) error {
-	var err error
-	for try := range tries {
-		var out body
-		var files []*discordgo.File // read once a try
-		if out, files, err = b.bodyOf(ctx, m, lines); err != nil {
+	for try := 0; ; try++ {
+		out, files, err := b.bodyOf(ctx, m, lines) // files are read once a try
+		if err != nil {
 			return err
 		}
 		_, err = b.call(ctx, b.rest.Client, http.MethodPatch, discordgo.EndpointWebhookMessage(in.AppID, in.Token, "@original"), out, files)
-		if status := statusOf(err); err == nil || status >= 400 && status < 500 && status != http.StatusTooManyRequests {
+		status := statusOf(err)
+		if err == nil || status >= 400 && status < 500 && status != http.StatusTooManyRequests || try+1 == tries {
 			return err
 		}
-		sleep(ctx, b.Timing.Shortest/10*time.Duration(1+try*try))
+		sleep(ctx, max(retryAfter(err), b.Timing.Shortest/10*time.Duration(1+try*try)))
+		if ctx.Err() != nil {
+			return err
+		}
 	}
-	return err
 }
 
 // followUp sends another message. It is not tried again: a lost answer would

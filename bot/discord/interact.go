@@ -171,12 +171,14 @@ func (b *Bot) run(ctx context.Context, in *discordgo.Interaction, job job) error
 	if err := b.answer(ctx, in, first); err != nil {
 		return err
 	}
-	b.work <- struct{}{}
-	defer func() { <-b.work }()
-	r, team, err := b.execute(ctx, in, job)
+	r, team, err := b.inTurn(ctx, in, job)
 	if err != nil {
 		r = wrong(err)
 	}
+	// What came of it is told also when the time to work is over: an answer was
+	// promised.
+	ctx, cancel := context.WithTimeout(context.WithoutCancel(ctx), b.Timing.Work)
+	defer cancel()
 	var lines planner.LineKeeper
 	if team != nil {
 		lines = team.Lines
@@ -193,6 +195,20 @@ func (b *Bot) run(ctx context.Context, in *discordgo.Interaction, job job) error
 		return nil
 	}
 	return b.deliver(ctx, in, r, lines, private)
+}
+
+// inTurn runs the line as soon as there is a place for one more command, or
+// gives up when the time to work is over before that.
+func (b *Bot) inTurn(ctx context.Context, in *discordgo.Interaction, job job) (reply.Reply, *Team, error) {
+	select {
+	case b.work <- struct{}{}:
+		defer func() { <-b.work }()
+		return b.execute(ctx, in, job)
+	case <-ctx.Done():
+		b.Log.ErrorContext(ctx, "a command found no place to run", "server", in.GuildID, "error", ctx.Err())
+		return reply.Reply{}, nil, planner.Problemf(planner.Busy, "Too many commands are running.").
+			WithHint("Nothing was done; try again in a minute.").WithCause(ctx.Err())
+	}
 }
 
 // execute runs the line for the caller in the server's own team.
