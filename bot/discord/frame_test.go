@@ -60,15 +60,21 @@ func (l *lines) Line(_ context.Context, number int64) (string, error) {
 	return l.all[number-1], nil
 }
 
-// building has one team a server.
+// building has one team a server, and counts who came and went.
 type building struct {
-	mu    sync.Mutex
-	teams map[string]*Team
-	notes map[string]string
-	left  map[string]bool
+	lookUp func() // before a team is looked up, when not nil; set it before the start
+
+	mu            sync.Mutex
+	teams         map[string]*Team
+	notes         map[string]string
+	left          map[string]bool
+	joins, leaves map[string]int
 }
 
 func (b *building) Team(_ context.Context, server string) (*Team, error) {
+	if b.lookUp != nil {
+		b.lookUp()
+	}
 	b.mu.Lock()
 	defer b.mu.Unlock()
 	if team := b.teams[server]; team != nil {
@@ -98,7 +104,19 @@ func (b *building) setLeft(server string, left bool) error {
 	b.mu.Lock()
 	defer b.mu.Unlock()
 	b.left[server] = left
+	if left {
+		b.leaves[server]++
+	} else {
+		b.joins[server]++
+	}
 	return nil
+}
+
+// counts is how often the server was said to be there, and to be gone.
+func (b *building) counts(server string) (joins, leaves int) {
+	b.mu.Lock()
+	defer b.mu.Unlock()
+	return b.joins[server], b.leaves[server]
 }
 
 func (b *building) hasLeft(server string) bool {
@@ -120,11 +138,15 @@ func (b *building) SetNote(_ context.Context, name, note string) error {
 	return nil
 }
 
-// quick is the timing of tests: as short as loopback lets it be, except where
-// a longer wait is never reached unless something hangs.
+// patience is how long a test waits for what must come: it is used up only when
+// something hangs, never by a slow machine.
+const patience = time.Minute
+
+// quick is the timing of tests: another connection comes at once, and nothing
+// is given up unless it hangs.
 func quick() Timing {
-	return Timing{Open: 2 * time.Second, Silence: 2 * time.Second, Shortest: 20 * time.Millisecond, Longest: 50 * time.Millisecond,
-		Answer: 2500 * time.Millisecond, Call: 5 * time.Second, Work: 20 * time.Second, Drain: 10 * time.Second}
+	return Timing{Open: patience, Silence: patience, Shortest: 20 * time.Millisecond, Longest: 50 * time.Millisecond,
+		Answer: patience, Call: patience, Work: patience, Drain: patience}
 }
 
 // logs is a log that tests can read.
@@ -161,20 +183,50 @@ func newStage(t *testing.T, table command.Table, change func(*Config)) *stage {
 	t.Helper()
 	s := newIdleStage(t, table, change)
 	s.start()
-	if !s.fake.WaitConnected(10 * time.Second) {
+	if !s.fake.WaitConnected(patience) {
 		t.Fatalf("not connected:\n%s", s.log)
 	}
 	return s
+}
+
+// eventually waits until it is so.
+func (s *stage) eventually(what string, so func() bool) {
+	s.t.Helper()
+	for end := time.Now().Add(patience); !so(); time.Sleep(5 * time.Millisecond) {
+		if time.Now().After(end) {
+			s.t.Fatalf("not so: %s\n%s", what, s.log)
+		}
+	}
+}
+
+// settled waits until the bot has noted both servers' coming n times: once when
+// the session begins and once for each server, which come side by side.
+func (s *stage) settled(n int) {
+	s.t.Helper()
+	s.eventually("the servers are noted", func() bool {
+		atHome, _ := s.house.counts(home)
+		atAway, _ := s.house.counts(away)
+		return atHome >= n && atAway >= n
+	})
+}
+
+// begun waits until the nth session has begun.
+func (s *stage) begun(n int) {
+	s.t.Helper()
+	if !s.fake.WaitSessions(n, patience) {
+		s.t.Fatalf("%d sessions, want %d\n%s", s.fake.Sessions(), n, s.log)
+	}
 }
 
 func newIdleStage(t *testing.T, table command.Table, change func(*Config)) *stage {
 	t.Helper()
 	fake := fakechat.Start()
 	t.Cleanup(fake.Close)
+	fake.SetAnswerLimit(patience)
 	fake.AddGuild(home, homeRoom)
 	fake.AddGuild(away, awayRoom)
 	setup := planner.Setup{}
-	house := &building{teams: map[string]*Team{}, notes: map[string]string{}, left: map[string]bool{}}
+	house := &building{teams: map[string]*Team{}, notes: map[string]string{}, left: map[string]bool{}, joins: map[string]int{}, leaves: map[string]int{}}
 	for _, server := range []string{home, away} {
 		house.teams[server] = &Team{Table: table, Book: planner.NewBook(shelf{setup: setup}, nil, nil, nil), Lines: &lines{}}
 	}
@@ -206,7 +258,7 @@ func (s *stage) start() {
 		select {
 		case err := <-s.done:
 			s.done <- err
-		case <-time.After(15 * time.Second):
+		case <-time.After(2 * patience):
 			s.t.Error("the bot does not stop")
 		}
 	})
@@ -215,10 +267,24 @@ func (s *stage) start() {
 // wait waits for the answer to an interaction.
 func (s *stage) wait(in *fakechat.Interaction) *fakechat.Message {
 	s.t.Helper()
-	if !s.fake.Wait(in, 10*time.Second) {
+	if !s.fake.Wait(in, patience) {
 		s.t.Fatalf("no answer; callback %v\n%s", in.Callback, s.log)
 	}
 	return in.Message
+}
+
+// waiting is a table with a command that waits until it is let go, or until its
+// time is over.
+func waiting(let <-chan struct{}) command.Table {
+	return command.New(nil, command.Command{Path: "hello", Short: "say hello", Examples: []string{"/hello"},
+		Run: func(ctx context.Context, _ command.Request) (reply.Reply, error) {
+			select {
+			case <-let:
+				return reply.Of(reply.Text("At last.")), nil
+			case <-ctx.Done():
+				return reply.Reply{}, planner.Problemf(planner.Busy, "my time is over")
+			}
+		}})
 }
 
 // small is a table with a command of each manner.
@@ -245,10 +311,6 @@ func small() command.Table {
 				return reply.Of(reply.Textf("Logged %s by %s.", what, req.Caller.Name), reply.Actions{{Label: "Hello", Line: "/hello name:again"}}), nil
 			}},
 		command.Command{Path: "crash", Short: "panic", Examples: []string{"/crash"}, Run: func(context.Context, command.Request) (reply.Reply, error) { panic("on purpose") }},
-		command.Command{Path: "slow", Short: "take a while", Examples: []string{"/slow"}, Run: func(context.Context, command.Request) (reply.Reply, error) {
-			time.Sleep(500 * time.Millisecond)
-			return reply.Of(reply.Text("At last.")), nil
-		}},
 		command.Command{Path: "setup thing add", Short: "set a thing up", Who: command.Lead, Examples: []string{"/setup thing add"}, Run: say("Added.")},
 		command.Command{Path: "read", Short: "read a file", Listed: true, Examples: []string{"/read file:a.csv"},
 			Options: []command.Option{{Name: "file", Kind: command.File, Required: true, Help: "the file"}},

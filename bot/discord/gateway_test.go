@@ -11,12 +11,11 @@ import (
 	"swardbook/planner"
 )
 
-// answers checks that the bot still answers.
+// answers checks that the bot still answers. A connection that has only begun
+// can still be given up: it must have said that it is connected.
 func (s *stage) answers() {
 	s.t.Helper()
-	if !s.fake.WaitConnected(15 * time.Second) {
-		s.t.Fatalf("not connected again:\n%s", s.log)
-	}
+	s.eventually("connected", func() bool { return s.fake.Connected() > 0 && strings.Contains(s.log.String(), "msg=connected") })
 	if got := s.wait(s.fake.Command(home, homeRoom, crew, "hello")).Say(); !strings.Contains(got, "Hello") {
 		s.t.Errorf("got %q", got)
 	}
@@ -28,28 +27,35 @@ func TestGatewayFaults(t *testing.T) {
 	for _, row := range []struct {
 		name string
 		next []fakechat.Manner
+		open time.Duration        // when not 0, for a connection to be ready
 		then func(*fakechat.Fake) // once connected
+		// sessions is how many it takes until it answers again; then is one more.
+		sessions int
 	}{
-		{name: "reconnect before ready", next: []fakechat.Manner{{ReconnectFirst: true}}},
-		{name: "invalid session before ready", next: []fakechat.Manner{{InvalidFirst: true}}},
-		{name: "no hello", next: []fakechat.Manner{{NoHello: true}}},
-		{name: "acknowledgements stay out", next: []fakechat.Manner{{NoAck: true, Heartbeat: 100 * time.Millisecond}}},
-		{name: "closed before ready, curable", next: []fakechat.Manner{{CloseFirst: 4000}, {CloseFirst: 4009}}},
-		{name: "reconnect", then: (*fakechat.Fake).Reconnect},
-		{name: "invalid session", then: (*fakechat.Fake).Invalidate},
-		{name: "cut", then: (*fakechat.Fake).Cut},
-		{name: "closed", then: func(f *fakechat.Fake) { f.CloseWith(4009) }},
+		{name: "reconnect before ready", next: []fakechat.Manner{{ReconnectFirst: true}}, open: 2 * time.Second, sessions: 1},
+		{name: "invalid session before ready", next: []fakechat.Manner{{InvalidFirst: true}}, sessions: 1},
+		{name: "no hello", next: []fakechat.Manner{{NoHello: true}}, open: 2 * time.Second, sessions: 1},
+		{name: "acknowledgements stay out", next: []fakechat.Manner{{NoAck: true, Heartbeat: 100 * time.Millisecond}}, sessions: 2},
+		{name: "closed before ready, curable", next: []fakechat.Manner{{CloseFirst: 4000}, {CloseFirst: 4009}}, sessions: 1},
+		{name: "reconnect", then: (*fakechat.Fake).Reconnect, sessions: 2},
+		{name: "invalid session", then: (*fakechat.Fake).Invalidate, sessions: 2},
+		{name: "cut", then: (*fakechat.Fake).Cut, sessions: 2},
+		{name: "closed", then: func(f *fakechat.Fake) { f.CloseWith(4009) }, sessions: 2},
 	} {
 		t.Run(row.name, func(t *testing.T) {
 			t.Parallel()
-			s := newIdleStage(t, small(), nil)
+			s := newIdleStage(t, small(), func(c *Config) {
+				if row.open > 0 {
+					c.Timing.Open = row.open
+				}
+			})
 			s.fake.NextConnections(row.next...)
 			s.start()
 			if row.then != nil {
 				s.answers()
 				row.then(s.fake)
-				time.Sleep(50 * time.Millisecond) // the fault reaches the client
 			}
+			s.begun(row.sessions)
 			s.answers()
 		})
 	}
@@ -59,9 +65,9 @@ func TestGatewayFaults(t *testing.T) {
 func TestOneConnection(t *testing.T) {
 	t.Parallel()
 	s := newStage(t, small(), nil)
-	for range 3 {
+	for i := range 3 {
 		s.fake.Cut()
-		time.Sleep(50 * time.Millisecond)
+		s.begun(i + 2)
 		s.answers()
 	}
 	if n := s.fake.Connected(); n != 1 {
@@ -102,7 +108,7 @@ func TestGatewayStopsWhereNoRetryHelps(t *testing.T) {
 				if !errors.As(err, &problem) || !strings.Contains(problem.Message, row.want) || problem.Hint == "" {
 					t.Errorf("got %v", err)
 				}
-			case <-time.After(10 * time.Second):
+			case <-time.After(patience):
 				t.Fatalf("goes on:\n%s", s.log)
 			}
 		})
@@ -128,15 +134,27 @@ func TestIdentifyBudget(t *testing.T) {
 // What runs when the bot is told to stop is finished.
 func TestDrain(t *testing.T) {
 	t.Parallel()
-	s := newStage(t, small(), nil)
-	in := s.fake.Command(home, homeRoom, crew, "slow")
-	time.Sleep(100 * time.Millisecond)
+	let := make(chan struct{})
+	s := newStage(t, waiting(let), nil)
+	in := s.fake.Command(home, homeRoom, crew, "hello")
+	if !s.fake.WaitAnswer(in, patience) {
+		t.Fatalf("not begun: %s", s.log)
+	}
 	s.stop()
+	if !s.fake.WaitDisconnected(patience) {
+		t.Error("still connected")
+	}
+	select {
+	case err := <-s.done:
+		t.Fatalf("it did not wait: %v", err)
+	default:
+	}
+	close(let)
 	if err := <-s.done; err != nil {
 		t.Error(err)
 	}
 	s.done <- nil
-	if !s.fake.Wait(in, time.Millisecond) || !strings.Contains(in.Message.Say(), "At last") {
+	if !s.fake.Wait(in, 0) || !strings.Contains(in.Message.Say(), "At last") {
 		t.Error("the command was left")
 	}
 }
@@ -144,28 +162,27 @@ func TestDrain(t *testing.T) {
 func TestServersComeAndGo(t *testing.T) {
 	t.Parallel()
 	s := newStage(t, small(), nil)
-	eventually := func(what string, want bool) {
+	s.settled(2) // what is noted late would undo what comes next
+	left := func(what string, want bool) {
 		t.Helper()
-		for end := time.Now().Add(5 * time.Second); time.Now().Before(end); time.Sleep(5 * time.Millisecond) {
-			if s.house.hasLeft(away) == want {
-				return
-			}
-		}
-		t.Errorf("%s: left is %v", what, !want)
+		s.eventually(what, func() bool { return s.house.hasLeft(away) == want })
 	}
 	s.fake.Outage(away)
 	s.answers()
-	eventually("an outage", false)
 	s.fake.RemoveGuild(away)
-	eventually("removed", true)
+	left("removed", true)
 	s.fake.ReturnGuild(away)
-	eventually("back", false)
+	left("back", false)
 	// Removed while the bot is away: the next READY tells.
 	s.fake.RemoveGuild(away)
-	eventually("removed again", true)
+	left("removed again", true)
 	if err := s.house.Joined(context.Background(), away); err != nil {
 		t.Fatal(err)
 	}
 	s.fake.Cut()
-	eventually("missed while away", true)
+	left("missed while away", true)
+	// The outage, long past by now, was none of them.
+	if _, leaves := s.house.counts(away); leaves != 3 {
+		t.Errorf("it left %d times, want 3", leaves)
+	}
 }

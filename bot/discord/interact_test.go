@@ -2,11 +2,18 @@ package discord
 
 import (
 	"bytes"
+	"context"
 	"encoding/json"
+	"errors"
 	"fmt"
+	"net/http"
 	"strings"
+	"sync"
 	"testing"
 	"time"
+
+	"github.com/bwmarrin/discordgo"
+	"github.com/prometheus/client_golang/prometheus"
 
 	"swardbook/bot/command"
 	"swardbook/bot/discord/fakechat"
@@ -43,7 +50,7 @@ func TestQuestionYesAndNo(t *testing.T) {
 		t.Errorf("another's yes: %s", other.Say())
 	}
 	yes := s.fake.Click(home, homeRoom, crew, m, m.Button("Yes"))
-	if !s.fake.WaitFollowUp(yes, 5*time.Second) {
+	if !s.fake.WaitFollowUp(yes, patience) {
 		t.Fatalf("nothing came of it: %s", s.log)
 	}
 	public := yes.FollowUps[0]
@@ -73,7 +80,7 @@ func TestFormAsksForWhatIsMissing(t *testing.T) {
 	}
 	m := &fakechat.Message{ID: "1", Channel: homeRoom, Body: map[string]any{}}
 	in := s.fake.Click(home, homeRoom, crew, m, id)
-	if !s.fake.Wait(in, 5*time.Second) || in.Callback["type"] != float64(9) {
+	if !s.fake.Wait(in, patience) || in.Callback["type"] != float64(9) {
 		t.Fatalf("no form: %v", in.Callback)
 	}
 	form, inputs := in.Form()
@@ -87,7 +94,7 @@ func TestFormAsksForWhatIsMissing(t *testing.T) {
 	// An option that only the handler misses is asked for with a button.
 	late := s.wait(s.fake.Command(home, homeRoom, crew, "need", text("a", "1")))
 	in = s.fake.Click(home, homeRoom, crew, late, late.Button("Fill in…"))
-	s.fake.Wait(in, 5*time.Second)
+	s.fake.Wait(in, patience)
 	form, inputs = in.Form()
 	if len(inputs) == 0 || inputs[0] != "b" {
 		t.Fatalf("inputs %v of %s", inputs, late.JSON())
@@ -146,11 +153,7 @@ func TestPanicIsAnApologyAndALogLine(t *testing.T) {
 	if !strings.Contains(got.Say(), "Something went wrong on our side") {
 		t.Errorf("got %s", got.Say())
 	}
-	for end := time.Now().Add(5 * time.Second); !strings.Contains(s.log.String(), "stack="); time.Sleep(time.Millisecond) {
-		if time.Now().After(end) {
-			t.Fatalf("no stack in the log: %s", s.log)
-		}
-	}
+	s.eventually("a stack in the log", func() bool { return strings.Contains(s.log.String(), "stack=") })
 	s.house.mu.Lock()
 	s.house.teams[home].Book = s.house.teams[away].Book
 	s.house.mu.Unlock()
@@ -220,6 +223,174 @@ func TestAnswersThroughFaults(t *testing.T) {
 	}
 }
 
+// Commands, taps and forms have their first answer before the team is looked
+// up, however long that takes.
+func TestAnsweredBeforeTheTeamIsLookedUp(t *testing.T) {
+	t.Parallel()
+	let := make(chan struct{})
+	s := newIdleStage(t, small(), nil)
+	s.house.lookUp = func() { <-let }
+	s.start()
+	if !s.fake.WaitConnected(patience) {
+		t.Fatalf("not connected:\n%s", s.log)
+	}
+	m := &fakechat.Message{ID: "1", Channel: homeRoom, Body: map[string]any{}}
+	all := []*fakechat.Interaction{
+		s.fake.Command(home, homeRoom, crew, "hello"),
+		s.fake.Click(home, homeRoom, crew, m, "r1::/hello"),
+		s.fake.Submit(home, homeRoom, crew, "f1::/hello", nil),
+	}
+	for i, in := range all {
+		if !s.fake.WaitAnswer(in, patience) {
+			t.Errorf("interaction %d waits for the team", i)
+		}
+	}
+	close(let)
+	for _, in := range all {
+		s.wait(in)
+	}
+}
+
+// A command whose time is over, while it waits for a place to run or while it
+// runs, is told so: an answer was promised.
+func TestTimeIsOver(t *testing.T) {
+	for _, row := range []struct {
+		name string
+		full bool // other commands have all places, and do not end
+		want string
+	}{{"waiting", true, "Too many commands are running."}, {"running", false, "My time is over."}} {
+		t.Run(row.name, func(t *testing.T) {
+			t.Parallel()
+			registry := prometheus.NewRegistry()
+			s := newIdleStage(t, waiting(nil), func(c *Config) { // it is never connected
+				var err error
+				if c.Metrics, err = NewMetrics(registry); err != nil {
+					t.Fatal(err)
+				}
+			})
+			for range cap(s.bot.work) {
+				if row.full {
+					s.bot.work <- struct{}{}
+				}
+			}
+			in := s.fake.Command(home, homeRoom, crew, "hello")
+			ctx, over := context.WithCancel(t.Context())
+			done := make(chan error)
+			go func() {
+				done <- s.bot.take(ctx, &discordgo.Interaction{ID: in.ID, AppID: fakechat.AppID, Token: in.Token, GuildID: home, ChannelID: homeRoom,
+					Type: discordgo.InteractionApplicationCommand, Data: discordgo.ApplicationCommandInteractionData{Name: "hello"},
+					Member: &discordgo.Member{User: &discordgo.User{ID: crew.ID, Username: crew.Name}}})
+			}()
+			s.eventually("an answer is promised", func() bool { return countOf(t, registry, "swardbook_first_answer_seconds") == 1 })
+			over()
+			if err := <-done; err != nil {
+				t.Error(err)
+			}
+			if got := s.wait(in).Say(); !strings.Contains(got, row.want) {
+				t.Errorf("got %q", got)
+			}
+		})
+	}
+}
+
+// countOf is how much a histogram has counted.
+func countOf(t *testing.T, registry *prometheus.Registry, name string) uint64 {
+	t.Helper()
+	families, err := registry.Gather()
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, family := range families {
+		if family.GetName() == name {
+			return family.GetMetric()[0].GetHistogram().GetSampleCount()
+		}
+	}
+	return 0
+}
+
+// An edit comes again when the service said it may, not before.
+func TestEditWaitsAsLongAsItIsTold(t *testing.T) {
+	for name, refusal := range map[string]fakechat.Fault{
+		"rate limit": {Status: 429, Body: `{"message":"slow down","retry_after":0.5,"global":false}`, Header: map[string]string{"Content-Type": "application/json"}},
+		"overloaded": {Status: 503, Header: map[string]string{"Retry-After": "0.5"}},
+	} {
+		t.Run(name, func(t *testing.T) {
+			t.Parallel()
+			s := newStage(t, small(), nil)
+			var mu sync.Mutex
+			var first time.Time
+			s.fake.SetFault(func(_, path string) *fakechat.Fault {
+				if !strings.HasSuffix(path, "@original") {
+					return nil
+				}
+				mu.Lock()
+				defer mu.Unlock()
+				if first.IsZero() {
+					first = time.Now()
+				}
+				if time.Since(first) >= 500*time.Millisecond {
+					return nil
+				}
+				fault := refusal
+				return &fault
+			})
+			if got := s.wait(s.fake.Command(home, homeRoom, crew, "hello", text("name", "there"))).Say(); !strings.Contains(got, "Hello there") {
+				t.Errorf("got %q\n%s", got, s.log)
+			}
+		})
+	}
+}
+
+func TestRetryAfter(t *testing.T) {
+	answered := func(value string) error {
+		return &discordgo.RESTError{Response: &http.Response{Header: http.Header{"Retry-After": {value}}}}
+	}
+	for _, row := range []struct {
+		err  error
+		want time.Duration
+	}{
+		{&discordgo.RateLimitError{RateLimit: &discordgo.RateLimit{TooManyRequests: &discordgo.TooManyRequests{RetryAfter: 3 * time.Second}}}, 3 * time.Second},
+		{answered("2"), 2 * time.Second},
+		{answered("0.25"), 250 * time.Millisecond},
+		{answered(""), 0},
+		{answered("soon"), 0},
+		{answered("-1"), 0},
+		{answered("NaN"), 0},
+		{answered("1e300"), 0},
+		{&discordgo.RESTError{}, 0},
+		{errors.New("cut"), 0},
+		{nil, 0},
+	} {
+		if got := retryAfter(row.err); got != row.want {
+			t.Errorf("%v: %s, want %s", row.err, got, row.want)
+		}
+	}
+}
+
+// What the fake hands out stays as it is, and changes nothing of the fake's.
+func TestFakeHandsOutCopies(t *testing.T) {
+	t.Parallel()
+	s := newStage(t, small(), nil)
+	asked := s.wait(s.fake.Command(home, homeRoom, crew, "log", text("what", "cut")))
+	in := s.fake.Click(home, homeRoom, crew, asked, asked.Button("Yes"))
+	if !s.fake.WaitFollowUp(in, patience) {
+		t.Fatalf("nothing came of it: %s", s.log)
+	}
+	spoil := func(m *fakechat.Message) {
+		m.Body["embeds"].([]any)[0].(map[string]any)["description"] = "spoilt"
+		m.Body["content"] = "spoilt"
+	}
+	spoil(in.Message)
+	spoil(in.FollowUps[0])
+	spoil(s.fake.Messages(homeRoom)[0])
+	s.fake.Wait(in, patience)
+	for _, m := range []*fakechat.Message{in.Message, in.FollowUps[0], s.fake.Messages(homeRoom)[0]} {
+		if strings.Contains(m.JSON(), "spoilt") {
+			t.Errorf("the fake's own was changed: %s", m.JSON())
+		}
+	}
+}
+
 func TestFiles(t *testing.T) {
 	t.Parallel()
 	s := newStage(t, small(), nil)
@@ -282,11 +453,11 @@ func TestCompletion(t *testing.T) {
 	t.Parallel()
 	s := newStage(t, small(), nil)
 	in := s.fake.Complete(home, homeRoom, crew, "hello", fakechat.Option{Name: "name", Type: 3, Value: "x", Focused: true})
-	if !s.fake.Wait(in, 5*time.Second) || len(in.Choices()) != 0 {
+	if !s.fake.Wait(in, patience) || len(in.Choices()) != 0 {
 		t.Errorf("got %v", in.Callback)
 	}
 	in = s.fake.Complete(home, homeRoom, crew, "no such", fakechat.Option{Name: "name", Type: 3, Value: "x", Focused: true})
-	if !s.fake.Wait(in, 5*time.Second) {
+	if !s.fake.Wait(in, patience) {
 		t.Error("no answer")
 	}
 }
@@ -296,22 +467,17 @@ func TestCompletion(t *testing.T) {
 func TestRegistration(t *testing.T) {
 	t.Parallel()
 	s := newStage(t, small(), func(c *Config) { c.Table = command.Desk{}.Table(nil) })
-	waitFor := func(n int) []json.RawMessage {
-		t.Helper()
-		for end := time.Now().Add(5 * time.Second); time.Now().Before(end); time.Sleep(5 * time.Millisecond) {
-			if commands, overwrites := s.fake.Commands(); overwrites == n {
-				return commands
-			}
-		}
-		_, overwrites := s.fake.Commands()
-		t.Fatalf("%d overwrites, want %d\n%s", overwrites, n, s.log)
-		return nil
+	s.settled(2)
+	commands, overwrites := s.fake.Commands()
+	if overwrites != 1 {
+		t.Fatalf("%d overwrites, want 1\n%s", overwrites, s.log)
 	}
-	commands := waitFor(1)
 	s.fake.Cut()
-	time.Sleep(50 * time.Millisecond)
-	s.answers()
-	waitFor(1)
+	s.begun(2)
+	s.settled(4)
+	if _, overwrites := s.fake.Commands(); overwrites != 1 {
+		t.Errorf("%d overwrites of the same commands, want 1", overwrites)
+	}
 	hidden := map[string]bool{}
 	for _, raw := range commands {
 		var one struct {
@@ -344,11 +510,7 @@ func TestRedaction(t *testing.T) {
 		return nil
 	})
 	in := s.fake.Command(home, homeRoom, crew, "hello")
-	for end := time.Now().Add(10 * time.Second); !strings.Contains(s.log.String(), "went wrong"); time.Sleep(5 * time.Millisecond) {
-		if time.Now().After(end) {
-			t.Fatalf("nothing was logged: %s", s.log)
-		}
-	}
+	s.eventually("something in the log", func() bool { return strings.Contains(s.log.String(), "went wrong") })
 	s.bot.Log.Error("x", "error", fmt.Errorf("get https://discord.com/api/v9/webhooks/1/%s/messages/@original: refused, Bot %s", in.Token, fakechat.Token))
 	if log := s.log.String(); strings.Contains(log, in.Token) || strings.Contains(log, fakechat.Token) {
 		t.Errorf("a token is in the log:\n%s", log)

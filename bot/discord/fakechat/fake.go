@@ -9,8 +9,10 @@ package fakechat
 import (
 	"encoding/json"
 	"fmt"
+	"maps"
 	"net/http"
 	"net/http/httptest"
+	"slices"
 	"sort"
 	"strconv"
 	"strings"
@@ -32,7 +34,8 @@ type Fake struct {
 	mu           sync.Mutex
 	cond         *sync.Cond // signalled when anything changes
 	clock        func() time.Time
-	permissions  string // the bot's own, in every channel
+	permissions  string        // the bot's own, in every channel
+	limit        time.Duration // for the first answer to an interaction
 	lastID       int64
 	guilds       map[string]*guild
 	channels     map[string]string // channel → guild
@@ -72,7 +75,8 @@ type Fault struct {
 	After func()
 }
 
-// Message is a message in a channel, or one that only one user sees.
+// Message is a message in a channel, or one that only one user sees. The fake
+// hands out copies, which stay as they are.
 type Message struct {
 	ID, Channel string
 	Private     bool
@@ -88,7 +92,7 @@ type Message struct {
 // Start starts the service. Close it when done.
 func Start() *Fake {
 	f := &Fake{
-		clock: time.Now, permissions: "117760", guilds: map[string]*guild{}, channels: map[string]string{}, messages: map[string][]*Message{},
+		clock: time.Now, permissions: "117760", limit: 3 * time.Second, guilds: map[string]*guild{}, channels: map[string]string{}, messages: map[string][]*Message{},
 		interactions: map[string]*Interaction{}, files: map[string][]byte{}, nonces: map[string]*Message{},
 	}
 	f.cond = sync.NewCond(&f.mu)
@@ -120,6 +124,14 @@ func (f *Fake) SetPermissions(bits int64) {
 	f.mu.Lock()
 	defer f.mu.Unlock()
 	f.permissions = strconv.FormatInt(bits, 10)
+}
+
+// SetAnswerLimit sets after what time a first answer is void, at first the
+// service's three seconds: on a busy machine these say nothing about the bot.
+func (f *Fake) SetAnswerLimit(limit time.Duration) {
+	f.mu.Lock()
+	defer f.mu.Unlock()
+	f.limit = limit
 }
 
 // AddGuild adds a server with channels; the bot is in it.
@@ -177,18 +189,50 @@ func (f *Fake) Messages(channel string) []*Message {
 	var all []*Message
 	for _, message := range f.messages[channel] {
 		if !message.Deleted {
-			copied := *message
-			all = append(all, &copied)
+			all = append(all, message.copied())
 		}
 	}
 	return all
+}
+
+// copied is the message with nothing shared that a later edit changes.
+func (m *Message) copied() *Message {
+	if m == nil {
+		return nil
+	}
+	copied := *m
+	copied.Body, _ = deep(m.Body).(map[string]any)
+	copied.Files, copied.Names = maps.Clone(m.Files), slices.Clone(m.Names)
+	return &copied
+}
+
+// deep copies what was read from JSON.
+func deep(value any) any {
+	switch value := value.(type) {
+	case map[string]any:
+		if value == nil {
+			return value
+		}
+		copied := make(map[string]any, len(value))
+		for key, one := range value {
+			copied[key] = deep(one)
+		}
+		return copied
+	case []any:
+		copied := make([]any, len(value))
+		for i, one := range value {
+			copied[i] = deep(one)
+		}
+		return copied
+	}
+	return value
 }
 
 // Commands are the registered commands, and how often they were overwritten.
 func (f *Fake) Commands() ([]json.RawMessage, int) {
 	f.mu.Lock()
 	defer f.mu.Unlock()
-	return f.commands, f.overwrites
+	return slices.Clone(f.commands), f.overwrites
 }
 
 // Host puts a file on the file host and returns its address.

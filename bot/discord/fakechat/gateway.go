@@ -26,6 +26,7 @@ type gateway struct {
 	next       []Manner
 	open       map[*link]bool
 	identifies []time.Time
+	sessions   int
 	heartbeat  time.Duration
 }
 
@@ -55,6 +56,20 @@ func (f *Fake) Identifies() []time.Time {
 	return append([]time.Time(nil), f.gateway.identifies...)
 }
 
+// Sessions is how many sessions have begun: each was told so and hears of
+// events from then on.
+func (f *Fake) Sessions() int {
+	f.gateway.mu.Lock()
+	defer f.gateway.mu.Unlock()
+	return f.gateway.sessions
+}
+
+// WaitSessions waits until so many sessions have begun. After a fault it says
+// more than WaitConnected: until the fault is noticed the old connection is up.
+func (f *Fake) WaitSessions(n int, patience time.Duration) bool {
+	return poll(patience, func() bool { return f.Sessions() >= n })
+}
+
 // Connected reports how many connections are up.
 func (f *Fake) Connected() int {
 	f.gateway.mu.Lock()
@@ -70,12 +85,22 @@ func (f *Fake) Connected() int {
 
 // WaitConnected waits until a connection is up.
 func (f *Fake) WaitConnected(patience time.Duration) bool {
-	for end := time.Now().Add(patience); time.Now().Before(end); time.Sleep(5 * time.Millisecond) {
-		if f.Connected() > 0 {
-			return true
+	return poll(patience, func() bool { return f.Connected() > 0 })
+}
+
+// WaitDisconnected waits until none is.
+func (f *Fake) WaitDisconnected(patience time.Duration) bool {
+	return poll(patience, func() bool { return f.Connected() == 0 })
+}
+
+// poll asks again and again until it is so, or the patience ends.
+func poll(patience time.Duration, so func() bool) bool {
+	for end := time.Now().Add(patience); !so(); time.Sleep(5 * time.Millisecond) {
+		if time.Now().After(end) {
+			return false
 		}
 	}
-	return false
+	return true
 }
 
 // Event sends an event to the clients that are up.
@@ -105,6 +130,7 @@ func (f *Fake) Cut() { f.gateway.cutAll() }
 // CloseWith closes the gateway connections with a code.
 func (f *Fake) CloseWith(code int) {
 	for _, link := range f.gateway.links() {
+		f.gateway.down(link)
 		link.close(code)
 	}
 }
@@ -146,10 +172,18 @@ func (g *gateway) links() []*link {
 	return up
 }
 
+// down lets a connection hear of no more events.
+func (g *gateway) down(link *link) {
+	g.mu.Lock()
+	defer g.mu.Unlock()
+	link.up = false
+}
+
 func (g *gateway) cutAll() {
 	g.mu.Lock()
 	defer g.mu.Unlock()
 	for link := range g.open {
+		link.up = false
 		_ = link.conn.Close()
 	}
 }
@@ -258,6 +292,7 @@ func (g *gateway) welcome(link *link, manner Manner, raw json.RawMessage) bool {
 	}
 	g.mu.Lock()
 	link.up = true
+	g.sessions++
 	g.mu.Unlock()
 	return true
 }

@@ -16,7 +16,8 @@ type User struct {
 	Permissions int64
 }
 
-// Interaction is one thing a user did, and what came of it.
+// Interaction is one thing a user did, and what came of it. The caller's is
+// the caller's own: Wait, WaitAnswer and WaitFollowUp bring it up to date.
 type Interaction struct {
 	ID, Token string
 	Guild     string
@@ -49,7 +50,8 @@ func (f *Fake) do(kind int, guild, channel string, user User, data map[string]an
 	f.mu.Lock()
 	in := &Interaction{ID: f.newID(), Guild: guild, Channel: channel, Kind: kind}
 	in.Token = "token-" + in.ID
-	f.interactions[in.Token] = in
+	in.At = time.Now()
+	f.interactions[in.Token] = in.copied()
 	groups := user.Groups
 	if groups == nil {
 		groups = []string{}
@@ -63,7 +65,6 @@ func (f *Fake) do(kind int, guild, channel string, user User, data map[string]an
 	if message != nil {
 		event["message"] = message.view()
 	}
-	in.At = time.Now()
 	f.mu.Unlock()
 	f.Event("INTERACTION_CREATE", event)
 	return in
@@ -136,41 +137,73 @@ func (f *Fake) Replay(in *Interaction, user User, path string, options ...Option
 // form its callback, anything else a message with something in it. It reports
 // false when that takes longer.
 func (f *Fake) Wait(in *Interaction, patience time.Duration) bool {
-	return f.until(patience, func() bool {
-		if in.Callback == nil {
+	return f.follow(in, patience, func(now *Interaction) bool {
+		if now.Callback == nil {
 			return false
 		}
-		switch in.Callback["type"] {
+		switch now.Callback["type"] {
 		case float64(8), float64(9), float64(4), float64(7):
 			return true
 		}
-		return in.edited || len(in.FollowUps) > 0
+		return now.edited || len(now.FollowUps) > 0
 	})
+}
+
+// WaitAnswer waits for the first answer, which may be a promise only.
+func (f *Fake) WaitAnswer(in *Interaction, patience time.Duration) bool {
+	return f.follow(in, patience, func(now *Interaction) bool { return now.Callback != nil })
 }
 
 // WaitFollowUp waits for a follow-up message.
 func (f *Fake) WaitFollowUp(in *Interaction, patience time.Duration) bool {
-	return f.until(patience, func() bool { return len(in.FollowUps) > 0 })
+	return f.follow(in, patience, func(now *Interaction) bool { return len(now.FollowUps) > 0 })
+}
+
+// follow waits until what came of an interaction is as it should be, and
+// brings the caller's up to date, also when that takes longer.
+func (f *Fake) follow(in *Interaction, patience time.Duration, done func(*Interaction) bool) bool {
+	f.mu.Lock()
+	defer f.mu.Unlock()
+	kept := f.interactions[in.Token]
+	if kept == nil {
+		return false // forgotten
+	}
+	reached := f.until(patience, func() bool { return done(kept) })
+	*in = *kept.copied()
+	return reached
+}
+
+// copied is the interaction with nothing shared that changes later.
+func (in *Interaction) copied() *Interaction {
+	copied := *in
+	copied.Callback, _ = deep(in.Callback).(map[string]any)
+	copied.Message = in.Message.copied()
+	copied.FollowUps = nil
+	for _, message := range in.FollowUps {
+		copied.FollowUps = append(copied.FollowUps, message.copied())
+	}
+	return &copied
 }
 
 // WaitMessages waits until the channel has at least so many messages.
 func (f *Fake) WaitMessages(channel string, n int, patience time.Duration) bool {
+	f.mu.Lock()
+	defer f.mu.Unlock()
 	return f.until(patience, func() bool { return len(f.messages[channel]) >= n })
 }
 
-// until waits for the condition, which runs with the lock held.
+// until waits for the condition. The lock is held, but while it waits.
 func (f *Fake) until(patience time.Duration, done func() bool) bool {
+	over := false
 	timer := time.AfterFunc(patience, func() {
 		f.mu.Lock()
 		defer f.mu.Unlock()
+		over = true
 		f.cond.Broadcast()
 	})
 	defer timer.Stop()
-	end := time.Now().Add(patience)
-	f.mu.Lock()
-	defer f.mu.Unlock()
 	for !done() {
-		if time.Now().After(end) {
+		if over {
 			return false
 		}
 		f.cond.Wait()
@@ -188,11 +221,11 @@ func (f *Fake) callback(id, token string, c call, arrived time.Time) answer {
 		return refuse(400, 40060, "Interaction has already been acknowledged.")
 	}
 	in.Answered = arrived.Sub(in.At)
-	if in.Answered > 3*time.Second {
+	if in.Answered > f.limit {
 		f.problem("interaction answered after %s", in.Answered)
 		return refuse(404, 10062, "Unknown interaction")
 	}
-	in.Callback = c.body
+	in.Callback, _ = deep(c.body).(map[string]any) // the message's own body is edited later
 	data, _ := c.body["data"].(map[string]any)
 	flags, _ := data["flags"].(float64)
 	private := int(flags)&64 != 0
