@@ -223,10 +223,7 @@ func TestWatch(t *testing.T) {
 		done <- run(ctx, []string{"import", "--db", database, "--watch", filepath.Join(dir, "drop"), "--every", "50ms"}, noEnv, strings.NewReader(""), &out, &errOut)
 	}()
 	const want = "done/a.csv refused/b.csv refused/b.csv.reason.txt"
-	for range 600 {
-		if namesIn(t, filepath.Join(dir, "drop")) == want {
-			break
-		}
+	for end := time.Now().Add(patience); namesIn(t, filepath.Join(dir, "drop")) != want && time.Now().Before(end); {
 		time.Sleep(50 * time.Millisecond)
 	}
 	stop()

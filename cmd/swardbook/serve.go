@@ -105,7 +105,7 @@ func (s serving) run(ctx context.Context, errOut io.Writer) (err error) {
 		return err
 	}
 	health := &health{now: s.now}
-	stopListening, err := s.serveHealth(health, registry)
+	stopListening, err := s.serveHealth(health, registry, log)
 	if err != nil {
 		return err
 	}
@@ -271,8 +271,8 @@ WantedBy=multi-user.target
 `
 
 // serveHealth serves /healthz and /metrics on a loopback address, if one is
-// given. Neither is for the outside.
-func (s serving) serveHealth(health *health, registry *prometheus.Registry) (stop func(), err error) {
+// given, and logs which it is: port 0 is any free one. Neither is for the outside.
+func (s serving) serveHealth(health *health, registry *prometheus.Registry, log *slog.Logger) (stop func(), err error) {
 	if s.listen == "" {
 		return func() {}, nil
 	}
@@ -285,6 +285,7 @@ func (s serving) serveHealth(health *health, registry *prometheus.Registry) (sto
 	if err != nil {
 		return nil, planner.Problemf(planner.Refused, "cannot listen on %s: %v", s.listen, err).WithHint("Choose another port.")
 	}
+	log.Info("listening", "address", listener.Addr().String())
 	mux := http.NewServeMux()
 	mux.Handle("/healthz", health)
 	mux.Handle("/metrics", promhttp.HandlerFor(registry, promhttp.HandlerOpts{}))

@@ -7,6 +7,7 @@ import (
 	"log/slog"
 	"path/filepath"
 	"strings"
+	"sync/atomic"
 	"testing"
 	"time"
 
@@ -27,15 +28,16 @@ type morning struct {
 	teams *teams
 	bot   *discord.Bot
 	log   *syncBuffer
-	now   time.Time
+	now   moment
 }
 
 func newMorning(t *testing.T) *morning {
 	t.Helper()
-	m := &morning{t: t, fake: fakechat.Start(), log: &syncBuffer{}, now: tuesday.Add(-24 * time.Hour)} // Monday 05:29
+	m := &morning{t: t, fake: fakechat.Start(), log: &syncBuffer{}}
+	m.now.set(tuesday.Add(-24 * time.Hour)) // Monday 05:29
 	t.Cleanup(m.fake.Close)
 	m.fake.AddGuild(server, channel)
-	m.fake.SetClock(func() time.Time { return m.now })
+	m.fake.SetClock(m.now.get)
 	db, err := sqlite.Open(t.Context(), filepath.Join(t.TempDir(), "course.db"))
 	if err != nil {
 		t.Fatal(err)
@@ -44,10 +46,8 @@ func newMorning(t *testing.T) *morning {
 	m.db = db
 	log := slog.New(slog.NewTextHandler(m.log, &slog.HandlerOptions{ReplaceAttr: discord.Redactor(fakechat.Token)}))
 	m.teams = newTeams(db, log)
-	timing := quickly()
-	timing.Call = 2 * time.Second
 	m.bot, err = discord.New(discord.Config{Token: fakechat.Token, BaseURL: m.fake.URL(), House: m.teams, Table: command.Desk{}.Table(nil),
-		Log: log, Now: func() time.Time { return m.now }, Timing: timing})
+		Log: log, Now: m.now.get, Timing: quickly()})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -72,7 +72,7 @@ func (m *morning) type_(lines ...string) string {
 	}
 	var out bytes.Buffer
 	session := terminal.Session{Table: team.Table, Caller: command.Caller{ID: "t", Name: "Robin", Role: command.Lead},
-		Now: func() (time.Time, bool) { return m.now, false }, Out: &out, Err: &out, Dir: m.t.TempDir(), Width: 200}
+		Now: func() (time.Time, bool) { return m.now.get(), false }, Out: &out, Err: &out, Dir: m.t.TempDir(), Width: 200}
 	for _, line := range lines {
 		if !session.RunLine(context.Background(), line) {
 			m.t.Fatalf("%s:\n%s", line, out.String())
@@ -88,12 +88,12 @@ func (m *morning) weather(day string) {
 	if err != nil {
 		m.t.Fatal(err)
 	}
-	before := m.now
-	if over = over.Add(24 * time.Hour); over.After(m.now) {
-		m.now = over
+	before := m.now.get()
+	if over = over.Add(24 * time.Hour); over.After(before) {
+		m.now.set(over)
 	}
 	m.type_("/weather day date:" + day + " high:21 low:10")
-	m.now = before
+	m.now.set(before)
 }
 
 // tickAt ticks at the time on New York's clock and returns all posts.
@@ -103,10 +103,12 @@ func (m *morning) tickAt(clock string) []string {
 	if err != nil {
 		m.t.Fatal(err)
 	}
-	if m.now, err = time.ParseInLocation("2006-01-02 15:04", clock, zone); err != nil {
+	now, err := time.ParseInLocation("2006-01-02 15:04", clock, zone)
+	if err != nil {
 		m.t.Fatal(err)
 	}
-	tick(context.Background(), m.teams, m.bot, nil, slog.New(slog.NewTextHandler(m.log, nil)), m.now)
+	m.now.set(now)
+	tick(context.Background(), m.teams, m.bot, nil, slog.New(slog.NewTextHandler(m.log, nil)), now)
 	var said []string
 	for _, message := range m.fake.Messages(channel) {
 		said = append(said, message.Say())
@@ -200,7 +202,7 @@ func TestPostTellsCorrections(t *testing.T) {
 	m := newMorning(t)
 	m.weather("2024-06-02")
 	m.weather("2024-06-03")
-	m.now = time.Date(2024, 6, 4, 8, 0, 0, 0, time.UTC)
+	m.now.set(time.Date(2024, 6, 4, 8, 0, 0, 0, time.UTC))
 	m.type_("/done greens regulator when:2024-06-01")
 	m.expect(m.tickAt("2024-06-04 05:30"), 1, "31 of 200")
 	m.weather("2024-06-04")
@@ -245,12 +247,11 @@ func TestPostAnswerLost(t *testing.T) {
 		t.Run(name, func(t *testing.T) {
 			m := newMorning(t)
 			m.weather("2024-06-02")
-			first := true
+			var struck atomic.Bool
 			m.fake.SetFault(func(method, path string) *fakechat.Fault {
-				if method != "POST" || !first {
+				if method != "POST" || !struck.CompareAndSwap(false, true) {
 					return nil
 				}
-				first = false
 				return &fault
 			})
 			m.tickAt("2024-06-03 05:30")
@@ -340,7 +341,7 @@ func (m *morning) refuse(status, code int) {
 func TestRemovedTeam(t *testing.T) {
 	m := newMorning(t)
 	m.weather("2024-06-02")
-	if err := m.teams.Left(context.Background(), server, m.now); err != nil {
+	if err := m.teams.Left(context.Background(), server, m.now.get()); err != nil {
 		t.Fatal(err)
 	}
 	m.expect(m.tickAt("2024-06-03 05:30"), 0)
@@ -351,7 +352,7 @@ func TestRemovedTeam(t *testing.T) {
 	if list := m.type_("/setup site list"); !strings.Contains(list, "Quillmere") {
 		t.Errorf("erased within the grace:\n%s", list)
 	}
-	if err := m.teams.Left(context.Background(), server, m.now); err != nil {
+	if err := m.teams.Left(context.Background(), server, m.now.get()); err != nil {
 		t.Fatal(err)
 	}
 	m.tickAt("2024-08-01 06:00")
@@ -369,7 +370,7 @@ func TestPostChangedTheSameDay(t *testing.T) {
 	m := newMorning(t)
 	m.weather("2024-06-02")
 	m.expect(m.tickAt("2024-06-03 05:30"), 1)
-	m.now = m.now.Add(time.Hour)
+	m.now.set(m.now.get().Add(time.Hour))
 	m.type_("/setup post change number:1 at:06:00")
 	m.expect(m.tickAt("2024-06-03 07:00"), 1)
 	m.weather("2024-06-03")

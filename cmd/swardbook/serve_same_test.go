@@ -232,18 +232,14 @@ func inChat(t *testing.T, scripts []script, files map[string][]byte, zone *time.
 	defer db.Close()
 	fake := fakechat.Start()
 	defer fake.Close()
+	fake.SetAnswerLimit(patience)
 	fake.AddGuild(server, channel)
 	var answers answered
-	var mu sync.Mutex
-	var now time.Time
+	var now moment
 	log := &syncBuffer{}
 	handler := slog.New(slog.NewTextHandler(log, nil))
 	bot, err := discord.New(discord.Config{Token: fakechat.Token, BaseURL: fake.URL(), House: watchedTeams{newTeams(db, handler), &answers},
-		Table: command.Desk{}.Table(nil), Log: handler, Timing: quickly(), Now: func() time.Time {
-			mu.Lock()
-			defer mu.Unlock()
-			return now
-		}})
+		Table: command.Desk{}.Table(nil), Log: handler, Timing: quickly(), Now: now.get})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -254,13 +250,11 @@ func inChat(t *testing.T, scripts []script, files map[string][]byte, zone *time.
 		cancel()
 		<-done
 	}()
-	if !fake.WaitConnected(10 * time.Second) {
+	if !fake.WaitConnected(patience) {
 		t.Fatal("not connected")
 	}
 	for _, one := range scripts {
-		mu.Lock()
-		now = instant(one.now, zone)
-		mu.Unlock()
+		now.set(instant(one.now, zone))
 		user := fakechat.User{ID: "300000000000000001", Name: "Robin"}
 		if one.lead {
 			user.Permissions = 32
@@ -276,7 +270,8 @@ func inChat(t *testing.T, scripts []script, files map[string][]byte, zone *time.
 }
 
 // giveInChat gives the line as the chat's own form of it, and says yes when it
-// asks.
+// asks. What is waited for comes after the line was run; what follows it, in
+// public, may come while the next one runs.
 func giveInChat(t *testing.T, fake *fakechat.Fake, user fakechat.User, line string, files map[string][]byte, log fmt.Stringer) {
 	t.Helper()
 	call, ok := chatCan(line)
@@ -313,16 +308,13 @@ func giveInChat(t *testing.T, fake *fakechat.Fake, user fakechat.User, line stri
 	} else {
 		in = fake.Command(server, channel, user, call.Command.Path, options...)
 	}
-	if !fake.Wait(in, 30*time.Second) {
+	if !fake.Wait(in, patience) {
 		t.Fatalf("no answer to %s\n%s", line, log)
 	}
 	if yes := in.Message.Button("Yes"); yes != "" {
 		in = fake.Click(server, channel, user, in.Message, yes)
-		if !fake.Wait(in, 30*time.Second) {
+		if !fake.Wait(in, patience) {
 			t.Fatalf("no answer to yes after %s\n%s", line, log)
-		}
-		if call.Command.Shared {
-			fake.WaitFollowUp(in, 5*time.Second)
 		}
 	}
 }

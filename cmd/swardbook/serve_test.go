@@ -55,11 +55,35 @@ func (b *syncBuffer) String() string {
 	return b.buf.String()
 }
 
-// quickly is the timing of tests on loopback.
+// patience is how long a test waits for what must come: it is used up only when
+// something hangs, never by a slow machine.
+const patience = 2 * time.Minute
+
+// quickly is the timing of tests on loopback: another connection comes at once,
+// and nothing is given up unless it hangs.
 func quickly() discord.Timing {
 	timing := discord.DefaultTiming()
-	timing.Shortest, timing.Longest, timing.Drain = 20*time.Millisecond, 50*time.Millisecond, 5*time.Second
+	timing.Shortest, timing.Longest = 20*time.Millisecond, 50*time.Millisecond
+	timing.Open, timing.Answer, timing.Drain = patience, patience, patience
 	return timing
+}
+
+// moment is a test's clock, which stands until it is set.
+type moment struct {
+	mu sync.Mutex
+	at time.Time
+}
+
+func (m *moment) set(at time.Time) {
+	m.mu.Lock()
+	defer m.mu.Unlock()
+	m.at = at
+}
+
+func (m *moment) get() time.Time {
+	m.mu.Lock()
+	defer m.mu.Unlock()
+	return m.at
 }
 
 // serveFake starts the program in a fake chat with two servers. It ends with
@@ -68,6 +92,7 @@ func serveFake(t testing.TB, path string, now func() time.Time, change func(*ser
 	t.Helper()
 	s := &served{t: t, path: path, fake: fakechat.Start(), log: &syncBuffer{}}
 	t.Cleanup(s.fake.Close)
+	s.fake.SetAnswerLimit(patience)
 	s.fake.AddGuild(server, channel)
 	s.fake.AddGuild(otherServer, otherChannel)
 	settings := serving{db: path, token: fakechat.Token, chatURL: s.fake.URL(), timing: quickly(), now: now}
@@ -94,7 +119,7 @@ func serveFake(t testing.TB, path string, now func() time.Time, change func(*ser
 			t.Error(problem)
 		}
 	})
-	if !s.fake.WaitConnected(20 * time.Second) {
+	if !s.fake.WaitConnected(patience) {
 		t.Fatalf("not connected:\n%s", s.log)
 	}
 	return s
@@ -103,7 +128,7 @@ func serveFake(t testing.TB, path string, now func() time.Time, change func(*ser
 // wait waits for the answer to an interaction.
 func (s *served) wait(in *fakechat.Interaction) *fakechat.Message {
 	s.t.Helper()
-	if !s.fake.Wait(in, 30*time.Second) {
+	if !s.fake.Wait(in, patience) {
 		s.t.Fatalf("no answer; callback %v\n%s", in.Callback, s.log)
 	}
 	return in.Message
@@ -184,7 +209,7 @@ func TestServeSetsUpAndAnswers(t *testing.T) {
 	// Log by a button's form, confirm, undo.
 	asked := s.wait(s.fake.Command(server, channel, worker, "done", textOptions([]string{"surfaces:greens", "works:regulator", "when:2024-05-30"})...))
 	yes := s.fake.Click(server, channel, worker, asked, asked.Button("Yes"))
-	if !s.fake.WaitFollowUp(yes, 20*time.Second) {
+	if !s.fake.WaitFollowUp(yes, patience) {
 		t.Fatalf("not logged: %s", s.log)
 	}
 	logged := yes.FollowUps[0]
@@ -196,7 +221,7 @@ func TestServeSetsUpAndAnswers(t *testing.T) {
 		t.Errorf("undo, private %v: %s", undo.Private, undo.Say())
 	}
 	complete := s.fake.Complete(server, channel, worker, "due", fakechat.Option{Name: "surface", Type: 3, Value: "gr", Focused: true})
-	if !s.fake.Wait(complete, 10*time.Second) || fmt.Sprint(complete.Choices()) != "[greens]" {
+	if !s.fake.Wait(complete, patience) || fmt.Sprint(complete.Choices()) != "[greens]" {
 		t.Errorf("completion: %v", complete.Callback)
 	}
 }
@@ -270,7 +295,7 @@ func TestWalls(t *testing.T) {
 	}
 	for _, option := range [][2]string{{"due", "surface"}, {"due", "site"}, {"done", "works"}, {"setup work change", "name"}} {
 		in := s.fake.Complete(otherServer, otherChannel, outsider, option[0], fakechat.Option{Name: option[1], Type: 3, Value: "", Focused: true})
-		if !s.fake.Wait(in, 10*time.Second) || len(in.Choices()) > 0 {
+		if !s.fake.Wait(in, patience) || len(in.Choices()) > 0 {
 			t.Errorf("completion of %v: %v", option, in.Choices())
 		}
 	}
@@ -311,7 +336,7 @@ func TestSecondServe(t *testing.T) {
 func programWith(t *testing.T, env map[string]string, args ...string) (out, errOut string, status int) {
 	t.Helper()
 	var stdout, stderr bytes.Buffer
-	ctx, cancel := context.WithTimeout(context.Background(), 20*time.Second)
+	ctx, cancel := context.WithTimeout(context.Background(), patience)
 	defer cancel()
 	status = run(ctx, args, func(key string) string { return env[key] }, strings.NewReader(""), &stdout, &stderr)
 	return stdout.String(), stderr.String(), status
@@ -383,7 +408,7 @@ func TestChannelIsAboutASite(t *testing.T) {
 		t.Errorf("named: %s", got)
 	}
 	in := s.fake.Complete(server, second, worker, "due", fakechat.Option{Name: "surface", Type: 3, Value: "", Focused: true})
-	if !s.fake.Wait(in, 10*time.Second) || fmt.Sprint(in.Choices()) != "[pitch]" {
+	if !s.fake.Wait(in, patience) || fmt.Sprint(in.Choices()) != "[pitch]" {
 		t.Errorf("completion: %v", in.Choices())
 	}
 	m := &fakechat.Message{ID: "1", Channel: second, Body: map[string]any{}}
@@ -437,12 +462,16 @@ func TestServeUnit(t *testing.T) {
 }
 
 func TestHealthAndMetrics(t *testing.T) {
-	address := "127.0.0.1:" + freePort(t)
-	s := serveFake(t, filepath.Join(t.TempDir(), "course.db"), time.Now, func(s *serving) { s.listen = address })
+	s := serveFake(t, filepath.Join(t.TempDir(), "course.db"), time.Now, func(s *serving) { s.listen = "127.0.0.1:0" })
+	_, after, _ := strings.Cut(s.log.String(), `"msg":"listening","address":"`)
+	address, _, found := strings.Cut(after, `"`)
+	if !found {
+		t.Fatalf("it does not say where it listens:\n%s", s.log)
+	}
 	s.say(server, channel, worker, "help")
 	for path, want := range map[string]string{"healthz": "ok", "metrics": `swardbook_interactions_total{kind="ApplicationCommand",outcome="ok"} 1`} {
 		got := ""
-		for end := time.Now().Add(5 * time.Second); time.Now().Before(end); time.Sleep(10 * time.Millisecond) {
+		for end := time.Now().Add(patience); time.Now().Before(end); time.Sleep(10 * time.Millisecond) {
 			resp, err := http.Get("http://" + address + "/" + path)
 			if err != nil {
 				continue
@@ -537,11 +566,4 @@ func TestExportAndErase(t *testing.T) {
 	if got := s.say(otherServer, otherChannel, leader, "setup site list"); !strings.Contains(all.Say(), "Erased everything") || strings.Contains(got, "Elsewhere") {
 		t.Errorf("got %s, then %s", all.Say(), got)
 	}
-}
-
-func freePort(t *testing.T) string {
-	t.Helper()
-	fake := fakechat.Start()
-	defer fake.Close()
-	return fake.URL()[strings.LastIndex(fake.URL(), ":")+1:]
 }

@@ -101,8 +101,7 @@ func startChild(t *testing.T, path, url string) *child {
 		t.Fatal(err)
 	}
 	if !c.out.Scan() || c.out.Text() != "up" {
-		c.kill()
-		t.Fatalf("the child did not start: %s", c.errOut.String())
+		t.Fatalf("the child did not start: %s", c.lastWords())
 	}
 	return c
 }
@@ -123,6 +122,14 @@ func (c *child) kill() {
 }
 
 func (c *child) wait() { _ = c.cmd.Wait() } // it was killed
+
+// lastWords ends the child and is what it complained of: that is whole, and
+// nobody's else, only then.
+func (c *child) lastWords() string {
+	c.kill()
+	c.wait()
+	return c.errOut.String()
+}
 
 // year is what TestYearOfKills tries.
 type year struct {
@@ -227,11 +234,15 @@ func (r *yearRunner) run(times []time.Time) {
 	for i := 0; i < len(times); i++ {
 		at := times[i]
 		r.now.Store(at.Unix())
-		if until--; until > 0 || r.left == 0 {
+		short := len(times)-i <= 2*r.left // each of those to come must have its tick
+		if until--; r.left == 0 || until > 0 && !short {
 			if !c.tick(at) {
-				r.t.Fatalf("the child died by itself: %s", c.errOut.String())
+				r.t.Fatalf("the child died by itself: %s", c.lastWords())
 			}
 			continue
+		}
+		if short {
+			r.way = 0 // comes for sure
 		}
 		died := r.tickAndKill(c, at)
 		if !died {
@@ -247,7 +258,7 @@ func (r *yearRunner) run(times []time.Time) {
 		case 0: // back in the same minute
 			i--
 		case 1: // back too late for some windows
-			i += r.random.IntN(24)
+			i += max(0, min(r.random.IntN(24), len(times)-1-i-2*r.left))
 		}
 	}
 	// A little longer, so that what is open is settled.
@@ -256,7 +267,7 @@ func (r *yearRunner) run(times []time.Time) {
 		at := last.Add(time.Duration(minute) * time.Minute)
 		r.now.Store(at.Unix())
 		if !c.tick(at) {
-			r.t.Fatalf("the child died by itself: %s", c.errOut.String())
+			r.t.Fatalf("the child died by itself: %s", c.lastWords())
 		}
 	}
 	c.kill()
@@ -270,14 +281,16 @@ func (r *yearRunner) tickAndKill(c *child, at time.Time) bool {
 	first := r.way
 	way := first // a look-back may come sooner
 	var struck atomic.Bool
-	strike := func() {
+	var timer *time.Timer
+	gone := make(chan struct{})
+	strike := sync.OnceFunc(func() {
 		struck.Store(true)
 		c.kill()
-	}
+		close(gone)
+	})
 	switch first {
 	case 0:
-		timer := time.AfterFunc(time.Duration(r.random.IntN(20_000))*time.Microsecond, strike)
-		defer timer.Stop()
+		timer = time.AfterFunc(time.Duration(r.random.IntN(20_000))*time.Microsecond, strike)
 	case 1, 2:
 		// Requests come side by side: what they decide by is theirs, behind one lock.
 		var deciding sync.Mutex
@@ -305,18 +318,24 @@ func (r *yearRunner) tickAndKill(c *child, at time.Time) bool {
 		defer r.fake.SetFault(nil)
 	}
 	alive := c.tick(at)
-	if first == 0 && alive {
-		for end := time.Now().Add(time.Second); !struck.Load() && time.Now().Before(end); time.Sleep(time.Millisecond) {
-		}
+	switch {
+	case timer == nil:
+	case !timer.Stop():
+		<-gone // it has struck, or is about to
+	case alive:
+		strike() // the tick was over before
 	}
 	if !struck.Load() {
 		if !alive {
-			r.t.Fatalf("the child died by itself: %s", c.errOut.String())
+			r.t.Fatalf("the child died by itself: %s", c.lastWords())
 		}
 		return false
 	}
 	r.kinds[way]++
 	c.wait()
+	if !r.fake.WaitGone(patience) {
+		r.t.Fatal("calls of a killed child do not end")
+	}
 	return true
 }
 

@@ -10,6 +10,7 @@ import (
 	"encoding/json"
 	"fmt"
 	"maps"
+	"net"
 	"net/http"
 	"net/http/httptest"
 	"slices"
@@ -17,6 +18,7 @@ import (
 	"strconv"
 	"strings"
 	"sync"
+	"sync/atomic"
 	"time"
 )
 
@@ -30,6 +32,7 @@ const (
 // Fake is the service. All methods may be used from several goroutines.
 type Fake struct {
 	server *httptest.Server
+	open   atomic.Int64 // connections for REST calls
 
 	mu           sync.Mutex
 	cond         *sync.Cond // signalled when anything changes
@@ -97,7 +100,16 @@ func Start() *Fake {
 	}
 	f.cond = sync.NewCond(&f.mu)
 	f.gateway.init(f)
-	f.server = httptest.NewServer(http.HandlerFunc(f.serve))
+	f.server = httptest.NewUnstartedServer(http.HandlerFunc(f.serve))
+	f.server.Config.ConnState = func(_ net.Conn, state http.ConnState) {
+		switch state {
+		case http.StateNew:
+			f.open.Add(1)
+		case http.StateClosed, http.StateHijacked:
+			f.open.Add(-1)
+		}
+	}
+	f.server.Start()
 	return f
 }
 
@@ -110,6 +122,23 @@ func (f *Fake) Close() {
 	f.server.CloseClientConnections()
 	f.server.Close()
 }
+
+// WaitGone waits until nothing that ended clients have sent is still on its way:
+// a call that was made before its client was killed can arrive after that.
+func (f *Fake) WaitGone(patience time.Duration) bool {
+	// Connections are taken in one after the other: after this one all that were
+	// made before it are counted.
+	client := http.Client{Transport: &http.Transport{DisableKeepAlives: true}, Timeout: patience}
+	knock, err := client.Get(f.URL() + knockPath)
+	if err != nil {
+		return false
+	}
+	_ = knock.Body.Close()
+	return poll(patience, func() bool { return f.open.Load() == 0 })
+}
+
+// knockPath answers that the fake is there.
+const knockPath = "/knock"
 
 // SetClock sets the time that new messages bear.
 func (f *Fake) SetClock(clock func() time.Time) {
@@ -262,6 +291,8 @@ func (f *Fake) problem(format string, args ...any) {
 // serve takes every request: REST, gateway and file host.
 func (f *Fake) serve(w http.ResponseWriter, r *http.Request) {
 	switch {
+	case r.URL.Path == knockPath:
+		w.WriteHeader(http.StatusNoContent)
 	case strings.HasPrefix(r.URL.Path, "/gw"):
 		f.gateway.serve(w, r)
 	case strings.HasPrefix(r.URL.Path, "/attachments/"):
