@@ -9,7 +9,7 @@ import (
 func TestMain(m *testing.M) {
 	flag.Parse()
 	if raceOn { // what races shows in a few rounds
-		if err := flag.Set("rapid.checks", "8"); err != nil {
+		if err := flag.Set("rapid.checks", "3"); err != nil {
 			panic(err)
 		}
 	}

@@ -41,12 +41,39 @@ func TestMain(m *testing.M) {
 	}
 }
 
-// child starts the test binary as another program.
+// patience is after what time another program counts as hanging, and is killed.
+const patience = 5 * time.Minute
+
+// waitsLong lets a connection wait for another program for as long as a busy
+// machine takes.
+const waitsLong = "PRAGMA busy_timeout = 300000"
+
+// child is the test binary as another program.
 func child(t *testing.T, name, path string) *exec.Cmd {
 	t.Helper()
-	cmd := exec.CommandContext(t.Context(), os.Args[0], path)
+	ctx, cancel := context.WithTimeout(t.Context(), patience)
+	t.Cleanup(cancel)
+	cmd := exec.CommandContext(ctx, os.Args[0], path)
 	cmd.Env = append(os.Environ(), childVariable+"="+name)
 	return cmd
+}
+
+// startUntil starts the program, waits until it says the word, and returns what
+// else it says.
+func startUntil(t *testing.T, cmd *exec.Cmd, word string) *bufio.Reader {
+	t.Helper()
+	out, err := cmd.StdoutPipe()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if err := cmd.Start(); err != nil {
+		t.Fatal(err)
+	}
+	said := bufio.NewReader(out)
+	if line, err := said.ReadString('\n'); line != word+"\n" {
+		t.Fatalf("the other program said %q, %v, want %q", line, err, word)
+	}
+	return said
 }
 
 const childSaves = 25
@@ -68,6 +95,10 @@ func childWrites(ctx context.Context, path string) error {
 	if err != nil {
 		return err
 	}
+	if _, err := db.writer.ExecContext(ctx, waitsLong); err != nil {
+		return err
+	}
+	fmt.Println("writing")
 	for i := range childSaves {
 		if _, err := team.Save(ctx, stamp, surface(fmt.Sprintf("child %d", i))); err != nil {
 			return err
@@ -177,17 +208,7 @@ func TestMergeSurvivesCrash(t *testing.T) {
 // and kills it.
 func killWhenStopped(t *testing.T, cmd *exec.Cmd) {
 	t.Helper()
-	out, err := cmd.StdoutPipe()
-	if err != nil {
-		t.Fatal(err)
-	}
-	if err := cmd.Start(); err != nil {
-		t.Fatal(err)
-	}
-	line, err := bufio.NewReader(out).ReadString('\n')
-	if line != "stopped\n" {
-		t.Fatalf("the other program said %q, %v", line, err)
-	}
+	startUntil(t, cmd, "stopped")
 	if err := cmd.Process.Kill(); err != nil {
 		t.Fatal(err)
 	}
@@ -199,18 +220,18 @@ func killWhenStopped(t *testing.T, cmd *exec.Cmd) {
 func TestTwoProgramsWrite(t *testing.T) {
 	t.Parallel()
 	path := filepath.Join(t.TempDir(), "store.db")
-	_, home := newHome(t, path)
+	db, home := newHome(t, path)
+	exec1(t, db, waitsLong)
 	other := child(t, "write", path)
-	if err := other.Start(); err != nil {
-		t.Fatal(err)
-	}
+	said := startUntil(t, other, "writing")
 	for i := range childSaves {
 		if _, err := home.Save(t.Context(), stamp, surface(fmt.Sprintf("parent %d", i))); err != nil {
 			t.Errorf("save beside another program: %v", err)
 		}
 	}
+	complaint, _ := said.ReadString('\n')
 	if err := other.Wait(); err != nil {
-		t.Errorf("the other program: %v", err)
+		t.Errorf("the other program: %v: %s", err, complaint)
 	}
 	setup, err := home.Setup(t.Context())
 	if err != nil {
