@@ -39,11 +39,15 @@ type serving struct {
 	unit        bool
 	timing      discord.Timing
 	now         func() time.Time
+	// routeLog sends the client library's log to the program's, when not nil: the
+	// library has one for all bots, so that only a program of one bot may.
+	routeLog func(*slog.Logger)
 }
 
 // serveCommand is the bot in a chat server.
 func serveCommand(env func(string) string) *cobra.Command {
-	s := serving{token: env("SWARDBOOK_TOKEN"), chatURL: env("SWARDBOOK_CHAT_URL"), credentials: env("CREDENTIALS_DIRECTORY"), timing: discord.DefaultTiming(), now: time.Now}
+	s := serving{token: env("SWARDBOOK_TOKEN"), chatURL: env("SWARDBOOK_CHAT_URL"), credentials: env("CREDENTIALS_DIRECTORY"), timing: discord.DefaultTiming(), now: time.Now,
+		routeLog: discord.RouteLibraryLog}
 	cmd := &cobra.Command{
 		Use:   "serve",
 		Short: "Be the bot in the team's chat server",
@@ -91,7 +95,9 @@ func (s serving) run(ctx context.Context, errOut io.Writer) (err error) {
 	}
 	defer func() { err = errors.Join(err, db.Close()) }()
 	log := slog.New(slog.NewJSONHandler(errOut, &slog.HandlerOptions{ReplaceAttr: discord.Redactor(token)}))
-	discord.RouteLibraryLog(log)
+	if s.routeLog != nil {
+		s.routeLog(log)
+	}
 	registry := prometheus.NewRegistry()
 	registry.MustRegister(collectors.NewGoCollector())
 	metrics, err := discord.NewMetrics(registry)
