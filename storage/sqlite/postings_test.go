@@ -89,7 +89,7 @@ func TestLedger(t *testing.T) {
 	home, other := team(t, db, "home"), team(t, db, "other")
 	post := savedPost(t, home, savedSite(t, home, "Quillmere").ID)
 	at := time.Date(2024, 6, 4, 9, 30, 0, 0, time.UTC)
-	row := planner.Posting{Post: post.ID, Day: 19878, State: planner.Claimed, At: at, Partial: true}
+	row := planner.Posting{Post: post.ID, Day: 19878, State: planner.Claimed, Channel: "77", At: at, Partial: true}
 	var won sync.Map
 	var all sync.WaitGroup
 	for i := range 8 {
@@ -111,7 +111,7 @@ func TestLedger(t *testing.T) {
 		t.Errorf("another team's claim: %v", err)
 	}
 	sent := row
-	sent.State, sent.Message, sent.At = planner.Sent, "555", at.Add(time.Second)
+	sent.State, sent.Message, sent.Channel, sent.At = planner.Sent, "555", "78", at.Add(time.Second)
 	if err := other.Settle(ctx, sent); planner.KindOf(err) != planner.NotFound {
 		t.Errorf("another team settles: %v", err)
 	}
@@ -122,7 +122,7 @@ func TestLedger(t *testing.T) {
 		t.Errorf("settled twice: %v", err)
 	}
 	older := planner.Posting{Post: post.ID, Day: 19800, State: planner.Claimed, At: at}
-	oldest := planner.Posting{Post: post.ID, Day: 19700, State: planner.GivenUp, At: at, Reason: "not running"}
+	oldest := planner.Posting{Post: post.ID, Day: 19700, State: planner.GivenUp, At: at, Reason: "not running", Unsure: true}
 	for _, one := range []planner.Posting{older, oldest} {
 		if ok, err := home.Claim(ctx, one); err != nil || !ok {
 			t.Fatalf("%v, %v", ok, err)

@@ -184,6 +184,16 @@ func (f *Fake) Messages(channel string) []*Message {
 	return all
 }
 
+// Talk adds messages of somebody else to a channel, with the components.
+func (f *Fake) Talk(channel string, n int, components ...any) {
+	f.mu.Lock()
+	defer f.mu.Unlock()
+	for range n {
+		f.messages[channel] = append(f.messages[channel], &Message{ID: f.newID(), Channel: channel, At: f.clock(),
+			Body: map[string]any{"content": "Morning!", "components": components}})
+	}
+}
+
 // Commands are the registered commands, and how often they were overwritten.
 func (f *Fake) Commands() ([]json.RawMessage, int) {
 	f.mu.Lock()
