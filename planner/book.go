@@ -124,16 +124,20 @@ func (b *Book) Log(ctx context.Context, site SiteID) ([]Entry, error) {
 // Entry returns an entry of the site's log: the one with the id, or the newest
 // logged when the id is 0. Only the person's own, unless anyone is set.
 // Nothing found is a NotFound problem, somebody else's entry a Forbidden one.
-func (b *Book) Entry(ctx context.Context, site SiteID, id EntryID, person string, anyone bool) (Entry, error) {
+func (b *Book) Entry(ctx context.Context, site SiteID, id EntryID, person Person, anyone bool) (Entry, error) {
 	log, err := b.Log(ctx, site)
 	if err != nil {
 		return Entry{}, err
 	}
 	var found Entry
 	for _, entry := range log {
-		mine := anyone || entry.By == person
+		mine := anyone || entry.LoggedBy(person)
 		if entry.ID == id && !mine {
-			return Entry{}, Problemf(Forbidden, "Entry %d was logged by %s.", id, entry.By).
+			who := entry.By
+			if who == person.Name {
+				who = "another " + who
+			}
+			return Entry{}, Problemf(Forbidden, "Entry %d was logged by %s.", id, who).
 				WithHint("Crew undo and amend their own entries; a lead anyone's.")
 		}
 		if mine && (entry.ID == id || id == 0 && entry.ID > found.ID) {
@@ -153,8 +157,8 @@ const mostChanges = 1000
 // newest when the id is 0. Only entries of the person by count, unless anyone
 // is set. Nothing to undo is a NotFound problem, somebody else's entry a
 // Forbidden one.
-func (b *Book) UndoEntry(ctx context.Context, stamp Stamp, site SiteID, id EntryID, anyone bool) (Entry, error) {
-	found, err := b.Entry(ctx, site, id, stamp.By, anyone)
+func (b *Book) UndoEntry(ctx context.Context, stamp Stamp, person Person, site SiteID, id EntryID, anyone bool) (Entry, error) {
+	found, err := b.Entry(ctx, site, id, person, anyone)
 	if err != nil {
 		return Entry{}, err
 	}

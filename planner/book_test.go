@@ -119,6 +119,34 @@ func (s *shelf) Import(_ context.Context, request planner.ImportRequest) (planne
 	return planner.ImportReport{Rows: 48, New: 40, Changed: 3, Same: 2, Refused: 3}, nil
 }
 
+// The rows say whether an entry is the person's own: by the id, whatever the
+// names; by the name where the entry is too old to have an id.
+func TestOwnEntry(t *testing.T) {
+	sasha := planner.Person{ID: "7", Name: "Sasha"}
+	for _, row := range []struct {
+		name  string
+		entry planner.Entry
+		own   bool
+	}{
+		{"their own", planner.Entry{By: "Sasha", ByID: "7"}, true},
+		{"under an earlier name", planner.Entry{By: "Sash", ByID: "7"}, true},
+		{"another one of that name", planner.Entry{By: "Sasha", ByID: "8"}, false},
+		{"an old entry", planner.Entry{By: "Sasha"}, true},
+		{"an old entry of another one", planner.Entry{By: "Kim"}, false},
+		{"nobody's", planner.Entry{}, false},
+	} {
+		entry := done(1, 1, 0)
+		entry.ID, entry.By, entry.ByID = 4, row.entry.By, row.entry.ByID
+		_, err := bookOf(&shelf{entries: []planner.Entry{entry}}).Entry(t.Context(), 1, 4, sasha, false)
+		if got := err == nil; got != row.own || entry.LoggedBy(sasha) != row.own {
+			t.Errorf("%s: %v", row.name, err)
+		}
+	}
+	if (planner.Entry{By: ""}).LoggedBy(planner.Person{}) {
+		t.Error("an entry of nobody is somebody's")
+	}
+}
+
 // seen is an Ahead that shows what it was given.
 type seen struct{}
 
@@ -164,9 +192,12 @@ func TestBookPassesErrorsOn(t *testing.T) {
 		"Record":   func(b *planner.Book) error { _, err := b.DefaultMean(t.Context(), 1); return err },
 		"Entries":  func(b *planner.Book) error { _, err := b.Plan(t.Context(), quillmere(), 5, 5); return err },
 		"Ahead":    func(b *planner.Book) error { _, err := b.Plan(t.Context(), quillmere(), 5, 5); return err },
-		"Changes":  func(b *planner.Book) error { _, err := b.UndoEntry(t.Context(), ash, 1, 0, true); return err },
+		"Changes": func(b *planner.Book) error {
+			_, err := b.UndoEntry(t.Context(), ash, planner.Person{}, 1, 0, true)
+			return err
+		},
 		"Save entry": func(b *planner.Book) error {
-			_, err := b.UndoEntry(t.Context(), ash, 1, 0, true)
+			_, err := b.UndoEntry(t.Context(), ash, planner.Person{}, 1, 0, true)
 			return err
 		},
 		"Save station": func(b *planner.Book) error {
@@ -277,7 +308,7 @@ func TestUndoEntry(t *testing.T) {
 	} {
 		s := &shelf{entries: entries, changes: changes}
 		stamp := planner.Stamp{By: row.by, Command: "/log undo"}
-		entry, err := bookOf(s).UndoEntry(t.Context(), stamp, 1, row.id, row.anyone)
+		entry, err := bookOf(s).UndoEntry(t.Context(), stamp, planner.Person{Name: row.by}, 1, row.id, row.anyone)
 		if row.kind != "" {
 			wantKind(t, row.name, err, row.kind)
 			if s.saved != nil {

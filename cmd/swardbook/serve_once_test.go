@@ -1,6 +1,7 @@
 package main
 
 import (
+	"path/filepath"
 	"strings"
 	"testing"
 
@@ -238,4 +239,32 @@ func TestPostChangedAfterDaysAway(t *testing.T) {
 	m.type_("/setup post change number:1 at:06:00")
 	m.says("Tue 4 Jun: none, not sent before the post was changed on Thu 6 Jun", "Wed 5 Jun: none")
 	m.expect(m.tickAt("2024-06-06 06:00"), 2, "No post went out on 2 days, Tue 4 Jun to Wed 5 Jun.")
+}
+
+// An entry is its logger's own by the account, not by the name it bears: a
+// namesake does not undo it, and who has another name by now does.
+func TestOwnEntriesGoByAccount(t *testing.T) {
+	s := serveFake(t, filepath.Join(t.TempDir(), "course.db"), fixed(tuesday), nil)
+	s.setUpSite(server, channel, "Quillmere")
+	sasha := fakechat.User{ID: "300000000000000021", Name: "Sasha"}
+	namesake := fakechat.User{ID: "300000000000000022", Name: "Sasha"}
+	asked := s.wait(s.fake.Command(server, channel, sasha, "done", textOptions([]string{"surfaces:greens", "works:regulator", "when:2024-06-02"})...))
+	logged := s.fake.Click(server, channel, sasha, asked, asked.Button("Yes"))
+	if got := s.wait(logged).Say(); !strings.Contains(got, "Done.") {
+		t.Fatalf("logging: %s", got)
+	}
+	number := fakechat.Option{Name: "entry", Type: 4, Value: 1}
+	if got := s.wait(s.fake.Command(server, channel, namesake, "log undo", number)).Say(); !strings.Contains(got, "was logged by another Sasha") {
+		t.Errorf("a namesake, by number: %s", got)
+	}
+	if got := s.wait(s.fake.Command(server, channel, namesake, "log undo")).Say(); !strings.Contains(got, "no such entry of yours") {
+		t.Errorf("a namesake: %s", got)
+	}
+	if got := s.wait(s.fake.Command(server, channel, namesake, "log amend", number, fakechat.Option{Name: "note", Type: 3, Value: "hm"})).Say(); !strings.Contains(got, "was logged by another Sasha") {
+		t.Errorf("a namesake amends: %s", got)
+	}
+	sasha.Name = "Sasha the Second"
+	if got := s.wait(s.fake.Command(server, channel, sasha, "log undo")).Say(); !strings.Contains(got, "Taken back") {
+		t.Errorf("under another name: %s", got)
+	}
 }

@@ -71,7 +71,7 @@ func testSetup(t *testing.T, newTeam func(string) Store) {
 	second.closed.Works = []planner.WorkID{mow.ID, second.work.ID}
 	want(t, "the saved closed days", save(t, store, second.closed), second.closed)
 	entry := newEntry(second.site.ID, lateJune, mow.ID, second.work.ID)
-	entry.Result, entry.Clock, entry.Watered, entry.RainCounts = planner.Doubtful, "06:10", lateJune+1, true
+	entry.Result, entry.Clock, entry.Watered, entry.RainCounts, entry.ByID = planner.Doubtful, "06:10", lateJune+1, true, "300000000000000002"
 	entry.Passes[1] = planner.Pass{Work: second.work.ID, NitrogenGM2: 2.94, Part: 1, SlowShare: 0.4, SlowWeeks: 8.5,
 		Rate: planner.Rate{Kind: planner.MassRate, Value: 14, NPercent: 21}}
 	entry = save(t, store, entry)
