@@ -247,8 +247,26 @@ func TestEraseSite(t *testing.T) {
 	if _, err := other.Export(ctx, site.ID+5); planner.KindOf(err) != planner.NotFound {
 		t.Errorf("no such site: %v", err)
 	}
+	const secret = "/done greens note:\"the secret of Secretvale\""
+	line, err := home.KeepLine(ctx, secret, morningStamp.At)
+	if err != nil {
+		t.Fatal(err)
+	}
+	theirLine, err := other.KeepLine(ctx, secret, morningStamp.At)
+	if err != nil {
+		t.Fatal(err)
+	}
 	if err := home.EraseSite(ctx, site.ID); err != nil {
 		t.Fatal(err)
+	}
+	if text, err := home.Line(ctx, line); planner.KindOf(err) != planner.NotFound {
+		t.Errorf("a kept line is read after the erasing: %q, %v", text, err)
+	}
+	if text, err := other.Line(ctx, theirLine); text != secret {
+		t.Errorf("another team's line: %q, %v", text, err)
+	}
+	if again, err := home.KeepLine(ctx, secret, morningStamp.At); err != nil || again == line {
+		t.Errorf("a line's number %d is given twice, %v", again, err)
 	}
 	if err := home.EraseSite(ctx, site.ID); planner.KindOf(err) != planner.NotFound {
 		t.Errorf("twice: %v", err)
