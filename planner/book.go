@@ -2,7 +2,6 @@ package planner
 
 import (
 	"context"
-	"errors"
 	"fmt"
 	"slices"
 	"sync"
@@ -198,45 +197,41 @@ type Imported struct {
 
 // Import reads a station file into the record of the site's station with the
 // name; its only one when the name is empty. A site without any gets one,
-// named after the file when no name is given. A file that is refused leaves
-// nothing behind. Works that had no mean of their own get one now that it is
+// named after the file when no name is given. A file that is refused, or not
+// read to its end, leaves nothing behind: no station either. Works that had no mean of their own get one now that it is
 // known whether the site has hourly readings.
 func (b *Book) Import(ctx context.Context, site Site, name string, request ImportRequest) (Imported, error) {
-	station, added, err := b.stationFor(ctx, site, name, request)
+	station, err := b.stationFor(ctx, site, name, request.FileName)
 	if err != nil {
 		return Imported{}, err
 	}
-	request.Station = station.ID
+	if request.Station = station.ID; station.ID == 0 {
+		request.New = station
+	}
 	report, err := b.importer.Import(ctx, request)
 	if err != nil {
-		if added {
-			station.Archived = true
-			_, undo := b.keeper.Save(ctx, request.Stamp, station)
-			err = errors.Join(err, undo)
-		}
 		return Imported{}, err
 	}
+	station.ID = report.Station
 	settled, err := b.settleMeans(ctx, request.Stamp, site)
 	return Imported{station, report, settled}, err
 }
 
-func (b *Book) stationFor(ctx context.Context, site Site, name string, request ImportRequest) (station Station, added bool, err error) {
+// stationFor is the site's station with the name, or, of a site without any, one
+// to be added, without an id.
+func (b *Book) stationFor(ctx context.Context, site Site, name, fileName string) (Station, error) {
 	setup, err := b.keeper.Setup(ctx)
 	if err != nil {
-		return Station{}, false, fmt.Errorf("load the set-up: %w", err)
+		return Station{}, fmt.Errorf("load the set-up: %w", err)
 	}
 	if len(setup.StationsOf(site.ID)) > 0 {
-		station, err = setup.Station(site, name)
-		return station, false, err
+		return setup.Station(site, name)
 	}
 	if name == "" {
-		name = stationName(request.FileName)
+		name = stationName(fileName)
 	}
-	kept, err := b.keeper.Save(ctx, request.Stamp, Station{Site: site.ID, Name: name, Rank: 1})
-	if err != nil {
-		return Station{}, false, fmt.Errorf("add station %s: %w", name, err)
-	}
-	return kept.(Station), true, nil
+	fresh := Station{Site: site.ID, Name: name, Rank: 1}
+	return fresh, fresh.Check()
 }
 
 func (b *Book) settleMeans(ctx context.Context, stamp Stamp, site Site) ([]Work, error) {
