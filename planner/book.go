@@ -28,6 +28,10 @@ func NewBook(keeper Keeper, recorder Recorder, importer Importer, ahead Ahead) *
 // Setup returns everything the team has set up.
 func (b *Book) Setup(ctx context.Context) (Setup, error) { return b.keeper.Setup(ctx) }
 
+// Dropped returns the sites, surfaces and works that were dropped and could be
+// taken up again.
+func (b *Book) Dropped(ctx context.Context) (Setup, error) { return b.keeper.Dropped(ctx) }
+
 // Save keeps a noun and returns it with its id.
 func (b *Book) Save(ctx context.Context, stamp Stamp, noun Noun) (Noun, error) {
 	return b.keeper.Save(ctx, stamp, noun)

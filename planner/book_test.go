@@ -39,6 +39,8 @@ type shelf struct {
 
 func (s *shelf) Setup(context.Context) (planner.Setup, error) { return s.setup, s.fails["Setup"] }
 
+func (s *shelf) Dropped(context.Context) (planner.Setup, error) { return planner.Setup{}, nil }
+
 func (s *shelf) Entries(context.Context, planner.SiteID) ([]planner.Entry, error) {
 	return s.entries, s.fails["Entries"]
 }

@@ -42,6 +42,9 @@ type Change struct {
 type Keeper interface {
 	// Setup returns all that is set up and not archived.
 	Setup(ctx context.Context) (Setup, error)
+	// Dropped returns the sites, surfaces and works that are archived; surfaces
+	// and works only of what is not archived itself. The other lists are empty.
+	Dropped(ctx context.Context) (Setup, error)
 	// Entries returns the site's log, undone entries left out, by day and then
 	// in the order logged.
 	Entries(ctx context.Context, site SiteID) ([]Entry, error)

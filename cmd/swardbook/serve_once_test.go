@@ -268,3 +268,22 @@ func TestOwnEntriesGoByAccount(t *testing.T) {
 		t.Errorf("under another name: %s", got)
 	}
 }
+
+// A site's posts rest while it is dropped; once it is taken up again they go on
+// from their next time and do not call the days in between missed.
+func TestPostsOfARestoredSite(t *testing.T) {
+	m := newMorning(t)
+	m.weather("2024-06-02")
+	m.expect(m.tickAt("2024-06-03 05:30"), 1)
+	m.type_("/setup site drop name:Quillmere")
+	m.expect(m.tickAt("2024-06-04 05:30"), 1)
+	m.tickAt("2024-06-06 12:00")
+	m.type_("/setup site restore name:Quillmere")
+	m.expect(m.tickAt("2024-06-06 12:01"), 1)
+	m.weather("2024-06-06")
+	posts := m.tickAt("2024-06-07 05:30")
+	m.expect(posts, 2)
+	if strings.Contains(posts[1], "No post") || strings.Contains(m.type_("/setup post list"), "none") {
+		t.Errorf("days of a dropped site are called missed:\n%s", posts[1])
+	}
+}
