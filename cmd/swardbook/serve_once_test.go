@@ -287,3 +287,17 @@ func TestPostsOfARestoredSite(t *testing.T) {
 		t.Errorf("days of a dropped site are called missed:\n%s", posts[1])
 	}
 }
+
+// A claimed post that comes later from now on is looked for back to when it may
+// have gone out, not only to its new time.
+func TestPostMovedLaterWhileClaimed(t *testing.T) {
+	m := newMorning(t)
+	m.weather("2024-06-02")
+	m.failing("POST", 1, fakechat.Fault{CutAfter: true})
+	m.tickAt("2024-06-03 05:30")
+	m.fake.Talk(channel, 150)
+	m.type_("/setup post change number:1 at:09:00")
+	m.tickAt("2024-06-03 09:05")
+	m.expectIn(1, 0)
+	m.says("Last sent Mon 3 Jun")
+}
