@@ -2,7 +2,6 @@ package planner
 
 import (
 	"context"
-	"errors"
 	"fmt"
 	"slices"
 	"sync"
@@ -28,6 +27,10 @@ func NewBook(keeper Keeper, recorder Recorder, importer Importer, ahead Ahead) *
 
 // Setup returns everything the team has set up.
 func (b *Book) Setup(ctx context.Context) (Setup, error) { return b.keeper.Setup(ctx) }
+
+// Dropped returns the sites, surfaces and works that were dropped and could be
+// taken up again.
+func (b *Book) Dropped(ctx context.Context) (Setup, error) { return b.keeper.Dropped(ctx) }
 
 // Save keeps a noun and returns it with its id.
 func (b *Book) Save(ctx context.Context, stamp Stamp, noun Noun) (Noun, error) {
@@ -124,16 +127,20 @@ func (b *Book) Log(ctx context.Context, site SiteID) ([]Entry, error) {
 // Entry returns an entry of the site's log: the one with the id, or the newest
 // logged when the id is 0. Only the person's own, unless anyone is set.
 // Nothing found is a NotFound problem, somebody else's entry a Forbidden one.
-func (b *Book) Entry(ctx context.Context, site SiteID, id EntryID, person string, anyone bool) (Entry, error) {
+func (b *Book) Entry(ctx context.Context, site SiteID, id EntryID, person Person, anyone bool) (Entry, error) {
 	log, err := b.Log(ctx, site)
 	if err != nil {
 		return Entry{}, err
 	}
 	var found Entry
 	for _, entry := range log {
-		mine := anyone || entry.By == person
+		mine := anyone || entry.LoggedBy(person)
 		if entry.ID == id && !mine {
-			return Entry{}, Problemf(Forbidden, "Entry %d was logged by %s.", id, entry.By).
+			who := entry.By
+			if who == person.Name {
+				who = "another " + who
+			}
+			return Entry{}, Problemf(Forbidden, "Entry %d was logged by %s.", id, who).
 				WithHint("Crew undo and amend their own entries; a lead anyone's.")
 		}
 		if mine && (entry.ID == id || id == 0 && entry.ID > found.ID) {
@@ -153,8 +160,8 @@ const mostChanges = 1000
 // newest when the id is 0. Only entries of the person by count, unless anyone
 // is set. Nothing to undo is a NotFound problem, somebody else's entry a
 // Forbidden one.
-func (b *Book) UndoEntry(ctx context.Context, stamp Stamp, site SiteID, id EntryID, anyone bool) (Entry, error) {
-	found, err := b.Entry(ctx, site, id, stamp.By, anyone)
+func (b *Book) UndoEntry(ctx context.Context, stamp Stamp, person Person, site SiteID, id EntryID, anyone bool) (Entry, error) {
+	found, err := b.Entry(ctx, site, id, person, anyone)
 	if err != nil {
 		return Entry{}, err
 	}
@@ -194,45 +201,41 @@ type Imported struct {
 
 // Import reads a station file into the record of the site's station with the
 // name; its only one when the name is empty. A site without any gets one,
-// named after the file when no name is given. A file that is refused leaves
-// nothing behind. Works that had no mean of their own get one now that it is
+// named after the file when no name is given. A file that is refused, or not
+// read to its end, leaves nothing behind: no station either. Works that had no mean of their own get one now that it is
 // known whether the site has hourly readings.
 func (b *Book) Import(ctx context.Context, site Site, name string, request ImportRequest) (Imported, error) {
-	station, added, err := b.stationFor(ctx, site, name, request)
+	station, err := b.stationFor(ctx, site, name, request.FileName)
 	if err != nil {
 		return Imported{}, err
 	}
-	request.Station = station.ID
+	if request.Station = station.ID; station.ID == 0 {
+		request.New = station
+	}
 	report, err := b.importer.Import(ctx, request)
 	if err != nil {
-		if added {
-			station.Archived = true
-			_, undo := b.keeper.Save(ctx, request.Stamp, station)
-			err = errors.Join(err, undo)
-		}
 		return Imported{}, err
 	}
+	station.ID = report.Station
 	settled, err := b.settleMeans(ctx, request.Stamp, site)
 	return Imported{station, report, settled}, err
 }
 
-func (b *Book) stationFor(ctx context.Context, site Site, name string, request ImportRequest) (station Station, added bool, err error) {
+// stationFor is the site's station with the name, or, of a site without any, one
+// to be added, without an id.
+func (b *Book) stationFor(ctx context.Context, site Site, name, fileName string) (Station, error) {
 	setup, err := b.keeper.Setup(ctx)
 	if err != nil {
-		return Station{}, false, fmt.Errorf("load the set-up: %w", err)
+		return Station{}, fmt.Errorf("load the set-up: %w", err)
 	}
 	if len(setup.StationsOf(site.ID)) > 0 {
-		station, err = setup.Station(site, name)
-		return station, false, err
+		return setup.Station(site, name)
 	}
 	if name == "" {
-		name = stationName(request.FileName)
+		name = stationName(fileName)
 	}
-	kept, err := b.keeper.Save(ctx, request.Stamp, Station{Site: site.ID, Name: name, Rank: 1})
-	if err != nil {
-		return Station{}, false, fmt.Errorf("add station %s: %w", name, err)
-	}
-	return kept.(Station), true, nil
+	fresh := Station{Site: site.ID, Name: name, Rank: 1}
+	return fresh, fresh.Check()
 }
 
 func (b *Book) settleMeans(ctx context.Context, stamp Stamp, site Site) ([]Work, error) {

@@ -39,6 +39,8 @@ type shelf struct {
 
 func (s *shelf) Setup(context.Context) (planner.Setup, error) { return s.setup, s.fails["Setup"] }
 
+func (s *shelf) Dropped(context.Context) (planner.Setup, error) { return planner.Setup{}, nil }
+
 func (s *shelf) Entries(context.Context, planner.SiteID) ([]planner.Entry, error) {
 	return s.entries, s.fails["Entries"]
 }
@@ -62,14 +64,8 @@ func (s *shelf) Save(_ context.Context, stamp planner.Stamp, noun planner.Noun) 
 	}
 	switch n := noun.(type) {
 	case planner.Station:
-		if n.ID == 0 {
-			s.nextID++
-			n.ID = planner.StationID(s.nextID)
-		}
-		s.setup.Stations = nil
-		if !n.Archived {
-			s.setup.Stations = []planner.Station{n}
-		}
+		s.nextID++
+		n.ID = planner.StationID(s.nextID)
 		noun = n
 	case planner.Work:
 		for i := range s.setup.Works {
@@ -116,7 +112,40 @@ func (s *shelf) Import(_ context.Context, request planner.ImportRequest) (planne
 		return planner.ImportReport{}, err
 	}
 	s.record = planner.Record{Facts: s.facts, Revision: s.record.Revision + 1}
-	return planner.ImportReport{Rows: 48, New: 40, Changed: 3, Same: 2, Refused: 3}, nil
+	station := request.Station
+	if station == 0 {
+		s.nextID++
+		station = planner.StationID(s.nextID)
+	}
+	return planner.ImportReport{Rows: 48, New: 40, Changed: 3, Same: 2, Refused: 3, Station: station}, nil
+}
+
+// The rows say whether an entry is the person's own: by the id, whatever the
+// names; by the name where the entry is too old to have an id.
+func TestOwnEntry(t *testing.T) {
+	sasha := planner.Person{ID: "7", Name: "Sasha"}
+	for _, row := range []struct {
+		name  string
+		entry planner.Entry
+		own   bool
+	}{
+		{"their own", planner.Entry{By: "Sasha", ByID: "7"}, true},
+		{"under an earlier name", planner.Entry{By: "Sash", ByID: "7"}, true},
+		{"another one of that name", planner.Entry{By: "Sasha", ByID: "8"}, false},
+		{"an old entry", planner.Entry{By: "Sasha"}, true},
+		{"an old entry of another one", planner.Entry{By: "Kim"}, false},
+		{"nobody's", planner.Entry{}, false},
+	} {
+		entry := done(1, 1, 0)
+		entry.ID, entry.By, entry.ByID = 4, row.entry.By, row.entry.ByID
+		_, err := bookOf(&shelf{entries: []planner.Entry{entry}}).Entry(t.Context(), 1, 4, sasha, false)
+		if got := err == nil; got != row.own || entry.LoggedBy(sasha) != row.own {
+			t.Errorf("%s: %v", row.name, err)
+		}
+	}
+	if (planner.Entry{By: ""}).LoggedBy(planner.Person{}) {
+		t.Error("an entry of nobody is somebody's")
+	}
 }
 
 // seen is an Ahead that shows what it was given.
@@ -164,13 +193,12 @@ func TestBookPassesErrorsOn(t *testing.T) {
 		"Record":   func(b *planner.Book) error { _, err := b.DefaultMean(t.Context(), 1); return err },
 		"Entries":  func(b *planner.Book) error { _, err := b.Plan(t.Context(), quillmere(), 5, 5); return err },
 		"Ahead":    func(b *planner.Book) error { _, err := b.Plan(t.Context(), quillmere(), 5, 5); return err },
-		"Changes":  func(b *planner.Book) error { _, err := b.UndoEntry(t.Context(), ash, 1, 0, true); return err },
-		"Save entry": func(b *planner.Book) error {
-			_, err := b.UndoEntry(t.Context(), ash, 1, 0, true)
+		"Changes": func(b *planner.Book) error {
+			_, err := b.UndoEntry(t.Context(), ash, planner.Person{}, 1, 0, true)
 			return err
 		},
-		"Save station": func(b *planner.Book) error {
-			_, err := b.Import(t.Context(), quillmere(), "", planner.ImportRequest{FileName: "a.csv"})
+		"Save entry": func(b *planner.Book) error {
+			_, err := b.UndoEntry(t.Context(), ash, planner.Person{}, 1, 0, true)
 			return err
 		},
 		"Import": func(b *planner.Book) error {
@@ -277,7 +305,7 @@ func TestUndoEntry(t *testing.T) {
 	} {
 		s := &shelf{entries: entries, changes: changes}
 		stamp := planner.Stamp{By: row.by, Command: "/log undo"}
-		entry, err := bookOf(s).UndoEntry(t.Context(), stamp, 1, row.id, row.anyone)
+		entry, err := bookOf(s).UndoEntry(t.Context(), stamp, planner.Person{Name: row.by}, 1, row.id, row.anyone)
 		if row.kind != "" {
 			wantKind(t, row.name, err, row.kind)
 			if s.saved != nil {
@@ -348,7 +376,8 @@ func TestImportNamesTheStation(t *testing.T) {
 	} {
 		s := &shelf{}
 		got, err := bookOf(s).Import(t.Context(), quillmere(), row.name, planner.ImportRequest{Stamp: ash, FileName: row.file})
-		if err != nil || got.Station.Name != row.want || got.Station.Rank != 1 || got.Station.Site != 1 || s.imported.Station != got.Station.ID {
+		if err != nil || got.Station.Name != row.want || got.Station.Rank != 1 || got.Station.Site != 1 || got.Station.ID == 0 ||
+			s.imported.Station != 0 || s.imported.New.Name != row.want || s.saved != nil {
 			t.Errorf("%q named %q: station %+v, %v; want %q", row.file, row.name, got.Station, err, row.want)
 		}
 	}
@@ -384,8 +413,8 @@ func TestImportIntoAStation(t *testing.T) {
 	}
 }
 
-// A file that is refused leaves nothing behind: a station added for it goes, one
-// that was there stays.
+// A file that is refused leaves nothing behind: nothing was added for it, and a
+// station that was there stays.
 func TestRefusedImportLeavesNothing(t *testing.T) {
 	refused := planner.Problemf(planner.Refused, "the header was not understood")
 	s := &shelf{fails: map[string]error{"Import": refused}}
@@ -393,8 +422,8 @@ func TestRefusedImportLeavesNothing(t *testing.T) {
 	if planner.KindOf(err) != planner.Refused || len(s.setup.Stations) != 0 || !reflect.DeepEqual(got, planner.Imported{}) {
 		t.Errorf("%+v, %v; stations %+v", got, err, s.setup.Stations)
 	}
-	if last, ok := s.saved[len(s.saved)-1].(planner.Station); !ok || !last.Archived {
-		t.Errorf("kept %+v; want the added station archived", s.saved)
+	if s.saved != nil {
+		t.Errorf("kept %+v", s.saved)
 	}
 	s = &shelf{fails: map[string]error{"Import": refused}, setup: planner.Setup{Stations: []planner.Station{{ID: 5, Site: 1, Name: "roof", Rank: 1}}}}
 	if _, err := bookOf(s).Import(t.Context(), quillmere(), "", planner.ImportRequest{FileName: "roof.csv"}); planner.KindOf(err) != planner.Refused || s.saved != nil || len(s.setup.Stations) != 1 {

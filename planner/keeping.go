@@ -43,6 +43,9 @@ type Change struct {
 type Keeper interface {
 	// Setup returns all that is set up and not archived.
 	Setup(ctx context.Context) (Setup, error)
+	// Dropped returns the sites, surfaces and works that are archived; surfaces
+	// and works only of what is not archived itself. The other lists are empty.
+	Dropped(ctx context.Context) (Setup, error)
 	// Entries returns the site's log, undone entries left out, by day and then
 	// in the order logged.
 	Entries(ctx context.Context, site SiteID) ([]Entry, error)
@@ -82,7 +85,9 @@ type Recorder interface {
 type Importer interface {
 	// Import reads one file: into the record, or not at all. A file that cannot
 	// be used (header not understood, nothing in it, more than 5 % of its rows
-	// refused) is a Refused problem and leaves the record as it was.
+	// refused) is a Refused problem and leaves the record as it was. A station
+	// that is to be added comes with the file, in the same step: its name in use
+	// is a Taken problem.
 	Import(ctx context.Context, request ImportRequest) (ImportReport, error)
 	// Imports returns the newest imports into the site's stations, newest first,
 	// at most limit, withdrawn ones too.
@@ -146,7 +151,9 @@ func CheckHandDay(issued Day, day HandDay) error {
 // ImportRequest asks to read one station file.
 type ImportRequest struct {
 	Stamp
-	Station  StationID
+	Station StationID
+	// New is added with the file when Station is 0: both are kept, or neither.
+	New      Station
 	FileName string    // as the user named it; kept, never used as a path
 	Content  io.Reader // read once, to its end
 	Units    Units     // "" lets the header and the values say
@@ -174,6 +181,7 @@ type ImportReport struct {
 	Refusals []Refusal
 	From, To Day // first and last day of the readings taken; meaningless when none was
 	Import   ImportID
+	Station  StationID // that it was read into
 	// Rain counts the gauge readings that came with the rows; all are 0 when the
 	// file has none.
 	Rain  RowCounts

@@ -219,10 +219,13 @@ type Entry struct {
 	Site   SiteID    `json:"site"`
 	Day    Day       `json:"day"`
 	Passes []Pass    `json:"passes"`
-	By     string    `json:"by"`
+	By     string    `json:"by"` // who logged it, for people
 	At     time.Time `json:"at"` // when it was logged
-	Note   string    `json:"note,omitempty"`
-	Result Result    `json:"result,omitempty"`
+	// ByID is the same by the id that never changes; empty in entries from before
+	// it was kept.
+	ByID   string `json:"by_id,omitempty"`
+	Note   string `json:"note,omitempty"`
+	Result Result `json:"result,omitempty"`
 	// Clock is when on the day it was done, in words like "06:10"; empty when
 	// not said.
 	Clock   string `json:"clock,omitempty"`
@@ -243,6 +246,15 @@ type Pass struct {
 	Share       float64 `json:"share,omitempty"`      // of the part in the area when it was logged; 0 when not said
 	SlowShare   float64 `json:"slow_share,omitempty"` // of the nitrogen, 0 to 1
 	SlowWeeks   float64 `json:"slow_weeks,omitempty"` // over which the slow share comes
+}
+
+// LoggedBy reports whether it is the person's own entry: by the id; by the name
+// where the entry has no id.
+func (e Entry) LoggedBy(person Person) bool {
+	if e.ByID != "" {
+		return e.ByID == person.ID
+	}
+	return e.By != "" && e.By == person.Name
 }
 
 // Of returns the entry's pass of the work.

@@ -19,6 +19,12 @@ type People struct {
 	Archived bool     `json:"archived,omitempty"`
 }
 
+// Person is somebody who logs and undoes.
+type Person struct {
+	ID   string // never changes, and no two people share one
+	Name string // for people; may change, and two may share one
+}
+
 // The words of the two roles.
 const (
 	CrewRole = "crew"

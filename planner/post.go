@@ -136,11 +136,14 @@ type Posting struct {
 	// weather that the post lacked is there.
 	Part    int
 	State   PostingState
+	Channel string    // that it was claimed for; empty in old rows: the post's
 	At      time.Time // when it came to this state
 	Message string    // once sent: the message, as the chat server names it
 	Reason  string    // why it was given up, or what went wrong last
 	Partial bool      // sent while yesterday's weather was not whole
 	Figures Figures   // once sent: what it said, to tell later what was corrected
+	// Unsure says of a row given up that it may have been sent all the same.
+	Unsure bool
 }
 
 // PostLedger keeps what became of each post on each day, for one team.

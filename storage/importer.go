@@ -46,7 +46,8 @@ func NewImporter(team *sqlite.Team) *Importer { return &Importer{team: team} }
 //
 // Times without an offset are read as the file itself shows, as the request
 // says, or in the standard time that the site's day rule has on the day of the
-// request. A sensor and an order of dates that were said of a file are
+// request. A station that is to be added is added in the step that merges the
+// file, or not at all. A sensor and an order of dates that were said of a file are
 // remembered for the station's next. A station that is not there is a NotFound
 // problem. Progress is called every 10,000 rows. The context stops the reading
 // between two reads of the content and every 1,000 rows, with nothing kept. The
@@ -70,7 +71,7 @@ func (i *Importer) Import(ctx context.Context, request planner.ImportRequest) (p
 	}
 	// A temporary file that cannot be given back is no reason to refuse.
 	defer func() { _ = file.Close() }()
-	stage, err := i.team.Stage(ctx, request.Station)
+	stage, err := i.stage(ctx, request)
 	if err != nil {
 		return planner.ImportReport{}, fmt.Errorf("open the stage: %w", err)
 	}
@@ -103,22 +104,31 @@ func (i *Importer) Import(ctx context.Context, request planner.ImportRequest) (p
 	return run.report(merged), nil
 }
 
+// stage opens a stage for the station, or for one that comes with the file.
+func (i *Importer) stage(ctx context.Context, request planner.ImportRequest) (*sqlite.Stage, error) {
+	if request.Station == 0 {
+		return i.team.StageNew(ctx, request.New)
+	}
+	return i.team.Stage(ctx, request.Station)
+}
+
 // site finds the station's site and its standard time.
 func (i *Importer) site(ctx context.Context, request planner.ImportRequest) (intake.Site, error) {
 	setup, err := i.team.Setup(ctx)
 	if err != nil {
 		return intake.Site{}, fmt.Errorf("find the station: %w", err)
 	}
+	id := request.New.Site
 	for _, station := range setup.Stations {
-		if station.ID != request.Station {
-			continue
+		if station.ID == request.Station {
+			id = station.Site
 		}
-		for _, site := range setup.Sites {
-			if site.ID == station.Site {
-				rule := site.Rules.On(planner.DayIn(request.At, time.UTC))
-				zone, err := site.Location()
-				return intake.Site{OffsetSeconds: rule.OffsetSeconds, Zone: zone}, err
-			}
+	}
+	for _, site := range setup.Sites {
+		if site.ID == id {
+			rule := site.Rules.On(planner.DayIn(request.At, time.UTC))
+			zone, err := site.Location()
+			return intake.Site{OffsetSeconds: rule.OffsetSeconds, Zone: zone}, err
 		}
 	}
 	return intake.Site{}, planner.Problemf(planner.NotFound, "there is no station number %d", request.Station).
@@ -261,6 +271,7 @@ func (r *run) report(merged sqlite.MergeReport) planner.ImportReport {
 		From:     merged.From,
 		To:       merged.To,
 		Import:   planner.ImportID(merged.ImportID),
+		Station:  merged.Station,
 		Rain:     merged.Rain,
 		Notes:    r.file.Notes,
 

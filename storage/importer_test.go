@@ -139,8 +139,8 @@ func TestImportThenAgainThenCorrected(t *testing.T) {
 	g := newGround(t, "UTC", 0)
 	report := g.take(t, "july.csv", hours(48, nil))
 	want := planner.ImportReport{Format: "readings", Units: "c", Clock: "offset in the file", Rows: 48, New: 48,
-		Import: 1,
-		From:   planner.DayOf(2013, 7, 1), To: planner.DayOf(2013, 7, 2)}
+		Import: 1, Station: g.station,
+		From: planner.DayOf(2013, 7, 1), To: planner.DayOf(2013, 7, 2)}
 	if diff := cmp.Diff(want, report); diff != "" {
 		t.Error(diff)
 	}

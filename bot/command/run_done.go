@@ -82,7 +82,7 @@ func (d Desk) runDone(ctx context.Context, req Request) (reply.Reply, error) {
 
 // entry builds the entry that the request describes.
 func (v visit) entry() (planner.Entry, error) {
-	entry := planner.Entry{Site: v.site.ID, Day: v.today, By: v.Caller.Name, At: v.stamp().At}
+	entry := planner.Entry{Site: v.site.ID, Day: v.today, By: v.Caller.Name, ByID: v.Caller.ID, At: v.stamp().At}
 	surfaces, _ := v.Values.Names("surfaces")
 	works, _ := v.Values.Names("works")
 	for _, surfaceName := range surfaces {

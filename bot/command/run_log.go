@@ -149,7 +149,7 @@ func (d Desk) runLogUndo(ctx context.Context, req Request) (reply.Reply, error) 
 		return reply.Reply{}, err
 	}
 	id, _ := v.Values.Whole("entry")
-	entry, err := v.book.UndoEntry(ctx, v.stamp(), v.site.ID, planner.EntryID(id), v.Caller.Role >= Lead && id > 0)
+	entry, err := v.book.UndoEntry(ctx, v.stamp(), v.Caller.person(), v.site.ID, planner.EntryID(id), v.Caller.Role >= Lead && id > 0)
 	if err != nil {
 		return reply.Reply{}, err
 	}
@@ -234,7 +234,7 @@ func (d Desk) runLogAmend(ctx context.Context, req Request) (reply.Reply, error)
 		return reply.Reply{}, err
 	}
 	id, _ := v.Values.Whole("entry")
-	entry, err := v.book.Entry(ctx, v.site.ID, planner.EntryID(id), v.Caller.Name, v.Caller.Role >= Lead)
+	entry, err := v.book.Entry(ctx, v.site.ID, planner.EntryID(id), v.Caller.person(), v.Caller.Role >= Lead)
 	if err != nil {
 		return reply.Reply{}, err
 	}

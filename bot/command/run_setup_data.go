@@ -15,7 +15,7 @@ import (
 func (d Desk) setupData() []Command {
 	return []Command{
 		{Path: "setup data export", Short: "all that is kept of a site, as open files", Who: Lead, Options: []Option{d.siteOption()},
-			Long:     "A zip of comma-separated files: readings, days, log, set-up, changes. Days are dates, times are UTC, temperatures °C.",
+			Long:     "A zip of comma-separated files: readings, days, log, set-up, changes. Days are dates, times are UTC, temperatures °C. A site that was dropped is named with site:.",
 			Examples: []string{"/setup data export"}, Run: d.runDataExport},
 		{Path: "setup data erase", Short: "erase a site, or all that is kept, for good; asks twice", Who: Lead,
 			Options: []Option{
@@ -28,7 +28,7 @@ func (d Desk) setupData() []Command {
 }
 
 func (d Desk) runDataExport(ctx context.Context, req Request) (reply.Reply, error) {
-	v, err := d.visit(ctx, req)
+	v, err := d.siteOrDropped(ctx, req)
 	if err != nil {
 		return reply.Reply{}, err
 	}
@@ -87,22 +87,23 @@ func (d Desk) runDataErase(ctx context.Context, req Request) (reply.Reply, error
 		return reply.Reply{}, planner.Problemf(planner.Refused, "data cannot be erased here")
 	}
 	what, erase := "everything that is kept of this server: all sites, the log, posts, people", d.Data.EraseTeam
-	line := "/setup data erase sure:yes everything:yes"
+	line, export := "/setup data erase sure:yes everything:yes", "/setup data export"
 	if all, _ := req.Values.Yes("everything"); !all {
-		v, err := d.visit(ctx, req)
+		v, err := d.siteOrDropped(ctx, req)
 		if err != nil {
 			return reply.Reply{}, err
 		}
 		what = "all that is kept of " + v.site.Name + ": weather, log, set-up, posts, the change log"
 		erase = func(ctx context.Context) error { return d.Data.EraseSite(ctx, v.site.ID) }
 		line = Line("setup data erase", Pair{"sure", "yes"}, Pair{"site", v.site.Name})
+		export = Line("setup data export", Pair{"site", v.site.Name})
 	}
 	sure, _ := req.Values.Yes("sure")
 	switch {
 	case !sure:
 		return reply.Reply{Private: true, Blocks: []reply.Block{
 			reply.Textf("This erases %s. It cannot be undone; copies that you exported stay yours.", what),
-			reply.Actions{{Label: "Export first", Line: "/setup data export"}, {Label: "Erase…", Line: line}}}}, nil
+			reply.Actions{{Label: "Export first", Line: export}, {Label: "Erase…", Line: line}}}}, nil
 	case !req.Confirmed:
 		return reply.Reply{Private: true, Blocks: []reply.Block{reply.Textf("Erases %s.", what)},
 			Confirm: &reply.Confirm{Question: "Erase it for good?", Line: line}}, nil

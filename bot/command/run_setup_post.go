@@ -103,10 +103,8 @@ func (v visit) weekdays(fallback planner.Weekdays) (planner.Weekdays, error) {
 
 var everyWeekday = []time.Weekday{time.Sunday, time.Monday, time.Tuesday, time.Wednesday, time.Thursday, time.Friday, time.Saturday}
 
-// postFrom reads the options of a post over what it was. A post that is new or
-// comes at another time is due from the next time on that its clock shows.
+// postFrom reads the options of a post over what it was.
 func (v visit) postFrom(post planner.Post) (planner.Post, error) {
-	was := post
 	var err error
 	if post.Minute, err = v.minute(post.Minute); err != nil {
 		return post, err
@@ -125,14 +123,88 @@ func (v visit) postFrom(post planner.Post) (planner.Post, error) {
 	if window, given := v.Values.Number("window"); given {
 		post.WindowMinutes = int(window * 60)
 	}
-	if was.ID == 0 || was.Minute != post.Minute || was.On != post.On || was.Trouble != "" {
-		post.From = v.today
-		if now := v.NowAt(v.zone); 60*now.Hour()+now.Minute() >= post.Minute {
-			post.From++
-		}
-	}
 	post.Trouble = ""
 	return post, nil
+}
+
+// minutesPast is how long the post's time of today is past on the site's
+// clock; less than 0 while it is still to come.
+func (v visit) minutesPast(post planner.Post) int {
+	now := v.NowAt(v.zone)
+	return 60*now.Hour() + now.Minute() - post.Minute
+}
+
+// nextTime is the day on which a clock shows the post's time next.
+func (v visit) nextTime(post planner.Post) planner.Day {
+	if v.minutesPast(post) >= 0 {
+		return v.today + 1
+	}
+	return v.today
+}
+
+// moved sets from which day on a post that comes at another time, on other
+// days or after a hold is due. No day that was owed is lost: those that are past
+// are recorded as missed, and today's goes out late or is recorded as missed
+// too; said tells which.
+func (d Desk) moved(ctx context.Context, v visit, was, post planner.Post) (moved planner.Post, said string, err error) {
+	if was.Minute == post.Minute && was.On == post.On && was.Trouble == "" {
+		return post, "", nil
+	}
+	post.From = v.nextTime(post)
+	if d.Posts == nil {
+		return post, "", nil
+	}
+	owed, err := d.firstOwed(ctx, v, was)
+	if err != nil {
+		return post, "", err
+	}
+	why := "not sent before the post was changed on " + v.today.Short()
+	if was.Trouble != "" {
+		why = was.Trouble
+	}
+	for ; owed < v.today; owed++ {
+		if err := d.missed(ctx, v, was, owed, why); err != nil {
+			return post, "", err
+		}
+	}
+	switch stays := post.On.Has(v.today.Weekday()); {
+	case owed > v.today || post.From == v.today && stays:
+		return post, "", nil
+	case !stays && v.minutesPast(was) < 0: // the lead takes the day out before its time
+		return post, "", nil
+	case !stays:
+		return post, "", d.missed(ctx, v, was, v.today, why)
+	case !was.On.Has(v.today.Weekday()): // it was none of its days
+		return post, "", nil
+	case v.minutesPast(post) <= post.WindowMinutes:
+		post.From = v.today
+		return post, "Today's goes out now.", nil
+	}
+	why = "moved from " + was.Clock() + " to " + post.Clock() + " at " + v.NowAt(v.zone).Format("15:04")
+	return post, fmt.Sprintf("Today's does not come any more, %s is more than %s h past. The next one comes %s.", post.Clock(),
+		plain(float64(post.WindowMinutes)/60), firstDay(post).Short()), d.missed(ctx, v, was, v.today, why)
+}
+
+// firstOwed is the first day of the post that has no row in the ledger.
+func (d Desk) firstOwed(ctx context.Context, v visit, post planner.Post) (planner.Day, error) {
+	rows, err := d.Posts.Postings(ctx, v.today)
+	first := post.From
+	for _, row := range rows {
+		if row.Post == post.ID {
+			first = max(first, row.Day+1)
+		}
+	}
+	return first, err
+}
+
+// missed records a day of the post as one without, unless it is none of its
+// days or has a row by now.
+func (d Desk) missed(ctx context.Context, v visit, post planner.Post, day planner.Day, why string) error {
+	if !post.On.Has(day.Weekday()) {
+		return nil
+	}
+	_, err := d.Posts.Claim(ctx, planner.Posting{Post: post.ID, Day: day, State: planner.GivenUp, Channel: post.Channel, At: v.stamp().At, Reason: why})
+	return err
 }
 
 func postText(post planner.Post) string {
@@ -157,6 +229,7 @@ func (d Desk) runPostAdd(ctx context.Context, req Request) (reply.Reply, error) 
 	if err != nil {
 		return reply.Reply{}, err
 	}
+	post.From = v.nextTime(post)
 	for _, other := range v.setup.Posts {
 		if other.Site == post.Site && other.What == post.What && other.Channel == post.Channel && other.Minute == post.Minute {
 			return reply.Reply{}, planner.Problemf(planner.Taken, "That is post %d already.", other.ID).
@@ -197,10 +270,22 @@ func (d Desk) runPostChange(ctx context.Context, req Request) (reply.Reply, erro
 	if err != nil {
 		return reply.Reply{}, err
 	}
-	if post, err = v.postFrom(post); err != nil {
+	changed, err := v.postFrom(post)
+	if err != nil {
 		return reply.Reply{}, err
 	}
-	return d.kept(ctx, v.stamp(), post, reply.Of(reply.Textf("Changed: %s.", postText(post))))
+	if err := changed.Check(); err != nil { // before anything is recorded
+		return reply.Reply{}, err
+	}
+	changed, today, err := d.moved(ctx, v, post, changed)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	said := reply.Of(reply.Textf("Changed: %s.", postText(changed)))
+	if today != "" {
+		said.Add(reply.Text(today))
+	}
+	return d.kept(ctx, v.stamp(), changed, said)
 }
 
 func (d Desk) runPostDrop(ctx context.Context, req Request) (reply.Reply, error) {
@@ -249,6 +334,8 @@ func lastDays(post planner.Post, rows []planner.Posting) string {
 		case row.Post != post.ID:
 		case row.State == planner.Sent:
 			last = "\nLast sent " + row.Day.Short() + "."
+		case row.State == planner.GivenUp && row.Unsure:
+			text += "\n" + row.Day.Short() + ": not known, " + shortenTo(row.Reason, 120) + "."
 		case row.State == planner.GivenUp:
 			text += "\n" + row.Day.Short() + ": none, " + shortenTo(row.Reason, 80) + "."
 		case row.State == planner.Claimed:

@@ -24,6 +24,7 @@ func (d Desk) setupSite() []Command {
 		{Name: "lon", Kind: Number, Required: true, Range: Between(-180, 180), Help: "longitude in degrees, west negative", Example: "-74.17"},
 		{Name: "zone", Kind: Text, Required: true, Help: "time zone of the site", Example: "America/New_York"},
 	}, place...)
+	add = append(add, freshOption())
 	change := append([]Option{
 		nameOption("which site", "Quillmere", d.siteOption().Complete), newNameOption(),
 		{Name: "lat", Kind: Number, Range: Between(-90, 90), Help: "latitude in degrees, south negative", Example: "40.69"},
@@ -40,6 +41,7 @@ func (d Desk) setupSite() []Command {
 		{Path: "setup site drop", Short: "drop a site; its record and log are kept", Who: Lead, Asks: true,
 			Options:  []Option{nameOption("which site", "Quillmere", d.siteOption().Complete)},
 			Examples: []string{"/setup site drop name:Quillmere"}, Run: d.runSiteDrop},
+		d.siteRestore(),
 		{Path: "setup site list", Short: "the sites and how their days run", Who: Lead, Examples: []string{"/setup site list"}, Run: d.runSiteList},
 	}
 }
@@ -47,6 +49,17 @@ func (d Desk) setupSite() []Command {
 func (d Desk) runSiteAdd(ctx context.Context, req Request) (reply.Reply, error) {
 	site := planner.Site{Units: planner.Celsius}
 	site.Name, _ = req.Values.Text("name")
+	setup, err := d.Book.Setup(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	dropped, err := d.Book.Dropped(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	if err := askFresh(req, setup.Sites, dropped.Sites, siteName, "site", restoreSite); err != nil {
+		return reply.Reply{}, err
+	}
 	rule, err := siteFrom(req, &site, planner.DayRule{Boundary: planner.StandardMidnight}, true)
 	if err != nil {
 		return reply.Reply{}, err
@@ -200,5 +213,10 @@ func (d Desk) runSiteList(ctx context.Context, req Request) (reply.Reply, error)
 		fields = append(fields, reply.Field{Name: site.Name,
 			Value: fmt.Sprintf("%g, %g; %s; %s. %s", site.Lat, site.Lon, site.Zone, site.Units.Degree(), dayRuns(site, zone, req.NowAt(zone).Year()))})
 	}
-	return listed(fields, "There is no site yet. Like: /setup site add name:Quillmere lat:40.69 lon:-74.17 zone:America/New_York"), nil
+	dropped, err := d.Book.Dropped(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	list := listed(fields, "There is no site yet. Like: /setup site add name:Quillmere lat:40.69 lon:-74.17 zone:America/New_York")
+	return withDropped(list, namesOf(dropped.Sites, restoreSite)), nil
 }

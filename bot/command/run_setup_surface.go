@@ -47,6 +47,7 @@ func (d Desk) setupSurface() []Command {
 	which := nameOption("which surface", "greens", d.surfaceOption().Complete)
 	add := append([]Option{nameOption("what the surface is called", "greens", nil)}, grassOptions()...)
 	add[1].Required = true
+	add = append(add, freshOption())
 	change := append([]Option{which, newNameOption()}, grassOptions()...)
 	change = append(change, Option{Name: "from", Kind: Day, Past: true, Help: "first day of another grass or ceiling; today when not given", Example: "2013-10-01"})
 	return []Command{
@@ -56,6 +57,7 @@ func (d Desk) setupSurface() []Command {
 			Examples: []string{"/setup surface change name:fairways grass:cool from:2013-10-01"}, Run: d.runSurfaceChange},
 		{Path: "setup surface drop", Short: "drop a surface and its works; the log is kept", Who: Lead, Asks: true,
 			Options: []Option{which, d.siteOption()}, Examples: []string{"/setup surface drop name:greens"}, Run: d.runSurfaceDrop},
+		d.surfaceRestore(),
 		{Path: "setup surface list", Short: "the surfaces and their grass", Who: Lead, Options: []Option{d.siteOption()},
 			Examples: []string{"/setup surface list"}, Run: d.runSurfaceList},
 	}
@@ -161,11 +163,18 @@ func (d Desk) runSurfaceAdd(ctx context.Context, req Request) (reply.Reply, erro
 	if err != nil {
 		return reply.Reply{}, err
 	}
+	name, _ := v.Values.Text("name")
+	dropped, err := d.Book.Dropped(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	if err := askFresh(req, v.setup.SurfacesOf(v.site.ID), dropped.SurfacesOf(v.site.ID), surfaceName, "surface", v.restoreSurface); err != nil {
+		return reply.Reply{}, err
+	}
 	turf, err := v.turf(planner.Turf{})
 	if err != nil {
 		return reply.Reply{}, err
 	}
-	name, _ := v.Values.Text("name")
 	surface := planner.Surface{Site: v.site.ID, Name: name, Turf: planner.Always(turf)}
 	if err := v.areaAndParts(&surface); err != nil {
 		return reply.Reply{}, err
@@ -234,5 +243,10 @@ func (d Desk) runSurfaceList(ctx context.Context, req Request) (reply.Reply, err
 	for _, surface := range v.setup.SurfacesOf(v.site.ID) {
 		fields = append(fields, reply.Field{Name: surface.Name, Value: turfText(surface.Turf.On(v.today), v.site.Units) + areaText(surface)})
 	}
-	return listed(fields, "There is no surface yet. Like: /setup surface add name:greens grass:cool"), nil
+	dropped, err := d.Book.Dropped(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	list := listed(fields, "There is no surface yet. Like: /setup surface add name:greens grass:cool")
+	return withDropped(list, namesOf(dropped.SurfacesOf(v.site.ID), v.restoreSurface)), nil
 }

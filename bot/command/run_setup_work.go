@@ -145,7 +145,7 @@ func (d Desk) setupWork() []Command {
 		{Name: "latest", Kind: Target, Range: Between(0, planner.MaxTarget), Help: "total past which it is overdue", Example: "230"},
 	}
 	add := []Option{required(d.surfaceOption()), nameOption("what the work is called", "regulator", nil), required(counting[0])}
-	add = append(append(add, settings...), counting[1:]...)
+	add = append(append(append(add, settings...), counting[1:]...), freshOption())
 	change := []Option{required(d.surfaceOption()), which, newNameOption()}
 	// What a work counts stays: another measure or method is another work.
 	change = append(append(append(change, settings...), counting[1:3]...), limitOptions()...)
@@ -159,6 +159,7 @@ func (d Desk) setupWork() []Command {
 			Examples: []string{"/setup work change surface:greens name:regulator target:220"}, Run: d.runWorkChange},
 		{Path: "setup work drop", Short: "drop a work; the log is kept", Who: Lead, Asks: true, Options: []Option{required(d.surfaceOption()), which, d.siteOption()},
 			Examples: []string{"/setup work drop surface:greens name:regulator"}, Run: d.runWorkDrop},
+		d.workRestore(),
 		{Path: "setup work list", Short: "the works, what they count and when they fall due", Who: Lead, Options: []Option{d.siteOption()},
 			Examples: []string{"/setup work list"}, Run: d.runWorkList},
 	}
@@ -223,6 +224,15 @@ func (d Desk) runWorkAdd(ctx context.Context, req Request) (reply.Reply, error) 
 	if err != nil {
 		return reply.Reply{}, err
 	}
+	name, _ := v.Values.Text("name")
+	dropped, err := d.Book.Dropped(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	if err := askFresh(req, v.setup.WorksOn(surface.ID), dropped.WorksOn(surface.ID), workName, "work",
+		func(w planner.Work) string { return v.restoreWork(surface, w) }); err != nil {
+		return reply.Reply{}, err
+	}
 	settings, err := v.workSettings(planner.WorkSettings{}, surface)
 	if err != nil {
 		return reply.Reply{}, err
@@ -232,7 +242,6 @@ func (d Desk) runWorkAdd(ctx context.Context, req Request) (reply.Reply, error) 
 			return reply.Reply{}, err
 		}
 	}
-	name, _ := v.Values.Text("name")
 	said := reply.Of(reply.Textf("Added %s %s: %s.", surface.Name, name, settingsText(settings, v.site.Units)))
 	if settings.Counts == planner.ByDegreeDays || settings.Counts == planner.ByGrowthDays {
 		said.Add(reply.Text(briefing.TargetCaution))
@@ -292,7 +301,18 @@ func (d Desk) runWorkList(ctx context.Context, req Request) (reply.Reply, error)
 			fields = append(fields, reply.Field{Name: surface.Name + " " + work.Name, Value: settingsText(work.Settings.On(v.today), v.site.Units)})
 		}
 	}
-	return listed(fields, "There is no work yet. Like: /setup work add surface:greens name:regulator counts:degree-days base:0 target:200"), nil
+	dropped, err := d.Book.Dropped(ctx)
+	if err != nil {
+		return reply.Reply{}, err
+	}
+	var gone []string
+	for _, surface := range v.setup.SurfacesOf(v.site.ID) {
+		for _, work := range dropped.WorksOn(surface.ID) {
+			gone = append(gone, v.restoreWork(surface, work))
+		}
+	}
+	list := listed(fields, "There is no work yet. Like: /setup work add surface:greens name:regulator counts:degree-days base:0 target:200")
+	return withDropped(list, gone), nil
 }
 
 // settingsText says what a work counts, its target and its mean.

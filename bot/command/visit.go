@@ -74,6 +74,9 @@ func (r Request) stamp(zone *time.Location) planner.Stamp {
 	return planner.Stamp{At: r.NowAt(zone), By: r.Caller.Name, Command: r.Line}
 }
 
+// person is who gave the command, as one who logs.
+func (c Caller) person() planner.Person { return planner.Person{ID: c.ID, Name: c.Name} }
+
 func (v visit) stamp() planner.Stamp { return v.Request.stamp(v.zone) }
 
 // day is the value of a Day option, or the fallback.

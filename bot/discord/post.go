@@ -4,6 +4,7 @@ import (
 	"context"
 	"encoding/json"
 	"net/http"
+	"net/url"
 	"strconv"
 	"strings"
 	"time"
@@ -75,25 +76,30 @@ func (c Channels) Send(ctx context.Context, channel string, marker schedule.Mark
 	return sent.ID, nil
 }
 
-// mostPages bounds how far back a channel is read: a thousand messages since
-// the post was due.
-const mostPages = 10
+const (
+	// pageSize is the most messages that the service gives at a time.
+	pageSize = 100
+	// mostPages bounds how far back a channel is read: a thousand messages since
+	// the post was due.
+	mostPages = 10
+)
 
 // Find reads the channel back to the time and looks for our own message with
-// the marker.
+// the marker. When more was said since than is read, it is an error: the
+// message may be among the rest.
 func (c Channels) Find(ctx context.Context, channel string, marker schedule.Marker, since time.Time) (string, bool, error) {
 	before := ""
 	for range mostPages {
-		page, err := c.bot.rest.ChannelMessages(channel, 100, before, "", "", discordWait(ctx)...)
+		page, err := c.page(ctx, channel, before)
 		if err != nil {
 			return "", false, refusal(err)
 		}
 		for _, message := range page {
-			if marked(message, marker.Text) {
+			if message.marked(marker.Text) {
 				return message.ID, true, nil
 			}
 		}
-		if len(page) < 100 {
+		if len(page) < pageSize {
 			return "", false, nil
 		}
 		before = page[len(page)-1].ID
@@ -101,7 +107,29 @@ func (c Channels) Find(ctx context.Context, channel string, marker schedule.Mark
 			return "", false, nil
 		}
 	}
-	return "", false, nil
+	return "", false, planner.Problemf(planner.Busy, "too much was said in the channel since then, more than %d messages", mostPages*pageSize)
+}
+
+// said is what is looked at of a message in a channel. It is read without
+// the library, which refuses a whole page for one part that it does not know.
+type said struct {
+	ID         string            `json:"id"`
+	Components []json.RawMessage `json:"components"`
+}
+
+// page reads the newest messages of the channel, or those before one, newest
+// first.
+func (c Channels) page(ctx context.Context, channel, before string) (messages []said, err error) {
+	query := url.Values{"limit": {strconv.Itoa(pageSize)}}
+	if before != "" {
+		query.Set("before", before)
+	}
+	endpoint := discordgo.EndpointChannelMessages(channel)
+	raw, err := c.bot.rest.RequestWithBucketID(http.MethodGet, endpoint+"?"+query.Encode(), nil, endpoint, discordWait(ctx)...)
+	if err == nil {
+		err = json.Unmarshal(raw, &messages)
+	}
+	return messages, err
 }
 
 // snowflake is the time that an id of the service bears.
@@ -110,17 +138,21 @@ func snowflake(id int64) time.Time {
 	return time.UnixMilli(id>>22 + epoch)
 }
 
-// marked says whether a button of the message holds the marker. Only
-// applications make buttons, and the marker's form is ours; what another
-// application's message holds is not looked at.
-func marked(message *discordgo.Message, marker string) bool {
-	for _, component := range message.Components {
-		row, ok := component.(*discordgo.ActionsRow)
-		if !ok {
+// marked says whether a button in a row of the message holds the marker. Only
+// applications make buttons, and the marker's form is ours; parts of another
+// form are not ours.
+func (m said) marked(marker string) bool {
+	for _, part := range m.Components {
+		var row struct {
+			Components []struct {
+				CustomID string `json:"custom_id"`
+			} `json:"components"`
+		}
+		if json.Unmarshal(part, &row) != nil {
 			continue
 		}
-		for _, cell := range row.Components {
-			if button, ok := cell.(*discordgo.Button); ok && strings.HasPrefix(button.CustomID, string(rune(runLine))+pressVersion+":"+marker+":") {
+		for _, button := range row.Components {
+			if strings.HasPrefix(button.CustomID, string(rune(runLine))+pressVersion+":"+marker+":") {
 				return true
 			}
 		}

@@ -40,13 +40,22 @@ type Task struct {
 	// Expired says that the window is over: what is found is recorded, nothing
 	// is sent any more.
 	Expired bool
-	// Missed are the days since the last post that went out which got none.
-	Missed []planner.Day
+	// Hopeless says that the window has been over for a day: what cannot be
+	// found out by now is given up.
+	Hopeless bool
+	// Missed are the days which got no post and of which none has told yet.
+	Missed []Missed
 	// Row is the ledger's row, when there is one.
 	Row planner.Posting
 	// Posted is the newest row before the day of what was sent with its
 	// figures, for telling what late readings have corrected since.
 	Posted planner.Posting
+}
+
+// Missed is a day without a post.
+type Missed struct {
+	Day    planner.Day
+	Unsure bool // it may have had one
 }
 
 // Timed is a post with the zone of its site.
@@ -58,6 +67,9 @@ type Timed struct {
 const (
 	// lateAfter is from when on a post says that it is late: a few ticks.
 	lateAfter = 5 * time.Minute
+	// hopelessAfter is how long after its window a claimed post is looked for
+	// where looking fails.
+	hopelessAfter = 24 * time.Hour
 	// mostDays bounds how many missed days of one post are recorded in one
 	// tick; what is left comes with the next.
 	mostDays = 400
@@ -102,10 +114,11 @@ func dueOf(post Timed, rows []planner.Posting, now time.Time) []Task {
 	return append(tasks, fresh(post, first, missed, now)...)
 }
 
-// begun are the tasks of days that have a row, and the days without a post
-// since the last one that went out.
-func begun(post Timed, rows []planner.Posting, now time.Time) (tasks []Task, missed []planner.Day) {
+// begun are the tasks of days that have a row, and the days without a post that
+// none has told yet: those given up since the last one that went out.
+func begun(post Timed, rows []planner.Posting, now time.Time) (tasks []Task, missed []Missed) {
 	today := planner.DayIn(now, post.Zone)
+	givenUpAt := map[planner.Day]time.Time{}
 	for i, row := range rows {
 		due, _ := DueAt(row.Day, post.Minute, post.Zone)
 		followed := i+1 < len(rows) && rows[i+1].Day == row.Day
@@ -116,12 +129,13 @@ func begun(post Timed, rows []planner.Posting, now time.Time) (tasks []Task, mis
 			task.Late = row.Part == 0 && now.Sub(due) > lateAfter
 			// A follow-up may come until the day is over.
 			task.Expired = row.Part == 0 && now.Sub(due) > post.window() || row.Part == 1 && row.Day < today
+			task.Hopeless = now.Sub(due) > post.window()+hopelessAfter
 			tasks = append(tasks, task)
 		case row.Part != 0:
 		case row.State == planner.GivenUp:
-			missed = append(missed, row.Day)
+			missed, givenUpAt[row.Day] = append(missed, Missed{row.Day, row.Unsure}), row.At
 		case row.State == planner.Sent:
-			missed = nil
+			missed = slices.DeleteFunc(missed, func(m Missed) bool { return !givenUpAt[m.Day].After(row.At) })
 			if row.Partial && row.Day == today && !followed {
 				task.Do, task.Part = FollowUp, 1
 				tasks = append(tasks, task)
@@ -132,7 +146,7 @@ func begun(post Timed, rows []planner.Posting, now time.Time) (tasks []Task, mis
 }
 
 // fresh are the tasks of days from the first on, which have no row yet.
-func fresh(post Timed, first planner.Day, missed []planner.Day, now time.Time) (tasks []Task) {
+func fresh(post Timed, first planner.Day, missed []Missed, now time.Time) (tasks []Task) {
 	today := planner.DayIn(now, post.Zone)
 	for day := first; day <= today && len(tasks) < mostDays; day++ {
 		due, exists := DueAt(day, post.Minute, post.Zone)
@@ -150,7 +164,7 @@ func fresh(post Timed, first planner.Day, missed []planner.Day, now time.Time) (
 			task.Do, task.Reason = Miss, "not running at "+post.Clock()+", nor within "+hours(post.WindowMinutes)+" after"
 		}
 		if task.Do == Miss {
-			missed = append(missed, day)
+			missed = append(missed, Missed{Day: day})
 		}
 		tasks = append(tasks, task)
 	}

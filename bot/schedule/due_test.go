@@ -132,6 +132,7 @@ func TestDue(t *testing.T) {
 	row := func(d, part int, state planner.PostingState) planner.Posting {
 		return planner.Posting{Post: 1, Day: june(d), Part: part, State: state}
 	}
+	when := func(p planner.Posting, text string) planner.Posting { p.At = at(t, text); return p }
 	partial := func(p planner.Posting) planner.Posting { p.Partial = true; return p }
 	for _, test := range []struct {
 		name   string
@@ -156,6 +157,16 @@ func TestDue(t *testing.T) {
 			want: []string{"send 2024-06-03.0 missed 1"}},
 		{name: "told once", ledger: []planner.Posting{row(2, 0, planner.GivenUp), row(3, 0, planner.Sent)}, now: "2024-06-04T09:30:00Z",
 			want: []string{"send 2024-06-04.0"}},
+		{name: "given up after the next went out: told by the one after that",
+			ledger: []planner.Posting{when(row(1, 0, planner.GivenUp), "2024-06-02T14:00:00Z"), when(row(2, 0, planner.Sent), "2024-06-02T09:30:00Z")},
+			now:    "2024-06-03T09:30:00Z", want: []string{"send 2024-06-03.0 missed 1"}},
+		{name: "given up in the same minute: told by it",
+			ledger: []planner.Posting{when(row(1, 0, planner.GivenUp), "2024-06-02T09:30:00Z"), when(row(2, 0, planner.Sent), "2024-06-02T09:30:00Z")},
+			now:    "2024-06-03T09:30:00Z", want: []string{"send 2024-06-03.0"}},
+		{name: "claimed, a day past the window", ledger: []planner.Posting{row(1, 0, planner.Claimed)}, now: "2024-06-02T13:30:00Z",
+			want: []string{"settle 2024-06-01.0 late expired", "send 2024-06-02.0 late"}},
+		{name: "claimed, more than a day past the window", ledger: []planner.Posting{row(1, 0, planner.Claimed)}, now: "2024-06-02T13:30:01Z",
+			want: []string{"settle 2024-06-01.0 late expired hopeless", "miss 2024-06-02.0"}},
 		{name: "trouble is missed", post: func(p *planner.Post) { p.Trouble = "the channel is gone" }, now: "2024-06-01T09:30:00Z", want: []string{"miss 2024-06-01.0"}},
 		{name: "weekdays", post: func(p *planner.Post) { p.On = planner.WeekdaysOf(time.Monday) }, now: "2024-06-04T09:30:00Z",
 			want: []string{"miss 2024-06-03.0"}}, // Monday the 3rd
@@ -176,6 +187,9 @@ func TestDue(t *testing.T) {
 				}
 				if task.Expired {
 					text += " expired"
+				}
+				if task.Hopeless {
+					text += " hopeless"
 				}
 				if len(task.Missed) > 0 {
 					text += fmt.Sprintf(" missed %d", len(task.Missed))

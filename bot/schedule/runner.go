@@ -37,7 +37,8 @@ type Channels interface {
 	// that another try would not help; after any other error the outcome is
 	// unknown.
 	Send(ctx context.Context, channel string, marker Marker, r reply.Reply) (message string, err error)
-	// Find looks for a message of ours with the marker, back to the instant.
+	// Find looks for a message of ours with the marker, back to the instant. It
+	// says that there is none only when it has seen all that was said since.
 	Find(ctx context.Context, channel string, marker Marker, since time.Time) (message string, found bool, err error)
 }
 
@@ -48,10 +49,10 @@ type Marker struct {
 	Nonce string // at most 25 characters
 }
 
-// MarkerOf is the marker of a part of a post on a day in the channel.
-func MarkerOf(post planner.Post, day planner.Day, part int) Marker {
-	text := fmt.Sprintf("%d.%d.%d", post.ID, day, part)
-	sum := sha256.Sum256(fmt.Appendf(nil, "%s|%s", post.Channel, text))
+// MarkerOf is the marker of a row's post, day and part in its channel.
+func MarkerOf(row planner.Posting) Marker {
+	text := fmt.Sprintf("%d.%d.%d", row.Post, row.Day, row.Part)
+	sum := sha256.Sum256(fmt.Appendf(nil, "%s|%s", row.Channel, text))
 	const nonceLength = 25
 	return Marker{Text: text, Nonce: base32.StdEncoding.EncodeToString(sum[:])[:nonceLength]}
 }
@@ -80,8 +81,8 @@ type Setup interface {
 //
 // A post is sent exactly once by this order: a claimed row in the ledger, the
 // message with a nonce and a marker, the row settled. Whoever finds a claimed
-// row, after a crash or a lost answer, looks for the marker in the channel
-// before it sends again.
+// row, after a crash or a lost answer, looks for the marker before it sends
+// again: in the channel that stands in the row, wherever the post goes by now.
 type Runner struct {
 	Setup    Setup
 	Ledger   planner.PostLedger
@@ -110,21 +111,36 @@ func (r *Runner) Tick(ctx context.Context, now time.Time) error {
 	if err != nil {
 		return err
 	}
+	// What is open is settled first, so that what is sent in the same minute can
+	// tell what came of it.
+	settled, err := r.all(ctx, posts, now, func(do Doing) bool { return do == Settle })
+	if err != nil {
+		return errors.Join(settled, err)
+	}
+	fresh, err := r.all(ctx, posts, now, func(do Doing) bool { return do != Settle })
+	return errors.Join(settled, fresh, err)
+}
+
+// all does the wanted tasks that are due by the ledger as it stands. wrong
+// joins the errors of single posts.
+func (r *Runner) all(ctx context.Context, posts []Timed, now time.Time, wanted func(Doing) bool) (wrong, err error) {
 	ledger, err := r.Ledger.Postings(ctx, planner.DayIn(now, time.UTC)-lookBehind)
 	if err != nil {
-		return fmt.Errorf("read the ledger: %w", err)
+		return nil, fmt.Errorf("read the ledger: %w", err)
 	}
-	var wrong []error
 	for _, task := range Due(posts, ledger, now) {
+		if !wanted(task.Do) {
+			continue
+		}
 		if ctx.Err() != nil {
-			return ctx.Err()
+			return wrong, ctx.Err()
 		}
 		task.Posted = lastPosted(ledger, task)
 		if err := r.do(ctx, task, now); err != nil {
-			wrong = append(wrong, fmt.Errorf("post %d of %s: %w", task.Post.ID, task.Day, err))
+			wrong = errors.Join(wrong, fmt.Errorf("post %d of %s: %w", task.Post.ID, task.Day, err))
 		}
 	}
-	return errors.Join(wrong...)
+	return wrong, nil
 }
 
 // lastPosted is the newest row of the task's post, before its day, that was
@@ -157,7 +173,7 @@ func timed(setup planner.Setup) ([]Timed, error) {
 }
 
 func (r *Runner) do(ctx context.Context, task Task, now time.Time) error {
-	row := planner.Posting{Post: task.Post.ID, Day: task.Day, Part: task.Part, State: planner.Claimed, At: now}
+	row := planner.Posting{Post: task.Post.ID, Day: task.Day, Part: task.Part, State: planner.Claimed, Channel: task.Post.Channel, At: now}
 	switch task.Do {
 	case Miss:
 		row.State, row.Reason = planner.GivenUp, task.Reason
@@ -189,20 +205,29 @@ func (r *Runner) do(ctx context.Context, task Task, now time.Time) error {
 	return r.send(ctx, task, now)
 }
 
-// settle finds out what became of a claimed post: it is in the channel, or it
-// is sent now, or, once its window is over, given up.
+// settle finds out what became of a claimed post: it is in the channel that it
+// was claimed for, or it is sent now, or, once its window is over, given up. A
+// channel that cannot be looked into is tried for a day past the window; then
+// the row ends as one of which nobody knows.
 func (r *Runner) settle(ctx context.Context, task Task, now time.Time) error {
-	marker := MarkerOf(task.Post, task.Day, task.Part)
-	message, found, err := r.Channels.Find(ctx, task.Post.Channel, marker, task.Due.Add(-time.Hour))
+	if task.Row.Channel == "" {
+		task.Row.Channel = task.Post.Channel
+	}
+	message, found, err := r.Channels.Find(ctx, task.Row.Channel, MarkerOf(task.Row), lastTry(task).Add(-time.Hour))
 	var refused *Refused
 	switch {
 	case errors.As(err, &refused):
-		return r.giveUp(ctx, task, now, refused)
+		task.Row.Unsure = true
+		moved := task.Row.Channel != task.Post.Channel // then it says nothing about where the next one goes
+		return r.giveUp(ctx, task, now, &Refused{Reason: refused.Reason, Cause: err, Lasting: refused.Lasting && !moved})
+	case err != nil && task.Hopeless:
+		task.Row.Unsure = true
+		return r.giveUp(ctx, task, now, &Refused{Reason: "the channel could not be looked through: " + short(err), Cause: err})
 	case err != nil:
 		return fmt.Errorf("look into the channel: %w", err) // the next tick looks again
 	case found:
-		row := task.Row
-		row.State, row.At, row.Message, row.Reason = planner.Sent, now, message, ""
+		row := task.Row // its time is that of the try that got through
+		row.State, row.Message, row.Reason = planner.Sent, message, ""
 		return r.record(ctx, row)
 	case task.Expired:
 		reason := "could not be sent by " + task.Due.Add(time.Duration(task.Post.WindowMinutes)*time.Minute).UTC().Format("15:04") + " UTC"
@@ -211,7 +236,22 @@ func (r *Runner) settle(ctx context.Context, task Task, now time.Time) error {
 		}
 		return r.giveUp(ctx, task, now, &Refused{Reason: reason})
 	}
+	if task.Row.Channel != task.Post.Channel {
+		task.Row.Channel = task.Post.Channel
+		if err := r.Ledger.Settle(ctx, task.Row); err != nil { // before anything goes there
+			return fmt.Errorf("note the other channel: %w", err)
+		}
+	}
 	return r.send(ctx, task, now)
+}
+
+// lastTry is when the claimed post may have gone out, or before that: its time
+// of day may be a later one by now.
+func lastTry(task Task) time.Time {
+	if task.Row.At.Before(task.Due) {
+		return task.Row.At
+	}
+	return task.Due
 }
 
 // send composes a claimed post and sends it. After an error whose outcome is
@@ -221,7 +261,7 @@ func (r *Runner) send(ctx context.Context, task Task, now time.Time) error {
 	if err != nil {
 		return errors.Join(fmt.Errorf("compose: %w", err), r.noteTrouble(ctx, task, now, err))
 	}
-	message, err := r.Channels.Send(ctx, task.Post.Channel, MarkerOf(task.Post, task.Day, task.Part), content.Reply)
+	message, err := r.Channels.Send(ctx, task.Row.Channel, MarkerOf(task.Row), content.Reply)
 	var refused *Refused
 	if errors.As(err, &refused) {
 		return r.giveUp(ctx, task, now, refused)

@@ -129,16 +129,32 @@ func notes(task Task, partial bool, site planner.Site) []string {
 	} else if task.Late {
 		lines = append(lines, "Late: this was due at "+task.Post.Clock()+".")
 	}
-	switch n := len(task.Missed); {
-	case n == 1:
-		lines = append(lines, "No post went out on "+task.Missed[0].Short()+".")
-	case n > 1:
-		lines = append(lines, fmt.Sprintf("No post went out on %d days, %s to %s.", n, task.Missed[0].Short(), task.Missed[n-1].Short()))
+	var none, unsure []planner.Day
+	for _, missed := range task.Missed {
+		if missed.Unsure {
+			unsure = append(unsure, missed.Day)
+		} else {
+			none = append(none, missed.Day)
+		}
+	}
+	if len(none) > 0 {
+		lines = append(lines, "No post went out on "+days(none)+".")
+	}
+	if len(unsure) > 0 {
+		lines = append(lines, "Whether a post went out on "+days(unsure)+" is not known.")
 	}
 	if partial && task.Part == 0 {
 		lines = append(lines, "Yesterday's weather is not whole yet. Once it is, this post is followed up.")
 	}
 	return lines
+}
+
+// days names one day, or says how many and from which to which.
+func days(all []planner.Day) string {
+	if len(all) == 1 {
+		return all[0].Short()
+	}
+	return fmt.Sprintf("%d days, %s to %s", len(all), all[0].Short(), all[len(all)-1].Short())
 }
 
 // underHeading is the place of the first block that is not the post's heading.

@@ -364,12 +364,12 @@ func checkYear(t *testing.T, path string, fake *fakechat.Fake, long year, left i
 	}
 	ledger := map[string]planner.Posting{}
 	for _, row := range rows {
-		ledger[schedule.MarkerOf(planner.Post{ID: row.Post}, row.Day, row.Part).Text] = row
+		ledger[schedule.MarkerOf(row).Text] = row
 	}
 	sent, missed := 0, 0
 	for post := planner.PostID(1); post <= 6; post++ {
 		for day := long.first; day <= long.last; day++ {
-			marker := schedule.MarkerOf(planner.Post{ID: post}, day, 0).Text
+			marker := schedule.MarkerOf(planner.Posting{Post: post, Day: day}).Text
 			row, ok := ledger[marker]
 			switch n := messages[marker]; {
 			case !ok:

@@ -45,7 +45,8 @@ type DB struct {
 
 // Open opens the file, making it when it is not there, and brings it to the
 // schema of this program; an existing file is first copied to
-// path.before-N, N being the schema it is brought to.
+// path.before-N, N being the schema it is brought to; where that copy is there
+// already it stays, and this one is path.before-N.again.
 //
 // A folder that is not there, a file that is no database or not one of ours,
 // and a file of a newer schema are each a *planner.Problem, and the file is

@@ -33,8 +33,10 @@ func (t *Team) EraseTeam(ctx context.Context) error {
 }
 
 // EraseSite takes out the site and every row that hangs on it by a foreign
-// key, and the rows of the change log about any of them. A site that is not
-// the team's is a NotFound problem.
+// key, and the rows of the change log about any of them. The team's kept lines
+// go all: a line need not say which site it is about, and may hold a note of
+// this one; buttons of other sites that stood for one are too old from then on.
+// A site that is not the team's is a NotFound problem.
 func (t *Team) EraseSite(ctx context.Context, site planner.SiteID) error {
 	return t.db.write(ctx, "erase a site", func(conn *sql.Conn) error {
 		err := mustExist(ctx, conn, "site", int64(site), `SELECT 1 FROM site WHERE team = ? AND id = ?`, t.id, site)
@@ -64,6 +66,9 @@ func (t *Team) EraseSite(ctx context.Context, site planner.SiteID) error {
 					return fmt.Errorf("%s: %w", table, err)
 				}
 			}
+		}
+		if _, err := conn.ExecContext(ctx, `DELETE FROM line WHERE team = ?`, t.id); err != nil {
+			return err
 		}
 		_, err = conn.ExecContext(ctx, `DELETE FROM change WHERE team = ?1 AND kind = ?3 AND thing = ?2`, t.id, site, kindAhead)
 		return err

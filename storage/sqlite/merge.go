@@ -25,6 +25,7 @@ type ImportAbout struct {
 // MergeReport says what a merge did.
 type MergeReport struct {
 	ImportID int64
+	Station  planner.StationID // that has the readings; a new one's id
 	// RowCounts counts rows of readings and days; rows repeated in the file are
 	// among Same.
 	planner.RowCounts
@@ -35,7 +36,7 @@ type MergeReport struct {
 }
 
 // Merge puts the staged rows into the station's record in one transaction: the
-// import, the readings, the values they replace, the day facts of the days they
+// station, when it is a new one, the import, the readings, the values they replace, the day facts of the days they
 // touch and of the days beside them, the record's revision (when anything
 // changed) and a row of the change log. On an error nothing is kept, and Merge
 // may be tried again; after a merge the Stage can only be closed.
@@ -60,7 +61,7 @@ func (s *Stage) Merge(ctx context.Context, stamp planner.Stamp, about ImportAbou
 		return MergeReport{}, storeError(s.team.db.name, step, err)
 	}
 	defer turn.Close()
-	m := merge{on: s.conn, team: s.team.id, station: s.station, stamp: stamp, about: about, repeated: s.repeated}
+	m := merge{on: s.conn, team: s.team.id, station: s.station, fresh: s.fresh, stamp: stamp, about: about, repeated: s.repeated}
 	if err := transact(ctx, s.conn, "BEGIN IMMEDIATE", func() error { return m.run(ctx) }); err != nil {
 		return MergeReport{}, storeError(s.team.db.name, step, err)
 	}
@@ -92,6 +93,7 @@ type merge struct {
 	on       *sql.Conn
 	team     int64
 	station  planner.StationID
+	fresh    planner.Station // to be added when station is 0
 	stamp    planner.Stamp
 	about    ImportAbout
 	repeated int
@@ -99,6 +101,14 @@ type merge struct {
 }
 
 func (m *merge) run(ctx context.Context) error {
+	if m.station == 0 {
+		added, err := saveOn(ctx, m.on, m.team, m.stamp, stations{}, m.fresh)
+		if err != nil {
+			return err
+		}
+		m.station = added.ID
+	}
+	m.report.Station = m.station
 	station, err := openStation(ctx, m.on, m.team, m.station)
 	if err != nil {
 		return err

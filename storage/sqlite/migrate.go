@@ -163,7 +163,10 @@ func inspect(ctx context.Context, path string) (version int64, err error) {
 	return version, err
 }
 
-// copyBefore writes a copy of the file beside it, whole or not at all.
+// copyBefore writes a copy of the file beside it, whole or not at all. The first
+// copy before a schema stays as it is: a later one, after migrations that stopped
+// half-way or of a file that was put back, stands beside it, and is replaced by
+// the next.
 func copyBefore(ctx context.Context, writer *sql.DB, path string, target int64) error {
 	draft, err := os.CreateTemp(filepath.Dir(path), filepath.Base(path)+".copy-*")
 	if err != nil {
@@ -177,5 +180,9 @@ func copyBefore(ctx context.Context, writer *sql.DB, path string, target int64) 
 	if _, err := writer.ExecContext(ctx, "VACUUM INTO ?", name); err != nil {
 		return err
 	}
-	return os.Rename(name, fmt.Sprintf("%s.before-%d", path, target))
+	copied := fmt.Sprintf("%s.before-%d", path, target)
+	if _, err := os.Lstat(copied); !errors.Is(err, fs.ErrNotExist) {
+		copied += ".again"
+	}
+	return os.Rename(name, copied)
 }

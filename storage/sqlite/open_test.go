@@ -158,6 +158,37 @@ func TestMigrationCopiesFirst(t *testing.T) {
 	}
 }
 
+// A copy that is there is the file as it was before: neither a second try after
+// half of the migrations nor a third takes its place.
+func TestMigrationKeepsTheFirstCopy(t *testing.T) {
+	t.Parallel()
+	file := filepath.Join(t.TempDir(), "store.db")
+	db, _ := newHome(t, file)
+	db.Close()
+	target := newest(t) + 2
+	half := withMigrations(t, "ALTER TABLE team ADD COLUMN motto TEXT", "SELECT nonsense()")
+	for try := range 3 {
+		if _, err := open(t.Context(), file, half); err == nil {
+			t.Fatal("a broken migration was applied")
+		}
+		for name, want := range map[string]int{
+			fmt.Sprintf("%s.before-%d", file, target):       newest(t),
+			fmt.Sprintf("%s.before-%d.again", file, target): newest(t) + 1,
+		} {
+			version, err := inspect(t.Context(), name)
+			if again := strings.HasSuffix(name, ".again"); again && try == 0 {
+				want = 0 // there is no such copy yet
+			}
+			if err != nil || version != int64(want) {
+				t.Errorf("after try %d: %s has schema %d, %v, want %d", try+1, filepath.Base(name), version, err, want)
+			}
+		}
+	}
+	if left, _ := filepath.Glob(file + ".*"); len(left) != 2 {
+		t.Errorf("copies: %v", left)
+	}
+}
+
 func TestTeams(t *testing.T) {
 	t.Parallel()
 	db, home := newHome(t, filepath.Join(t.TempDir(), "store.db"))
@@ -292,11 +323,16 @@ func firstMigrations(t *testing.T, upTo int64) migrations {
 }
 
 // withMigration is the program's migrations and one more.
-func withMigration(t *testing.T, statements string) migrations {
+func withMigration(t *testing.T, statements string) migrations { return withMigrations(t, statements) }
+
+// withMigrations is the program's migrations and some more.
+func withMigrations(t *testing.T, more ...string) migrations {
 	t.Helper()
 	all := firstMigrations(t, math.MaxInt64)
-	next := fmt.Sprintf("%05d_more.sql", newest(t)+1)
-	all.files.(fstest.MapFS)[next] = &fstest.MapFile{Data: []byte("-- +goose Up\n" + statements + ";\n")}
+	for i, statements := range more {
+		next := fmt.Sprintf("%05d_more.sql", newest(t)+1+i)
+		all.files.(fstest.MapFS)[next] = &fstest.MapFile{Data: []byte("-- +goose Up\n" + statements + ";\n")}
+	}
 	return all
 }
 

@@ -21,13 +21,13 @@ func (t *Team) Postings(ctx context.Context, from planner.Day) ([]planner.Postin
 	postings, err := collect(ctx, t.db.reader, func(rows *sql.Rows) (p planner.Posting, err error) {
 		var at int64
 		var figures string
-		err = rows.Scan(&p.Post, &p.Day, &p.Part, &p.State, &at, &p.Message, &p.Reason, &p.Partial, &figures)
+		err = rows.Scan(&p.Post, &p.Day, &p.Part, &p.State, &at, &p.Message, &p.Reason, &p.Partial, &figures, &p.Channel, &p.Unsure)
 		p.At = time.Unix(at, 0).UTC()
 		if err == nil && figures != "" {
 			err = json.Unmarshal([]byte(figures), &p.Figures)
 		}
 		return p, err
-	}, `SELECT post, day, part, state, at, message, reason, partial, figures FROM posting AS p
+	}, `SELECT post, day, part, state, at, message, reason, partial, figures, channel, unsure FROM posting AS p
 		WHERE team = ?1 AND (day >= ?2 OR state = 'claimed'
 			OR day = (SELECT max(day) FROM posting WHERE team = ?1 AND post = p.post))
 		ORDER BY post, day, part`, t.id, from)
@@ -41,9 +41,9 @@ func (t *Team) Claim(ctx context.Context, p planner.Posting) (claimed bool, err 
 		if err := mustExist(ctx, conn, "post", int64(p.Post), `SELECT 1 FROM post WHERE team = ? AND id = ?`, t.id, p.Post); err != nil {
 			return err
 		}
-		result, err := conn.ExecContext(ctx, `INSERT INTO posting (team, post, day, part, state, at, message, reason, partial)
-			VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?) ON CONFLICT DO NOTHING`,
-			t.id, p.Post, p.Day, p.Part, p.State, p.At.Unix(), p.Message, p.Reason, p.Partial)
+		result, err := conn.ExecContext(ctx, `INSERT INTO posting (team, post, day, part, state, at, message, reason, partial, channel, unsure)
+			VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?) ON CONFLICT DO NOTHING`,
+			t.id, p.Post, p.Day, p.Part, p.State, p.At.Unix(), p.Message, p.Reason, p.Partial, p.Channel, p.Unsure)
 		if err != nil {
 			return err
 		}
@@ -66,9 +66,9 @@ func (t *Team) Settle(ctx context.Context, p planner.Posting) error {
 		figures = text
 	}
 	return t.db.write(ctx, "settle a post", func(conn *sql.Conn) error {
-		result, err := conn.ExecContext(ctx, `UPDATE posting SET state = ?, at = ?, message = ?, reason = ?, partial = ?, figures = ?
+		result, err := conn.ExecContext(ctx, `UPDATE posting SET state = ?, at = ?, message = ?, reason = ?, partial = ?, figures = ?, channel = ?, unsure = ?
 			WHERE team = ? AND post = ? AND day = ? AND part = ? AND state = 'claimed'`,
-			p.State, p.At.Unix(), p.Message, p.Reason, p.Partial, figures, t.id, p.Post, p.Day, p.Part)
+			p.State, p.At.Unix(), p.Message, p.Reason, p.Partial, figures, p.Channel, p.Unsure, t.id, p.Post, p.Day, p.Part)
 		if err != nil {
 			return err
 		}

@@ -89,7 +89,7 @@ func TestLedger(t *testing.T) {
 	home, other := team(t, db, "home"), team(t, db, "other")
 	post := savedPost(t, home, savedSite(t, home, "Quillmere").ID)
 	at := time.Date(2024, 6, 4, 9, 30, 0, 0, time.UTC)
-	row := planner.Posting{Post: post.ID, Day: 19878, State: planner.Claimed, At: at, Partial: true}
+	row := planner.Posting{Post: post.ID, Day: 19878, State: planner.Claimed, Channel: "77", At: at, Partial: true}
 	var won sync.Map
 	var all sync.WaitGroup
 	for i := range 8 {
@@ -111,7 +111,7 @@ func TestLedger(t *testing.T) {
 		t.Errorf("another team's claim: %v", err)
 	}
 	sent := row
-	sent.State, sent.Message, sent.At = planner.Sent, "555", at.Add(time.Second)
+	sent.State, sent.Message, sent.Channel, sent.At = planner.Sent, "555", "78", at.Add(time.Second)
 	if err := other.Settle(ctx, sent); planner.KindOf(err) != planner.NotFound {
 		t.Errorf("another team settles: %v", err)
 	}
@@ -122,7 +122,7 @@ func TestLedger(t *testing.T) {
 		t.Errorf("settled twice: %v", err)
 	}
 	older := planner.Posting{Post: post.ID, Day: 19800, State: planner.Claimed, At: at}
-	oldest := planner.Posting{Post: post.ID, Day: 19700, State: planner.GivenUp, At: at, Reason: "not running"}
+	oldest := planner.Posting{Post: post.ID, Day: 19700, State: planner.GivenUp, At: at, Reason: "not running", Unsure: true}
 	for _, one := range []planner.Posting{older, oldest} {
 		if ok, err := home.Claim(ctx, one); err != nil || !ok {
 			t.Fatalf("%v, %v", ok, err)
@@ -247,8 +247,26 @@ func TestEraseSite(t *testing.T) {
 	if _, err := other.Export(ctx, site.ID+5); planner.KindOf(err) != planner.NotFound {
 		t.Errorf("no such site: %v", err)
 	}
+	const secret = "/done greens note:\"the secret of Secretvale\""
+	line, err := home.KeepLine(ctx, secret, morningStamp.At)
+	if err != nil {
+		t.Fatal(err)
+	}
+	theirLine, err := other.KeepLine(ctx, secret, morningStamp.At)
+	if err != nil {
+		t.Fatal(err)
+	}
 	if err := home.EraseSite(ctx, site.ID); err != nil {
 		t.Fatal(err)
+	}
+	if text, err := home.Line(ctx, line); planner.KindOf(err) != planner.NotFound {
+		t.Errorf("a kept line is read after the erasing: %q, %v", text, err)
+	}
+	if text, err := other.Line(ctx, theirLine); text != secret {
+		t.Errorf("another team's line: %q, %v", text, err)
+	}
+	if again, err := home.KeepLine(ctx, secret, morningStamp.At); err != nil || again == line {
+		t.Errorf("a line's number %d is given twice, %v", again, err)
 	}
 	if err := home.EraseSite(ctx, site.ID); planner.KindOf(err) != planner.NotFound {
 		t.Errorf("twice: %v", err)

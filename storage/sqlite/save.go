@@ -73,30 +73,37 @@ func save[N planner.Noun](ctx context.Context, t *Team, stamp planner.Stamp, kin
 	}
 	var after N
 	err := t.db.write(ctx, "save "+noun.Kind(), func(conn *sql.Conn) (err error) {
-		var before N
-		id := noun.Key()
-		row := logged{kind: noun.Kind()}
-		if id == 0 {
-			id, err = next(ctx, conn, t.id, noun.Kind())
-		} else {
-			before, err = one(ctx, conn, t.id, kind, id)
-			row.before = before
-		}
-		if err != nil {
-			return err
-		}
-		after = kind.withID(noun, id)
-		row.thing, row.after = id, after
-		change, err := log(ctx, conn, t.id, stamp, row)
-		if err != nil {
-			return err
-		}
-		return kind.write(ctx, saving{on: conn, team: t.id, change: change}, before, after)
+		after, err = saveOn(ctx, conn, t.id, stamp, kind, noun)
+		return err
 	})
 	if err != nil {
 		return nil, err
 	}
 	return after, nil
+}
+
+// saveOn keeps a checked noun and its row of the change log within a
+// transaction.
+func saveOn[N planner.Noun](ctx context.Context, on *sql.Conn, team int64, stamp planner.Stamp, kind kept[N], noun N) (after N, err error) {
+	var before N
+	id := noun.Key()
+	row := logged{kind: noun.Kind()}
+	if id == 0 {
+		id, err = next(ctx, on, team, noun.Kind())
+	} else {
+		before, err = one(ctx, on, team, kind, id)
+		row.before = before
+	}
+	if err != nil {
+		return after, err
+	}
+	after = kind.withID(noun, id)
+	row.thing, row.after = id, after
+	change, err := log(ctx, on, team, stamp, row)
+	if err != nil {
+		return after, err
+	}
+	return after, kind.write(ctx, saving{on: on, team: team, change: change}, before, after)
 }
 
 // one returns the team's noun with the id, or a NotFound problem.

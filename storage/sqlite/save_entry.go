@@ -31,12 +31,12 @@ func (entries) list(ctx context.Context, on session, team int64, where string, a
 	return collect(ctx, on, func(rows *sql.Rows) (planner.Entry, error) {
 		var entry planner.Entry
 		var at int64
-		err := rows.Scan(&entry.ID, &entry.Site, &entry.Day, &entry.By, &at, &entry.Note,
+		err := rows.Scan(&entry.ID, &entry.Site, &entry.Day, &entry.By, &entry.ByID, &at, &entry.Note,
 			&entry.Result, &entry.Clock, &entry.Watered, &entry.RainCounts, &entry.Undone)
 		entry.At = time.Unix(at, 0).UTC()
 		entry.Passes = passes[entry.ID]
 		return entry, err
-	}, `SELECT id, site, day, who, at, note, result, clock, watered, rain_counts, undone FROM entry WHERE team = ? AND `+where+` ORDER BY id`, args...)
+	}, `SELECT id, site, day, who, who_id, at, note, result, clock, watered, rain_counts, undone FROM entry WHERE team = ? AND `+where+` ORDER BY id`, args...)
 }
 
 // Entries returns the site's log, undone entries left out, by day and then in
@@ -67,7 +67,7 @@ func (entries) write(ctx context.Context, s saving, before, after planner.Entry)
 		return err
 	}
 	err := s.put(ctx, "entry", after.Key(),
-		column{"site", after.Site}, column{"day", after.Day}, column{"who", after.By}, column{"at", after.At.Unix()},
+		column{"site", after.Site}, column{"day", after.Day}, column{"who", after.By}, column{"who_id", after.ByID}, column{"at", after.At.Unix()},
 		column{"note", after.Note}, column{"result", after.Result}, column{"clock", after.Clock},
 		column{"watered", after.Watered}, column{"rain_counts", after.RainCounts}, column{"undone", after.Undone})
 	if err != nil {

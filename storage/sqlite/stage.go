@@ -20,7 +20,8 @@ const stagedRows = 200
 type Stage struct {
 	team    *Team
 	station planner.StationID
-	conn    *sql.Conn // nil once closed
+	fresh   planner.Station // added with the merge when station is 0
+	conn    *sql.Conn       // nil once closed
 
 	open     bool // a transaction on the temporary tables is open
 	merged   bool
@@ -58,19 +59,40 @@ const stagedTables = `
 // not have, or that is archived or of an archived site, is a NotFound problem.
 // The Stage must be closed.
 func (t *Team) Stage(ctx context.Context, station planner.StationID) (*Stage, error) {
-	const step = "begin an import"
 	if _, err := openStation(ctx, t.db.reader, t.id, station); err != nil {
-		return nil, storeError(t.db.name, step, err)
+		return nil, storeError(t.db.name, beginImport, err)
 	}
+	return t.newStage(ctx, Stage{station: station})
+}
+
+// StageNew is Stage for a station that is added with the file, in one step:
+// Merge adds both or nothing. A station that cannot be is an Invalid problem, a
+// site that is not there a NotFound one; a name in use is one at the merge.
+func (t *Team) StageNew(ctx context.Context, station planner.Station) (*Stage, error) {
+	if err := station.Check(); err != nil {
+		return nil, err
+	}
+	err := mustExist(ctx, t.db.reader, "site", int64(station.Site), `SELECT 1 FROM site WHERE team = ? AND id = ? AND archived = 0`, t.id, station.Site)
+	if err != nil {
+		return nil, storeError(t.db.name, beginImport, err)
+	}
+	station.ID = 0
+	return t.newStage(ctx, Stage{fresh: station})
+}
+
+const beginImport = "begin an import"
+
+// newStage opens the stage on a connection of its own.
+func (t *Team) newStage(ctx context.Context, stage Stage) (*Stage, error) {
 	conn, err := t.db.staging.Conn(ctx)
 	if err != nil {
-		return nil, storeError(t.db.name, step, err)
+		return nil, storeError(t.db.name, beginImport, err)
 	}
-	s := &Stage{team: t, station: station, conn: conn, newest: math.MinInt64}
-	if err := s.prepare(ctx); err != nil {
-		return nil, errors.Join(storeError(t.db.name, step, err), s.Close())
+	stage.team, stage.conn, stage.newest = t, conn, math.MinInt64
+	if err := stage.prepare(ctx); err != nil {
+		return nil, errors.Join(storeError(t.db.name, beginImport, err), stage.Close())
 	}
-	return s, nil
+	return &stage, nil
 }
 
 // openStation returns the station, or a NotFound problem.

@@ -71,7 +71,7 @@ func testSetup(t *testing.T, newTeam func(string) Store) {
 	second.closed.Works = []planner.WorkID{mow.ID, second.work.ID}
 	want(t, "the saved closed days", save(t, store, second.closed), second.closed)
 	entry := newEntry(second.site.ID, lateJune, mow.ID, second.work.ID)
-	entry.Result, entry.Clock, entry.Watered, entry.RainCounts = planner.Doubtful, "06:10", lateJune+1, true
+	entry.Result, entry.Clock, entry.Watered, entry.RainCounts, entry.ByID = planner.Doubtful, "06:10", lateJune+1, true, "300000000000000002"
 	entry.Passes[1] = planner.Pass{Work: second.work.ID, NitrogenGM2: 2.94, Part: 1, Share: 0.625, SlowShare: 0.4, SlowWeeks: 8.5,
 		Rate: planner.Rate{Kind: planner.MassRate, Value: 14, NPercent: 21}}
 	entry = save(t, store, entry)
@@ -137,6 +137,7 @@ func testArchived(t *testing.T, newTeam func(string) Store) {
 	noSurface := whole
 	noSurface.Surfaces, noSurface.Works = nil, nil
 	want(t, "Setup without the surface", setup(t, store), noSurface)
+	want(t, "Dropped: the surface, not what is under it", dropped(t, store), planner.Setup{Surfaces: []planner.Surface{archived}})
 	save(t, store, g.surface)
 	want(t, "Setup with the surface again", setup(t, store), whole)
 
@@ -144,8 +145,10 @@ func testArchived(t *testing.T, newTeam func(string) Store) {
 	site.Archived = true
 	save(t, store, site)
 	want(t, "Setup without the site", setup(t, store), planner.Setup{})
+	want(t, "Dropped: the site, not what is under it", dropped(t, store), planner.Setup{Sites: []planner.Site{site}})
 	save(t, store, g.site)
 	want(t, "Setup with the site again", setup(t, store), whole)
+	want(t, "Dropped, once all is back", dropped(t, store), planner.Setup{})
 
 	station, work, total, closed := g.station, g.work, g.total, g.closed
 	station.Archived, work.Archived, total.Archived, closed.Archived = true, true, true, true
@@ -155,6 +158,7 @@ func testArchived(t *testing.T, newTeam func(string) Store) {
 	save(t, store, closed)
 	want(t, "Setup without what is under them", setup(t, store),
 		planner.Setup{Sites: whole.Sites, Surfaces: whole.Surfaces, Dropped: []planner.Work{work}})
+	want(t, "Dropped: the work", dropped(t, store), planner.Setup{Works: []planner.Work{work}})
 }
 
 func testNames(t *testing.T, newTeam func(string) Store) {

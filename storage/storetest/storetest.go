@@ -253,6 +253,15 @@ func setup(t *testing.T, store Store) planner.Setup {
 	return got
 }
 
+func dropped(t *testing.T, store Store) planner.Setup {
+	t.Helper()
+	got, err := store.Dropped(t.Context())
+	if err != nil {
+		t.Fatalf("Dropped: %v", err)
+	}
+	return got
+}
+
 func log(t *testing.T, store Store, site planner.SiteID) []planner.Entry {
 	t.Helper()
 	got, err := store.Entries(t.Context(), site)

@@ -224,6 +224,16 @@ func (f *Fake) Messages(channel string) []*Message {
 	return all
 }
 
+// Talk adds messages of somebody else to a channel, with the components.
+func (f *Fake) Talk(channel string, n int, components ...any) {
+	f.mu.Lock()
+	defer f.mu.Unlock()
+	for range n {
+		f.messages[channel] = append(f.messages[channel], &Message{ID: f.newID(), Channel: channel, At: f.clock(),
+			Body: map[string]any{"content": "Morning!", "components": components}})
+	}
+}
+
 // copied is the message with nothing shared that a later edit changes.
 func (m *Message) copied() *Message {
 	if m == nil {
