@@ -65,6 +65,9 @@ type DueFacts struct {
 	// members' dates; with one member all are its date.
 	Early, Middle, Late Passage
 	SpreadKnown         bool
+	// GapFrom is the day from which the least days run: the newest pass over what
+	// is to be done next, by the work itself; DayMin when there is none.
+	GapFrom Day
 	// Held is the first day that the least days between two passes allow, when
 	// it is later than the middle date; else unknown.
 	Held Passage
@@ -72,9 +75,15 @@ type DueFacts struct {
 	// path, and last its last day: a work whose station is dead is overdue all
 	// the same.
 	filled, last float64
-	// allowed is the first day that the least days between two passes allow; 0
-	// without them.
-	allowed Day
+}
+
+// earliest is the first day that the least days between two passes allow;
+// DayMin without any.
+func (d DueFacts) earliest(limits Limits) Day {
+	if limits.LeastDays == 0 || d.GapFrom == DayMin {
+		return DayMin
+	}
+	return d.GapFrom + Day(limits.LeastDays)
 }
 
 // Date is the date that is told: the middle one, or the later day to which the
@@ -174,10 +183,9 @@ func (p Plan) dueOn(state WorkState, measure Measure, basis Basis, passes rounds
 		target = c.leftAfterLast(feeds) - state.Settings.Target
 	}
 	facts := c.due(passes.Since+1, target)
-	if gap := state.Settings.Limits.LeastDays; gap > 0 && passes.Last > DayMin && facts.Middle.Known {
-		if facts.allowed = passes.Last + Day(gap); facts.allowed > facts.Middle.Day {
-			facts.Held = Passage{facts.allowed, true}
-		}
+	facts.GapFrom = passes.Last
+	if earliest := facts.earliest(state.Settings.Limits); facts.Middle.Known && earliest > facts.Middle.Day {
+		facts.Held = Passage{earliest, true}
 	}
 	return facts
 }
@@ -194,7 +202,7 @@ func (p Plan) flagDate(state *WorkState) {
 	}
 	told := Passage{max(date.Day, p.AsOf), true}
 	state.RestsThen = !state.Settings.Season.On(told.Day)
-	state.Closed = p.closedNote(state.Work.ID, told.Day, max(p.AsOf, facts.allowed))
+	state.Closed = p.closedNote(state.Work.ID, told.Day, max(p.AsOf, facts.earliest(state.Settings.Limits)))
 	if state.Status == Overdue {
 		yesterday := p
 		yesterday.AsOf--

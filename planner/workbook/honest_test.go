@@ -95,9 +95,10 @@ func fed(plan planner.Plan, change func(feeds []*planner.Entry)) planner.Plan {
 // with is the plan with a work's settings changed.
 func with(plan planner.Plan, work planner.WorkID, change func(*planner.WorkSettings)) planner.Plan {
 	plan.Works = slices.Clone(plan.Works)
-	settings := plan.Works[work-1].Settings.On(plan.AsOf)
+	at := slices.IndexFunc(plan.Works, func(one planner.Work) bool { return one.ID == work })
+	settings := plan.Works[at].Settings.On(plan.AsOf)
 	change(&settings)
-	plan.Works[work-1].Settings = planner.Always(settings)
+	plan.Works[at].Settings = planner.Always(settings)
 	return plan
 }
 

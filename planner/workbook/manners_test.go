@@ -357,7 +357,7 @@ func TestLibreOfficeTakesTheBookAsItIs(t *testing.T) {
 			t.Errorf("the name %s refers to %q, was %q", name, theirs.names[name], refers)
 		}
 	}
-	if titles := titlesOf(t, computed); len(titles) != 2 || !slices.Equal(titles, titlesOf(t, content)) {
+	if titles := titlesOf(t, computed); len(titles) != 3 || !slices.Equal(titles, titlesOf(t, content)) {
 		t.Errorf("the pages repeat %q, were to repeat %q", titles, titlesOf(t, content))
 	}
 }

@@ -65,6 +65,40 @@ func randomEdit(r *rand.Rand, plan planner.Plan) (planner.Plan, put, planner.Wor
 	return change(func(e *planner.Entry) { e.Day = day }), put{fmt.Sprintf("log_date+%d", row), float64(day) + 25569}, id
 }
 
+// uncomplicated is the plan with surfaces done as a whole, works that are on all
+// year and counted, passes that went well, and one work that feeds: then a cell of
+// the log is a pass of a work, and what is edited is what Evaluate is told.
+func uncomplicated(t *testing.T, plan planner.Plan) planner.Plan {
+	plan.Surfaces, plan.Works, plan.Log = slices.Clone(plan.Surfaces), slices.Clone(plan.Works), slices.Clone(plan.Log)
+	for i := range plan.Surfaces {
+		plan.Surfaces[i].Parts = nil
+	}
+	byNitrogen := func(work planner.Work) bool { return work.Settings.On(plan.AsOf).Counts == planner.ByNitrogen }
+	feeds := plan.Works[slices.IndexFunc(plan.Works, byNitrogen)]
+	plan.Works = slices.DeleteFunc(plan.Works, func(work planner.Work) bool { return byNitrogen(work) && work.ID != feeds.ID })
+	for i, entry := range plan.Log {
+		plan.Log[i].Result, plan.Log[i].Watered, plan.Log[i].Passes = planner.Good, 0, slices.Clone(entry.Passes)
+		for j := range entry.Passes {
+			plan.Log[i].Passes[j].Part, plan.Log[i].Passes[j].Share = 0, 0
+			if entry.Passes[j].Work != feeds.ID {
+				plan.Log[i].Passes[j] = planner.Pass{Work: entry.Passes[j].Work}
+			}
+		}
+	}
+	for i, work := range plan.Works {
+		plan.Works[i].Settings = slices.Clone(work.Settings)
+		for j := range work.Settings {
+			s := &plan.Works[i].Settings[j].Value
+			s.Season, s.WateredIn, s.Limits = planner.WorkSeason{}, false, planner.Limits{LeastDays: s.Limits.LeastDays}
+		}
+	}
+	counted := inputOf(t, plan, 1).Data.Works
+	plan.Works = slices.DeleteFunc(plan.Works, func(work planner.Work) bool {
+		return !slices.ContainsFunc(counted, func(one planner.SheetWork) bool { return one.State.Work.ID == work.ID })
+	})
+	return plan
+}
+
 // Of random plans, with any input of any work changed, every date is that of
 // Evaluate of the same edit, or asks the bot; no other work asks.
 func TestRandomEditsAreHonest(t *testing.T) {
@@ -80,7 +114,7 @@ func TestRandomEditsAreHonest(t *testing.T) {
 	var trials []trial
 	var books [][]byte
 	for number := range uint64(slowPlans() / 2) {
-		plan := withRates(randomPlan(1000 + number))
+		plan := withRates(uncomplicated(t, randomPlan(1000+number)))
 		edited, edit, id := randomEdit(rand.New(rand.NewPCG(number, 1)), plan)
 		trials = append(trials, trial{plan, edited, id, edit})
 		books = append(books, changedBook(t, build(t, plan), []put{edit}))

@@ -240,8 +240,21 @@ func (b *book) dueCells(state planner.WorkState, due planner.DueFacts, cell func
 	if state.Status == planner.Full {
 		return []any{b.value(plainText, seasonsMost), b.live(whole, untilText, "")}
 	}
-	text := fmt.Sprintf("IF(AND(ISNUMBER(%[1]s),%[2]s>0),MAX(%[1]s,%[3]s+%[2]s),%[1]s)", cell("O"), cell("J"), cell("I"))
+	text := cell("O")
+	if due.GapFrom > planner.DayMin {
+		text = fmt.Sprintf("IF(AND(ISNUMBER(%[1]s),%[2]s>0),MAX(%[1]s,%[3]s+%[2]s),%[1]s)", cell("O"), cell("J"), gapFromText(due, cell))
+	}
 	return []any{b.live(strong, text, passageCell(told)), b.live(whole, untilText, until)}
+}
+
+// gapFromText is the day from which the least days between two passes run: the
+// last pass or, where that is another one (of a part, of the work's own feeds), as
+// issued until another last date is typed.
+func gapFromText(due planner.DueFacts, cell func(string) string) string {
+	if due.GapFrom == due.Since-1 {
+		return cell("I")
+	}
+	return fmt.Sprintf("IF(%[1]s=%[2]s,%.0[3]f,%[1]s)", cell("I"), cell("AC"), serial(due.GapFrom))
 }
 
 // throughText is the total through yesterday. A count that starts before the
