@@ -275,7 +275,7 @@ func TestTimeIsOver(t *testing.T) {
 			}
 			in := s.fake.Command(home, homeRoom, crew, "hello")
 			ctx, over := context.WithCancel(t.Context())
-			done := make(chan error)
+			done := make(chan error, 1)
 			go func() {
 				done <- s.bot.take(ctx, &discordgo.Interaction{ID: in.ID, AppID: fakechat.AppID, Token: in.Token, GuildID: home, ChannelID: homeRoom,
 					Type: discordgo.InteractionApplicationCommand, Data: discordgo.ApplicationCommandInteractionData{Name: "hello"},
@@ -283,8 +283,13 @@ func TestTimeIsOver(t *testing.T) {
 			}()
 			s.eventually("an answer is promised", func() bool { return countOf(t, registry, "swardbook_first_answer_seconds") == 1 })
 			over()
-			if err := <-done; err != nil {
-				t.Error(err)
+			select {
+			case err := <-done:
+				if err != nil {
+					t.Error(err)
+				}
+			case <-time.After(patience):
+				t.Fatal("it waits without end")
 			}
 			if got := s.wait(in).Say(); !strings.Contains(got, row.want) {
 				t.Errorf("got %q", got)
