@@ -141,9 +141,11 @@ func TestDrain(t *testing.T) {
 		t.Fatalf("not begun: %s", s.log)
 	}
 	s.stop()
-	if !s.fake.WaitDisconnected(patience) {
-		t.Error("still connected")
-	}
+	s.eventually("it takes no more", func() bool {
+		s.bot.mu.Lock()
+		defer s.bot.mu.Unlock()
+		return s.bot.closed
+	})
 	select {
 	case err := <-s.done:
 		t.Fatalf("it did not wait: %v", err)

@@ -88,11 +88,6 @@ func (f *Fake) WaitConnected(patience time.Duration) bool {
 	return poll(patience, func() bool { return f.Connected() > 0 })
 }
 
-// WaitDisconnected waits until none is.
-func (f *Fake) WaitDisconnected(patience time.Duration) bool {
-	return poll(patience, func() bool { return f.Connected() == 0 })
-}
-
 // poll asks again and again until it is so, or the patience ends.
 func poll(patience time.Duration, so func() bool) bool {
 	for end := time.Now().Add(patience); !so(); time.Sleep(5 * time.Millisecond) {
