@@ -20,8 +20,10 @@ const (
 	MMPerInch = 1000 * MetresPerFoot / 12
 	// SquareMetresPer1000SquareFeet: 1000 · 0.3048² = 92.90304 m².
 	SquareMetresPer1000SquareFeet = 1000 * MetresPerFoot * MetresPerFoot
-	// SquareMetresPerAcre: 1 acre = 43560 ft² = 4046.8564224 m².
-	SquareMetresPerAcre = 43560 * MetresPerFoot * MetresPerFoot
+	// SquareFeetPerAcre: 1 acre = 43560 ft².
+	SquareFeetPerAcre = 43560
+	// SquareMetresPerAcre: 43560 · 0.3048² = 4046.8564224 m².
+	SquareMetresPerAcre = SquareFeetPerAcre * MetresPerFoot * MetresPerFoot
 
 	// KilogramsPerHectarePerGramPerSquareMetre: 1 g/m² = 10000 g/ha = 10 kg/ha.
 	KilogramsPerHectarePerGramPerSquareMetre = 10.0

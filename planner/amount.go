@@ -17,16 +17,13 @@ type AmountUnits struct {
 // or, where temperatures are read in °F, lb/1000 ft², fl oz/acre and ft². The
 // zero AmountUnits stand for a kind that is not known.
 func (u Units) Amounts(kind RateKind) AmountUnits {
-	const (
-		squareMetresPerSquareFoot = calc.MetresPerFoot * calc.MetresPerFoot
-		squareFeetPerAcre         = 43560
-	)
+	const squareMetresPerSquareFoot = calc.MetresPerFoot * calc.MetresPerFoot
 	mass := AmountUnits{Rate: "g/m²", Area: "m²", Total: "kg", PerRate: 1, PerArea: 1, Divisor: 1000}
 	volume := AmountUnits{Rate: "L/ha", Area: "m²", Total: "L", PerRate: liquidPerHectare, PerArea: 1, Divisor: calc.SquareMetresPerHectare}
 	if u == Fahrenheit {
 		mass = AmountUnits{Rate: "lb/1000 ft²", Area: "ft²", Total: "lb", PerArea: squareMetresPerSquareFoot, Divisor: 1000,
 			PerRate: calc.GramsPerSquareMetrePerPoundPer1000SquareFeet}
-		volume = AmountUnits{Rate: "fl oz/acre", Area: "ft²", Total: "fl oz", PerArea: squareMetresPerSquareFoot, Divisor: squareFeetPerAcre,
+		volume = AmountUnits{Rate: "fl oz/acre", Area: "ft²", Total: "fl oz", PerArea: squareMetresPerSquareFoot, Divisor: calc.SquareFeetPerAcre,
 			PerRate: calc.MillilitresPerFluidOunce / calc.SquareMetresPerAcre}
 	}
 	switch kind {

@@ -202,7 +202,8 @@ type Imported struct {
 // Import reads a station file into the record of the site's station with the
 // name; its only one when the name is empty. A site without any gets one,
 // named after the file when no name is given. A file that is refused, or not
-// read to its end, leaves nothing behind: no station either. Works that had no mean of their own get one now that it is
+// read to its end, leaves nothing behind: no station either. Works that had no
+// mean of their own get one now that it is
 // known whether the site has hourly readings.
 func (b *Book) Import(ctx context.Context, site Site, name string, request ImportRequest) (Imported, error) {
 	station, err := b.stationFor(ctx, site, name, request.FileName)

@@ -139,9 +139,7 @@ func (p Plan) evaluateWork(work Work) (WorkState, error) {
 	done := p.passesOf(work)
 	passes, started := roundsOf(surface, done)
 	if state.Settings.Counts == ByNitrogen {
-		if passes, started = p.feedRounds(surface, passes); !started {
-			return state, nil
-		}
+		passes, started = p.feedRounds(surface, passes)
 	}
 	if !started {
 		return state, nil

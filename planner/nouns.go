@@ -425,7 +425,8 @@ func (s WorkSettings) check() error {
 	return Problemf(Invalid, "%q is not a mean", s.Basis).WithHint("Use mean:hourly or mean:midrange.")
 }
 
-// MaxTarget bounds targets, latest totals and marks: no interval is longer than a decade of hot days.
+// MaxTarget bounds targets, latest totals and marks: no interval is longer than
+// a decade of hot days.
 const MaxTarget = 100000
 
 func (c Counting) check() error {

@@ -191,3 +191,18 @@ func roundsOf(surface Surface, done []donePass) (r rounds, ok bool) {
 	}
 	return r, ok
 }
+
+// PassBefore is the newest other entry, up to the entry's day, with a pass of the
+// work over any of what the entry's goes over; lost ones are left out. ok is
+// false when there is none.
+func (p Plan) PassBefore(entry Entry, work WorkID) (before Entry, ok bool) {
+	pass, _ := entry.Of(work)
+	for _, other := range slices.Backward(p.Log) {
+		its, has := other.Of(work)
+		meets := its.Part == pass.Part || its.Part == 0 || pass.Part == 0
+		if has && meets && other.ID != entry.ID && other.Day <= entry.Day && other.Result != Lost {
+			return other, true
+		}
+	}
+	return Entry{}, false
+}

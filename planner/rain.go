@@ -2,6 +2,7 @@ package planner
 
 import (
 	"fmt"
+	"slices"
 	"time"
 )
 
@@ -78,6 +79,17 @@ func (p Plan) RainAfter(entry Entry, hours float64) (after RainAfter, ok bool) {
 	}
 	after.Whole = after.Whole && !seen.Before(end)
 	return after, true
+}
+
+// RainedOn reports whether rain is known to have fallen within the rain-free
+// hours of any of the entry's works, and nobody has said that it was doubtful or
+// lost.
+func (p Plan) RainedOn(entry Entry) bool {
+	return entry.Result == Good && slices.ContainsFunc(p.Works, func(work Work) bool {
+		_, has := entry.Of(work.ID)
+		rain, ok := p.RainAfter(entry, work.Settings.On(p.AsOf).RainFreeHours)
+		return has && ok && rain.Rained()
+	})
 }
 
 // instant is the moment at which the clock on the wall of the site shows the

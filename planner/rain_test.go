@@ -98,6 +98,10 @@ func TestRainIsAskedOnce(t *testing.T) {
 		plan := dublin(simple(settings, row.asOf, row.log...))
 		plan.Rain = wet
 		state := stateOf(t, plan)
+		newest := plan.Log[len(plan.Log)-1]
+		if rained := plan.RainedOn(newest); rained != (newest.Day == june(3) && newest.Clock == "06:10" && newest.Result == planner.Good) {
+			t.Errorf("%s: it rained on the newest pass: %v", row.name, rained)
+		}
 		if got := state.Rain != nil; got != row.asked {
 			t.Errorf("%s: asked is %v", row.name, got)
 		}

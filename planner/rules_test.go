@@ -176,3 +176,33 @@ func TestIntervalsAsTheyRan(t *testing.T) {
 		}
 	}
 }
+
+// The pass before is of the same part or meets it, was not lost, is another
+// entry, and is not later.
+func TestPassBefore(t *testing.T) {
+	numbered := func(id planner.EntryID, entry planner.Entry) planner.Entry {
+		entry.ID = id
+		return entry
+	}
+	plan := simple(byDays(7), june(20), numbered(1, doneOn(june(1))), numbered(2, doneOn(june(4), inPart(frontNine))),
+		numbered(3, doneOn(june(6), result(planner.Lost))), numbered(4, doneOn(june(9), inPart(backNine))), numbered(5, doneOn(june(12), ofWork(2))))
+	for _, row := range []struct {
+		name  string
+		entry planner.Entry
+		want  planner.EntryID // 0 for none
+	}{
+		{"the whole meets every part", doneOn(june(15)), 4},
+		{"a part meets itself and the whole", doneOn(june(15), inPart(frontNine)), 2},
+		{"on the day itself", doneOn(june(9), inPart(backNine)), 4},
+		{"not a later one", doneOn(june(8), inPart(backNine)), 1},
+		{"not a lost one", doneOn(june(7)), 2},
+		{"not the entry itself", numbered(4, doneOn(june(9), inPart(backNine))), 1},
+		{"of no other work", doneOn(june(15), ofWork(3)), 0},
+		{"before the first", doneOn(planner.DayOf(2023, 5, 1)), 0},
+	} {
+		before, ok := plan.PassBefore(row.entry, row.entry.Passes[0].Work)
+		if before.ID != row.want || ok != (row.want > 0) {
+			t.Errorf("%s: entry %d, %v, want %d", row.name, before.ID, ok, row.want)
+		}
+	}
+}

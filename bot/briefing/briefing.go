@@ -262,9 +262,11 @@ func Progress(state planner.WorkState, facts planner.DueFacts, e planner.Evaluat
 		text += " " + base
 	}
 	if state.Status == planner.DueToday && !facts.Held.Known {
-		if text += ", today should fill it"; state.Settings.Counts == planner.ByNitrogen {
-			text = strings.TrimSuffix(text, "fill it") + "use it up"
+		does := "fill it"
+		if state.Settings.Counts == planner.ByNitrogen {
+			does = "use it up"
 		}
+		text += ", today should " + does
 	}
 	return text
 }

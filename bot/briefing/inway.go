@@ -3,7 +3,6 @@ package briefing
 import (
 	"fmt"
 	"math"
-	"slices"
 	"strings"
 	"time"
 
@@ -139,7 +138,7 @@ func PassNotes(state planner.WorkState, entry planner.Entry, plan planner.Plan) 
 		add("at %.0f %% of the interval: check the label's least gap and season total", 100*facts.Total.Total/facts.Target)
 	}
 	limits := state.Settings.Limits
-	if before, ok := passBefore(plan.Log, entry, state.Work.ID); ok && before.Day == day {
+	if before, ok := plan.PassBefore(entry, state.Work.ID); ok && before.Day == day {
 		add("logged on that day already: entry %d", before.ID)
 	} else if gap := int(day - before.Day); ok && gap < limits.LeastDays {
 		add("%s after the last: your least is %d", Days(gap), limits.LeastDays)
@@ -157,20 +156,6 @@ func PassNotes(state planner.WorkState, entry planner.Entry, plan planner.Plan) 
 		add("out of its season")
 	}
 	return lines
-}
-
-// passBefore is the newest other entry, up to the entry's day, with a pass of the
-// work over any of what the entry's goes over.
-func passBefore(log []planner.Entry, entry planner.Entry, work planner.WorkID) (planner.Entry, bool) {
-	pass, _ := entry.Of(work)
-	for _, other := range slices.Backward(log) {
-		before, has := other.Of(work)
-		meets := before.Part == pass.Part || before.Part == 0 || pass.Part == 0
-		if has && meets && other.ID != entry.ID && other.Day <= entry.Day && other.Result != planner.Lost {
-			return other, true
-		}
-	}
-	return planner.Entry{}, false
 }
 
 // NitrogenLine is a surface's balance on the mean of its works: what is left,

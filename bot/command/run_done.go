@@ -69,7 +69,7 @@ func (d Desk) runDone(ctx context.Context, req Request) (reply.Reply, error) {
 		r.Confirm = &reply.Confirm{Question: "Log this?", Line: v.LineWith("when", when)}
 		return r, nil
 	}
-	entry.RainCounts = entry.RainCounts || rainedOn(plan, entry) // it was asked
+	entry.RainCounts = entry.RainCounts || plan.RainedOn(entry) // it was asked
 	kept, err := v.book.Save(ctx, v.stamp(), entry)
 	if err != nil {
 		return reply.Reply{}, err
@@ -252,16 +252,6 @@ func (v visit) needsNitrogen(entry planner.Entry) error {
 			WithHint("Say the nitrogen it gave, like rate:\"0.5 gN/m2\"; of a liquid it is its litres by its density and nitrogen percent.")
 	}
 	return nil
-}
-
-// rainedOn reports whether rain is known to have fallen within the rain-free
-// hours of any of the entry's works.
-func rainedOn(plan planner.Plan, entry planner.Entry) bool {
-	return entry.Result == planner.Good && slices.ContainsFunc(plan.Works, func(work planner.Work) bool {
-		_, has := entry.Of(work.ID)
-		rain, ok := plan.RainAfter(entry, work.Settings.On(plan.AsOf).RainFreeHours)
-		return has && ok && rain.Rained()
-	})
 }
 
 // meaning says what an entry does to counts, dates, limits and the balance.

@@ -252,7 +252,7 @@ func (d Desk) runLogAmend(ctx context.Context, req Request) (reply.Reply, error)
 		return reply.Reply{}, err
 	}
 	if result, given := v.Values.Text("result"); given && result == "good" {
-		entry.RainCounts = rainedOn(plan, entry)
+		entry.RainCounts = plan.RainedOn(entry)
 	}
 	r, err := v.meaning(plan, before, entry)
 	if err != nil {
